@@ -1,0 +1,89 @@
+import type { ChoiceRules } from './choice-rules.ts'
+import type { Order } from './order.ts'
+
+/**
+ * Returns the patterns in file order, changed only where constraints demand it: what is fixed first and kept moves to
+ * the front, groups close up at their first pattern, and a pattern waits for those that have to run before it.
+ */
+export function deliveredOrder(rules: ChoiceRules): Order {
+  const units = new UnitSequence(rules)
+  for (const unit of rules.first) units.place(unit)
+  for (const keptOnly of [true, false]) {
+    for (let unit = 0; unit < rules.nUnits; unit++) {
+      if (!keptOnly || rules.kept[unit] === 1) units.placeWithPredecessors(unit)
+    }
+  }
+  return units.finish('as-delivered', rules.nUnits)
+}
+
+/** Collects units one after the other and writes them out as an order of patterns. */
+export class UnitSequence {
+  readonly rules: ChoiceRules
+  readonly units: number[] = []
+  /** Length nUnits, 1 where the unit is placed. */
+  readonly placed: Uint8Array
+
+  constructor(rules: ChoiceRules) {
+    this.rules = rules
+    this.placed = new Uint8Array(rules.nUnits)
+  }
+
+  place(unit: number): void {
+    this.placed[unit] = 1
+    this.units.push(unit)
+  }
+
+  /** True where all that has to run before the unit is placed. */
+  isReady(unit: number): boolean {
+    const { predecessorStart, predecessors } = this.rules
+    for (let at = predecessorStart[unit]; at < predecessorStart[unit + 1]; at++) {
+      if (this.placed[predecessors[at]] === 0) return false
+    }
+    return true
+  }
+
+  /** Returns the units that are not placed and have to be for this one to run, each after its own predecessors; it comes last. */
+  missingFor(unit: number): number[] {
+    const { predecessorStart, predecessors } = this.rules
+    const found: number[] = []
+    const seen = new Set<number>([unit])
+    const stack = [{ unit, next: predecessorStart[unit] }]
+    while (stack.length > 0) {
+      const top = stack[stack.length - 1]
+      if (top.next === predecessorStart[top.unit + 1]) {
+        found.push(top.unit)
+        stack.pop()
+        continue
+      }
+      const before = predecessors[top.next++]
+      if (this.placed[before] === 1 || seen.has(before)) continue
+      seen.add(before)
+      stack.push({ unit: before, next: predecessorStart[before] })
+    }
+    return found
+  }
+
+  placeWithPredecessors(unit: number): void {
+    if (this.placed[unit] === 1) return
+    for (const one of this.missingFor(unit)) this.place(one)
+  }
+
+  /** Returns the order: what was placed, then the other units in file order, then the patterns left out. */
+  finish(name: Order['name'], chosenUnits: number): Order {
+    const { rules } = this
+    for (let unit = 0; unit < rules.nUnits; unit++) this.placeWithPredecessors(unit)
+    const sequence = new Uint32Array(rules.nPatterns)
+    let length = 0
+    let chosen = 0
+    for (const [place, unit] of this.units.entries()) {
+      for (let at = rules.unitStart[unit]; at < rules.unitStart[unit + 1]; at++)
+        sequence[length++] = rules.unitPatterns[at]
+      if (place < chosenUnits) chosen = length
+    }
+    const runs = length
+    for (let pattern = 0; pattern < rules.nPatterns; pattern++) {
+      if (rules.unitOf[pattern] < 0) sequence[length++] = pattern
+    }
+    return { name, sequence, chosen, runs }
+  }
+}
