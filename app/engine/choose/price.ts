@@ -1,4 +1,4 @@
-import { agrawalSethAgrawal, dppmAt, PARTS, williamsBrown } from '../quality/defect-level.ts'
+import { agrawalSethAgrawal, dppmAt, dppmWithFloor, PARTS, williamsBrown } from '../quality/defect-level.ts'
 import { type DppmBand, escapeCorners } from '../quality/escape-band.ts'
 import { passFraction } from '../quality/yield.ts'
 import type { Product } from '../quality/product.ts'
@@ -60,8 +60,11 @@ export function priceOrder(sequence: Uint32Array, testCoverage: Float64Array, pr
   const { sites, multiSiteEfficiency, indexMs, reloadMs } = tester
   const columns = timeColumns(time, sequence, tester.scanMemory !== null, product.otherCycles)
   const length = sequence.length + 1
-  const column = (valueAt: (k: number) => number): Float64Array =>
-    Float64Array.from({ length }, (_, k) => valueAt(k))
+  const column = (valueAt: (k: number) => number): Float64Array => {
+    const values = new Float64Array(length)
+    for (let k = 0; k < length; k++) values[k] = valueAt(k)
+    return values
+  }
 
   const reloads = column(
     (k) =>
@@ -80,7 +83,7 @@ export function priceOrder(sequence: Uint32Array, testCoverage: Float64Array, pr
   const meanOnAllSites = meanTimeStopAtFirstFail(stepMs, known, trueYield, sites)
 
   const assumptions = { model: product.model, trueYield, n0: product.n0, residualDppm: product.residualDppm }
-  const withFloor = (share: number): number => Math.min(PARTS, PARTS * share + product.residualDppm)
+  const withFloor = (share: number): number => dppmWithFloor(share, product.residualDppm)
   const band: DppmBand = escapeCorners(product, trueYield)
   const dppm = testCoverage.map((coverage) => dppmAt(coverage, assumptions))
   const costPerDevice = perDeviceMilliseconds.map((ms) => costOfTime(ms, tester.costPerHour))

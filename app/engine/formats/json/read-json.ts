@@ -40,28 +40,30 @@ export type EitherShape = { readonly kind: 'either'; readonly of: readonly Shape
 /** The keys that an object may have. */
 export type Keys = { readonly [name: string]: Shape }
 
-/** The plain value that a shape lets through. */
-export type ValueOf<S extends Shape> = S extends NumberShape
-  ? number
-  : S extends { kind: 'text'; oneOf: readonly (infer Word)[] }
-    ? Word
-    : S extends TextShape
-      ? string
-      : S extends BooleanShape
-        ? boolean
-        : S extends { kind: 'list'; of: infer Item extends Shape }
-          ? readonly ValueOf<Item>[]
-          : S extends { kind: 'object'; keys: infer K extends Keys; required: readonly (infer R)[] }
-            ? { readonly [Name in keyof K as Name extends R ? Name : never]: ValueOf<K[Name]> } & ValuesOf<
-                Omit<K, R & string>
-              >
-            : S extends { kind: 'object'; keys: infer K extends Keys }
-              ? ValuesOf<K>
-              : S extends { kind: 'or-null'; of: infer Inner extends Shape }
-                ? ValueOf<Inner> | null
-                : S extends { kind: 'either'; of: readonly (infer Inner extends Shape)[] }
-                  ? ValueOf<Inner>
-                  : never
+/** The plain value that a shape lets through; unknown where the shape is known at run time only. */
+export type ValueOf<S extends Shape> = Shape extends S
+  ? unknown
+  : S extends NumberShape
+    ? number
+    : S extends { kind: 'text'; oneOf: readonly (infer Word)[] }
+      ? Word
+      : S extends TextShape
+        ? string
+        : S extends BooleanShape
+          ? boolean
+          : S extends { kind: 'list'; of: infer Item extends Shape }
+            ? readonly ValueOf<Item>[]
+            : S extends { kind: 'object'; keys: infer K extends Keys; required: readonly (infer R)[] }
+              ? { readonly [Name in keyof K as Name extends R ? Name : never]: ValueOf<K[Name]> } & ValuesOf<
+                  Omit<K, R & string>
+                >
+              : S extends { kind: 'object'; keys: infer K extends Keys }
+                ? ValuesOf<K>
+                : S extends { kind: 'or-null'; of: infer Inner extends Shape }
+                  ? ValueOf<Inner> | null
+                  : S extends { kind: 'either'; of: readonly (infer Inner extends Shape)[] }
+                    ? ValueOf<Inner>
+                    : never
 
 /** Every key is optional; a key that the file does not have is missing in the value too. */
 export type ValuesOf<K extends Keys> = { readonly [Name in keyof K]?: ValueOf<K[Name]> }
