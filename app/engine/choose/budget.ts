@@ -17,11 +17,25 @@ export type Goal =
 /** What stops an order from going on: a limit, or the vector memory where reloads are forbidden. */
 export type Stop = Limit | { readonly kind: 'vectorMemory' }
 
+/** An order, priced, and what is asked of a cut of it. */
+export type CutRequest = {
+  readonly curve: CoverageCurve
+  readonly priced: PricedOrder
+  /** How many patterns at the front were chosen for a gain; a cut goes no further. */
+  readonly chosen: number
+  /** Length nPatterns + 1: 1 where constraints let a cut lie (not within a group, not before what is kept). Null: everywhere. */
+  readonly mayCut: Uint8Array | null
+  readonly limits: readonly Limit[]
+  readonly goals: readonly Goal[]
+}
+
 export type Cut = {
   /** How many patterns of the order run. */
   readonly patterns: number
   /** What the next pattern would break; null where all patterns with a gain fit, or a goal ended the order first. */
   readonly stop: Stop | null
+  /** A limit that this cut breaks already, since constraints allow no shorter one. */
+  readonly broken: Stop | null
   /** Goals that this cut does not meet; then it is the shortest prefix that comes nearest to them within all limits. */
   readonly unmet: readonly UnmetGoal[]
 }
@@ -39,32 +53,38 @@ const SLACK = 1e-12
 
 /**
  * Returns the cut of an order: without goals the longest prefix within all limits, with goals the shortest prefix that
- * meets them all within all limits. `chosen` is how many patterns at the front were chosen for a gain; a cut goes no
- * further.
+ * meets them all within all limits.
  */
-export function chooseCut(
-  curve: CoverageCurve,
-  chosen: number,
-  priced: PricedOrder,
-  limits: readonly Limit[],
-  goals: readonly Goal[],
-): Cut {
-  let longest = 0
-  while (longest < chosen && stopAt(longest + 1, priced, limits) === null) longest++
-  const stop = longest < chosen ? stopAt(longest + 1, priced, limits) : null
-  if (goals.length === 0) return { patterns: longest, stop, unmet: [] }
+export function chooseCut(request: CutRequest): Cut {
+  const { curve, priced, chosen, mayCut, limits, goals } = request
+  const mayEnd = (k: number): boolean => mayCut === null || mayCut[k] === 1
+  const shortest = firstPrefix(chosen, mayEnd) ?? chosen
+  const broken = stopAt(shortest, priced, limits)
+  if (broken !== null) return { patterns: shortest, stop: broken, broken, unmet: [] }
+
+  let longest = shortest
+  let stop: Stop | null = null
+  for (let k = shortest + 1; k <= chosen && stop === null; k++) {
+    stop = stopAt(k, priced, limits)
+    if (stop === null && mayEnd(k)) longest = k
+  }
+  if (goals.length === 0) return { patterns: longest, stop, broken, unmet: [] }
 
   const values = goals.map((goal) => goalColumn(goal, curve, priced))
-  const isMet = (at: number, k: number): boolean => meets(goals[at], values[at][k])
-  const reached = goals.map((_, at) => firstPrefix(longest, (k) => isMet(at, k)))
+  const reached = goals.map((goal, at) =>
+    firstPrefix(longest, (k) => mayEnd(k) && meets(goal, values[at][k])),
+  )
   const unmet = goals.flatMap((goal, at) => {
     if (reached[at] !== null) return []
-    const isBeyond = firstPrefix(chosen, (k) => isMet(at, k)) !== null
+    const isBeyond = firstPrefix(chosen, (k) => meets(goal, values[at][k])) !== null
     return [{ goal, nearest: values[at][longest], stop: isBeyond ? stop : null }]
   })
-  if (unmet.length === 0) return { patterns: Math.max(...reached.map(Number)), stop: null, unmet }
-  const nearest = firstPrefix(longest, (k) => values.every((column) => column[k] === column[longest]))
-  return { patterns: nearest ?? longest, stop, unmet }
+  if (unmet.length === 0) return { patterns: Math.max(...reached.map(Number)), stop: null, broken, unmet }
+  const nearest = firstPrefix(
+    longest,
+    (k) => mayEnd(k) && values.every((column) => column[k] === column[longest]),
+  )
+  return { patterns: nearest ?? longest, stop, broken, unmet }
 }
 
 /** Returns what a prefix of k patterns breaks first, or null. */

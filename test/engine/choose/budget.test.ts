@@ -9,7 +9,13 @@ import { buildTimeModel } from '../../../app/engine/tester/time-model.ts'
 // Five patterns of 1 ms and one cycle; the fifth gains nothing.
 const CURVE = { detected: Float64Array.of(0, 50, 80, 90, 95, 95), total: 100 }
 
-function cut(limits: Limit[], goals: Goal[], chosen = 4, tester: Partial<Tester> = {}) {
+function cut(
+  limits: Limit[],
+  goals: Goal[],
+  chosen = 4,
+  tester: Partial<Tester> = {},
+  mayCut: Uint8Array | null = null,
+) {
   const wholeTester = { ...DEFAULT_TESTER, vectorMHz: 0.001, ...tester }
   const product = { ...DEFAULT_PRODUCT, residualDppm: 0 }
   const time = buildTimeModel(
@@ -20,19 +26,14 @@ function cut(limits: Limit[], goals: Goal[], chosen = 4, tester: Partial<Tester>
   )
   const testCoverage = CURVE.detected.map((faults) => faults / 100)
   const pricing = { tester: wholeTester, product, time, trueYield: 0.5, restMs: 10 }
-  return chooseCut(
-    CURVE,
-    chosen,
-    priceOrder(Uint32Array.of(0, 1, 2, 3, 4), testCoverage, pricing),
-    limits,
-    goals,
-  )
+  const priced = priceOrder(Uint32Array.of(0, 1, 2, 3, 4), testCoverage, pricing)
+  return chooseCut({ curve: CURVE, priced, chosen, mayCut, limits, goals })
 }
 
 describe('under limits', () => {
   test('the cut is the longest prefix that fits; exactly the limit fits', () => {
     const limit: Limit = { kind: 'milliseconds', most: 3 }
-    expect(cut([limit], [])).toEqual({ patterns: 3, stop: limit, unmet: [] })
+    expect(cut([limit], [])).toEqual({ patterns: 3, stop: limit, broken: null, unmet: [] })
     expect(cut([{ kind: 'milliseconds', most: 2.999 }], []).patterns).toBe(2)
     expect(cut([{ kind: 'deviceMilliseconds', most: 12 }], []).patterns).toBe(2)
     expect(cut([{ kind: 'cycles', most: 1 }], []).patterns).toBe(1)
@@ -40,7 +41,12 @@ describe('under limits', () => {
   })
 
   test('a pattern without a gain is not chosen, though it fits', () => {
-    expect(cut([{ kind: 'patterns', most: 100 }], [])).toEqual({ patterns: 4, stop: null, unmet: [] })
+    expect(cut([{ kind: 'patterns', most: 100 }], [])).toEqual({
+      patterns: 4,
+      stop: null,
+      broken: null,
+      unmet: [],
+    })
     expect(cut([], [], 5).patterns).toBe(5)
   })
 
@@ -50,6 +56,7 @@ describe('under limits', () => {
     expect(cut([patterns], [], 4, { vectorMemory: 1 })).toEqual({
       patterns: 1,
       stop: { kind: 'vectorMemory' },
+      broken: null,
       unmet: [],
     })
     expect(cut([patterns], [], 4, { vectorMemory: 1, reloadMs: 7 }).patterns).toBe(2)
@@ -58,7 +65,12 @@ describe('under limits', () => {
 
 describe('for goals', () => {
   test('the cut is the shortest prefix that meets them; exactly the goal meets it', () => {
-    expect(cut([], [{ kind: 'coverage', least: 0.8 }])).toEqual({ patterns: 2, stop: null, unmet: [] })
+    expect(cut([], [{ kind: 'coverage', least: 0.8 }])).toEqual({
+      patterns: 2,
+      stop: null,
+      broken: null,
+      unmet: [],
+    })
     expect(cut([], [{ kind: 'coverage', least: 0.801 }]).patterns).toBe(3)
     expect(cut([], [{ kind: 'coverage', least: 0 }]).patterns).toBe(0)
     // Source: Williams & Brown 1981: T = 0.95 at Y = 0.5 is 34,064 DPPM, T = 0.9 is 66,967.
@@ -76,6 +88,7 @@ describe('for goals', () => {
     expect(cut([], [goal], 5)).toEqual({
       patterns: 4,
       stop: null,
+      broken: null,
       unmet: [{ goal, nearest: 0.95, stop: null }],
     })
   })
@@ -86,8 +99,25 @@ describe('for goals', () => {
     expect(cut([limit], [goal])).toEqual({
       patterns: 3,
       stop: limit,
+      broken: null,
       unmet: [{ goal, nearest: 0.9, stop: limit }],
     })
+  })
+})
+
+describe('with constraints', () => {
+  // Patterns 2 and 3 stay together, the first is kept: cuts may lie after 1, 3, 4 and 5.
+  const mayCut = Uint8Array.of(0, 1, 0, 1, 1, 1)
+
+  test('the cut keeps groups whole', () => {
+    const limit: Limit = { kind: 'patterns', most: 2 }
+    expect(cut([limit], [], 4, {}, mayCut)).toEqual({ patterns: 1, stop: limit, broken: null, unmet: [] })
+    expect(cut([], [{ kind: 'coverage', least: 0.8 }], 4, {}, mayCut).patterns).toBe(3)
+  })
+
+  test('the cut never drops what is kept, and says which limit that breaks', () => {
+    const limit: Limit = { kind: 'milliseconds', most: 0.5 }
+    expect(cut([limit], [], 4, {}, mayCut)).toEqual({ patterns: 1, stop: limit, broken: limit, unmet: [] })
   })
 })
 
