@@ -1,4 +1,5 @@
 import type { DefectModel } from './product.ts'
+import { yieldAfter } from './yield.ts'
 
 /** Defective parts in a million, from a share. */
 export const PARTS = 1_000_000
@@ -9,7 +10,7 @@ export const PARTS = 1_000_000
  * SOURCE: Williams & Brown 1981.
  */
 export function williamsBrown(trueYield: number, coverage: number): number {
-  return 1 - trueYield ** (1 - coverage)
+  return 1 - yieldAfter(trueYield, coverage)
 }
 
 /**

@@ -26,6 +26,11 @@ export function passFraction(trueYield: number, coverage: number): number {
   return trueYield ** coverage
 }
 
+/** Returns the yield of what has passed tests of coverage T: Y^(1−T). SOURCE: Williams & Brown 1981. */
+export function yieldAfter(trueYield: number, coverage: number): number {
+  return trueYield ** (1 - coverage)
+}
+
 export type YieldOrigin = 'given' | 'area and defect density' | 'pass fraction' | 'assumed'
 
 /**
