@@ -12,19 +12,34 @@ const BLOCK_WIDTH = 512
 const MAX_PAGES = 65536
 
 /** Compiles the simulation kernel to out/kernel/kernel.wasm; throws with the compiler's words where it can't. */
-export async function buildKernel({ width = BLOCK_WIDTH, output = join(root, 'out/kernel/kernel.wasm') } = {}) {
+export async function buildKernel({
+  width = BLOCK_WIDTH,
+  output = join(root, 'out/kernel/kernel.wasm'),
+} = {}) {
   const files = new Map()
   const { error, stderr } = await asc.main(
     [
       'app/engine/simulate/assembly/index.ts',
-      '--baseDir', root,
-      '--outFile', 'kernel.wasm',
-      '-O3', '--converge', '--noAssert',
-      '--runtime', 'stub',
-      '--enable', 'simd,threads',
-      '--importMemory', '--sharedMemory', '--noExportMemory',
-      '--initialMemory', '1', '--maximumMemory', String(MAX_PAGES),
-      '--use', `LANES=${width / 128}`,
+      '--baseDir',
+      root,
+      '--outFile',
+      'kernel.wasm',
+      '-O3',
+      '--converge',
+      '--noAssert',
+      '--runtime',
+      'stub',
+      '--enable',
+      'simd,threads',
+      '--importMemory',
+      '--sharedMemory',
+      '--noExportMemory',
+      '--initialMemory',
+      '1',
+      '--maximumMemory',
+      String(MAX_PAGES),
+      '--use',
+      `LANES=${width / 128}`,
     ],
     {
       readFile: (name, baseDir) => readFile(join(baseDir, name), 'utf8').catch(() => null),

@@ -54,7 +54,8 @@ export function placeFaults(task: KernelTask, order: NetOrder): FaultSites {
       case LineKind.FlipFlopData: {
         const row = lines.kind[line] === LineKind.OutputTap ? rowOf.output[net] : rowOf.data[lines.sink[line]]
         let tap = taps.get(row)
-        if (tap === undefined) taps.set(row, (tap = { slot: order.slotOf[net], row, classes: [NO_CLASS, NO_CLASS] }))
+        if (tap === undefined)
+          taps.set(row, (tap = { slot: order.slotOf[net], row, classes: [NO_CLASS, NO_CLASS] }))
         put(tap.classes, stuck, group)
         return
       }

@@ -95,7 +95,10 @@ type Own = Readonly<
 >
 
 /** Lays extents one after the other, each on a cache line. */
-function layOut<K extends string>(start: number, sizes: Record<K, number>): { extents: Record<K, Extent>; end: number } {
+function layOut<K extends string>(
+  start: number,
+  sizes: Record<K, number>,
+): { extents: Record<K, Extent>; end: number } {
   let at = start
   const extents = {} as Record<K, Extent>
   for (const name of Object.keys(sizes) as K[]) {
@@ -178,6 +181,11 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
   return { layout, tables: { order, sites } }
 }
 
+/** How many blocks the task's patterns fill. */
+export function blocksOf(layout: KernelLayout, task: KernelTask): number {
+  return Math.ceil(task.patterns.nPatterns / layout.blockWidth)
+}
+
 /** Bytes of memory that the task takes on that many threads. */
 export function kernelBytes(layout: KernelLayout, threads: number): number {
   return layout.ownStart + threads * layout.ownBytes
@@ -205,7 +213,8 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
     const net = order.nets[slot]
     gates[4 * slot + 3] = fanoutEnd[slot] = fanoutStart
     fanoutStart += order.uses[net]
-    watched[slot] = order.observed[net] === 0 ? UNWATCHED : patterns.observed === null ? WATCHED : WATCHED_BY_MASK
+    watched[slot] =
+      order.observed[net] === 0 ? UNWATCHED : patterns.observed === null ? WATCHED : WATCHED_BY_MASK
     if (watched[slot] === WATCHED_BY_MASK) watchSlots[slot] = watchSlot++
   }
   gates[4 * layout.nNets + 3] = fanoutStart
@@ -263,8 +272,8 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
   ])
 }
 
-/** Writes the header of one thread's own part; returns its address. Results are kept apart where all detections count. */
-export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBufferLike): number {
+/** Writes the header of one thread's own part. Results are kept apart where all detections count. */
+export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBufferLike): void {
   const { own, shared } = layout
   const base = layout.ownStart + thread * layout.ownBytes
   const apart = own.first.bytes > 0
@@ -283,12 +292,12 @@ export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBuff
     apart ? base + own.detections.at : shared.detections.at,
     base + own.possibly.at,
   ])
-  return base
 }
 
 /** The kernel's code for a gate, and whether its inputs are listed in the pin table rather than in its record. */
 function operation(kind: number, inputs: number): { op: number; listed: boolean } {
-  const inverts = kind === GateKind.Not || kind === GateKind.Nand || kind === GateKind.Nor || kind === GateKind.Xnor
+  const inverts =
+    kind === GateKind.Not || kind === GateKind.Nand || kind === GateKind.Nor || kind === GateKind.Xnor
   const isXor = kind === GateKind.Xor || kind === GateKind.Xnor
   const isOr = kind === GateKind.Or || kind === GateKind.Nor
   const listed = inputs > 2
@@ -332,4 +341,3 @@ function largestRegion(circuit: KernelTask['circuit'], order: NetOrder): number 
   }
   return largest + 1
 }
-

@@ -3,6 +3,9 @@ import type { DetectionProfile } from './detection-profile.ts'
 import { LAYOUT_VERSION, type KernelLayout } from './kernel-layout.ts'
 import type { KernelTask } from './kernel-task.ts'
 
+/** So few that even the largest take far less than the time in which a cancelled run must stop. */
+const REGIONS_AT_ONCE = 16
+
 /** What the compiled kernel exports. Addresses are bytes into the memory that it was given. */
 export type KernelExports = {
   layoutVersion(): number
@@ -32,20 +35,20 @@ export class KernelThread {
   private readonly words: Uint32Array
   private readonly base: number
 
-  /** `base` is the address of the thread's own part, its header written. */
+  /** Threads are numbered from 0; the header of each one's own part must have been written. */
   constructor(
     kernel: KernelExports,
     layout: KernelLayout,
     task: KernelTask,
     memory: ArrayBufferLike,
-    base: number,
+    thread: number,
   ) {
     this.kernel = kernel
     this.layout = layout
     this.task = task
     this.words = new Uint32Array(memory)
-    this.base = base
-    kernel.attach(layout.shared.header.at, base)
+    this.base = layout.ownStart + thread * layout.ownBytes
+    kernel.attach(layout.shared.header.at, this.base)
     this.loadConstants()
   }
 
@@ -55,10 +58,9 @@ export class KernelThread {
     this.loadPatterns(block)
     kernel.beginBlock(block * layout.blockWidth, task.detectionLimit)
     kernel.evaluateGood()
-    const step = 256
-    for (let from = layout.nRegions; from > 0; from -= step) {
+    for (let from = layout.nRegions; from > 0; from -= REGIONS_AT_ONCE) {
       if (!goOn()) return false
-      kernel.simulateRegions(from, Math.max(0, from - step))
+      kernel.simulateRegions(from, Math.max(0, from - REGIONS_AT_ONCE))
     }
     kernel.simulateTaps()
     return true
@@ -118,6 +120,25 @@ export class KernelThread {
   }
 }
 
+/** Puts an earlier profile of the same task into the memory, so that simulation goes on from there. */
+export function resumeProfile(
+  layout: KernelLayout,
+  memory: ArrayBufferLike,
+  profile: DetectionProfile,
+): void {
+  const { own, shared, ownStart, nClasses } = layout
+  const apart = own.first.bytes > 0
+  const first = new Int32Array(memory, apart ? ownStart + own.first.at : shared.first.at, nClasses)
+  const detections = new Uint32Array(
+    memory,
+    apart ? ownStart + own.detections.at : shared.detections.at,
+    nClasses,
+  )
+  first.set(profile.first)
+  detections.set(profile.detections)
+  new Uint8Array(memory, ownStart + own.possibly.at, nClasses).set(profile.possibly)
+}
+
 /** Gathers the results that threads left in the kernel's memory into one profile. */
 export function gatherProfile(
   layout: KernelLayout,
@@ -146,7 +167,8 @@ export function gatherProfile(
       if (first[group] < 0 || threadFirst[group] < first[group]) first[group] = threadFirst[group]
     }
   }
-  if (limit > 0) for (let group = 0; group < nClasses; group++) detections[group] = Math.min(limit, detections[group])
+  if (limit > 0)
+    for (let group = 0; group < nClasses; group++) detections[group] = Math.min(limit, detections[group])
   for (const [group, same] of layout.twins) {
     first[group] = first[same]
     detections[group] = detections[same]

@@ -76,7 +76,7 @@ function sortFromObserved(circuit: KernelTask['circuit'], observed: Uint8Array):
     if (observed[root] === 0 || seen[root] === 1) continue
     seen[root] = 1
     stack[0] = root
-    for (let depth = 0; depth >= 0; ) {
+    for (let depth = 0; depth >= 0;) {
       const net = stack[depth]
       if (!isGate(kind[net]) || next[net] === faninStart[net + 1]) {
         sorted[n++] = net

@@ -1,0 +1,130 @@
+import { parentPort, type MessagePort } from 'node:worker_threads'
+import { KernelThread, gatherProfile, resumeProfile } from '../engine/simulate/kernel.ts'
+import { blocksOf, kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simulate/kernel-layout.ts'
+import { instantiateKernel } from './instantiate-kernel.ts'
+import { simulateBlocks } from './simulate-blocks.ts'
+import {
+  CLOSED,
+  Control,
+  type JoinRequest,
+  type RunReport,
+  type RunRequest,
+  type SimulationCheckpoint,
+} from './simulate-protocol.ts'
+
+const PAGE = 65536
+const MAX_PAGES = 65536
+const CHECKPOINT_MILLISECONDS = 1000
+/** Making checkpoints takes at most this share of a run. */
+const CHECKPOINT_SHARE = 0.03
+
+/** Serves the pool's owner: plans and packs each run, simulates on this thread and on the helpers, gathers results. */
+export function serveAsCoordinator(wasmBytes: Uint8Array, helpers: readonly MessagePort[]): void {
+  const owner = parentPort
+  if (owner === null) throw new Error('the coordinator of a simulation pool runs on a worker thread only')
+  const module = new WebAssembly.Module(wasmBytes)
+  const patternsPerBlock = instantiateKernel(module, sharedMemory(1)).patternsPerBlock()
+  owner.on('message', (request: RunRequest) => {
+    const send = (report: RunReport): void => owner.postMessage(report)
+    try {
+      runTask(request, module, patternsPerBlock, helpers, send)
+    } catch (error) {
+      const message = error instanceof Error ? error.message : String(error)
+      send({ run: request.run, kind: 'failed', message })
+    } finally {
+      const control = new Int32Array(request.control)
+      Atomics.store(control, Control.Over, 1)
+      wakeHelpers(control)
+    }
+  })
+}
+
+function runTask(
+  request: RunRequest,
+  module: WebAssembly.Module,
+  patternsPerBlock: number,
+  helpers: readonly MessagePort[],
+  send: (report: RunReport) => void,
+): void {
+  const { run, task, resumeFrom } = request
+  const control = new Int32Array(request.control)
+  const threads = Math.max(1, Math.min(request.threads, helpers.length + 1))
+  const plan = planKernel(task, patternsPerBlock)
+  const { layout } = plan
+  const memoryBytes = kernelBytes(layout, threads)
+  const memory = sharedMemory(Math.ceil(memoryBytes / PAGE))
+  const { buffer } = memory
+  writeShared(plan, task, buffer)
+  for (let thread = 0; thread < threads; thread++) writeOwn(layout, thread, buffer)
+  if (resumeFrom !== null) resumeProfile(layout, buffer, resumeFrom.profile)
+
+  const nBlocks = blocksOf(layout, task)
+  const doneBefore = Math.floor((resumeFrom?.patternsDone ?? 0) / layout.blockWidth)
+  Atomics.store(control, Control.NextBlock, doneBefore)
+  Atomics.store(control, Control.BlocksDone, doneBefore)
+  Atomics.store(control, Control.BlockWidth, layout.blockWidth)
+  for (let thread = 1; thread < threads; thread++) {
+    helpers[thread - 1]?.postMessage({
+      memory,
+      layout,
+      task,
+      thread,
+      control: request.control,
+    } satisfies JoinRequest)
+  }
+  const started = performance.now()
+  const own = new KernelThread(instantiateKernel(module, memory), layout, task, buffer, 0)
+  const checkpointAt = (blocks: number): SimulationCheckpoint => ({
+    patternsDone: Math.min(task.patterns.nPatterns, blocks * layout.blockWidth),
+    profile: gatherProfile(layout, task, buffer, threads),
+  })
+  let checkpoint = resumeFrom ?? checkpointAt(doneBefore)
+  let nextCheckpoint = started + CHECKPOINT_MILLISECONDS
+  const isDue = (): boolean => performance.now() >= nextCheckpoint
+
+  for (;;) {
+    const outcome = simulateBlocks(own, control, nBlocks, isDue)
+    if (outcome === 'due') {
+      const blocks = Atomics.exchange(control, Control.NextBlock, CLOSED)
+      waitForHelpers(control)
+      if (Atomics.load(control, Control.Cancel) !== 0) continue
+      const pausedAt = performance.now()
+      checkpoint = checkpointAt(Math.min(blocks, nBlocks))
+      if (request.wantCheckpoints) send({ run, kind: 'checkpoint', checkpoint })
+      Atomics.store(control, Control.NextBlock, blocks)
+      wakeHelpers(control)
+      const now = performance.now()
+      nextCheckpoint = now + Math.max(CHECKPOINT_MILLISECONDS, (now - pausedAt) / CHECKPOINT_SHARE)
+      continue
+    }
+    waitForHelpers(control)
+    if (outcome === 'cancelled' || Atomics.load(control, Control.Cancel) !== 0) {
+      send({ run, kind: 'cancelled', checkpoint })
+      return
+    }
+    const kernelSeconds = (performance.now() - started) / 1000
+    const profile = gatherProfile(layout, task, buffer, threads)
+    send({ run, kind: 'done', profile, kernelSeconds, memoryBytes })
+    return
+  }
+}
+
+function sharedMemory(pages: number): WebAssembly.Memory {
+  if (pages > MAX_PAGES) {
+    throw new RangeError(
+      `The simulation needs ${Math.ceil((pages * PAGE) / 2 ** 20)} MB in one piece; 4096 MB can be had. Use fewer threads.`,
+    )
+  }
+  return new WebAssembly.Memory({ initial: pages, maximum: MAX_PAGES, shared: true })
+}
+
+function waitForHelpers(control: Int32Array): void {
+  for (let busy = Atomics.load(control, Control.Busy); busy > 0; busy = Atomics.load(control, Control.Busy)) {
+    Atomics.wait(control, Control.Busy, busy)
+  }
+}
+
+function wakeHelpers(control: Int32Array): void {
+  Atomics.add(control, Control.Generation, 1)
+  Atomics.notify(control, Control.Generation)
+}

@@ -1,0 +1,65 @@
+import type { MessagePort } from 'node:worker_threads'
+import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
+import type { KernelLayout } from '../engine/simulate/kernel-layout.ts'
+import type { KernelTask } from '../engine/simulate/kernel-task.ts'
+
+/** A point from which a simulation can go on: all patterns before `patternsDone` are in the profile, none after. */
+export type SimulationCheckpoint = {
+  readonly patternsDone: number
+  readonly profile: DetectionProfile
+}
+
+/** Handed to every thread of a pool at its start. Helpers hear from the coordinator alone, over a port of their own. */
+export type SimulateWorkerData =
+  | { readonly role: 'coordinator'; readonly wasmBytes: Uint8Array; readonly helpers: readonly MessagePort[] }
+  | { readonly role: 'helper'; readonly wasmBytes: Uint8Array; readonly coordinator: MessagePort }
+
+export type RunRequest = {
+  readonly run: number
+  readonly task: KernelTask
+  readonly threads: number
+  readonly resumeFrom: SimulationCheckpoint | null
+  readonly wantCheckpoints: boolean
+  readonly control: SharedArrayBuffer
+}
+
+export type JoinRequest = {
+  readonly memory: WebAssembly.Memory
+  readonly layout: KernelLayout
+  readonly task: KernelTask
+  readonly thread: number
+  readonly control: SharedArrayBuffer
+}
+
+export type RunReport =
+  | { readonly run: number; readonly kind: 'checkpoint'; readonly checkpoint: SimulationCheckpoint }
+  | {
+      readonly run: number
+      readonly kind: 'done'
+      readonly profile: DetectionProfile
+      readonly kernelSeconds: number
+      readonly memoryBytes: number
+    }
+  | { readonly run: number; readonly kind: 'cancelled'; readonly checkpoint: SimulationCheckpoint }
+  | { readonly run: number; readonly kind: 'failed'; readonly message: string }
+
+/** Words of the control block that threads of one run share. */
+export const Control = {
+  /** 1 once the run is to stop at once. */
+  Cancel: 0,
+  /** The next block that nobody has claimed; CLOSED while the threads are to come to rest. */
+  NextBlock: 1,
+  /** Helpers that hold a block, or are about to claim one. */
+  Busy: 2,
+  /** Counts up when there may be work; helpers sleep on it. */
+  Generation: 3,
+  /** 1 once the run is over and helpers go home. */
+  Over: 4,
+  BlocksDone: 5,
+  /** Patterns in a block; 0 until the run has been packed. */
+  BlockWidth: 6,
+  /** Length of the block. */
+  words: 8,
+} as const
+
+export const CLOSED = 0x3fffffff

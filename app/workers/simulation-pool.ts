@@ -1,0 +1,230 @@
+import { MessageChannel, Worker, type MessagePort } from 'node:worker_threads'
+import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
+import { kernelTaskOf, type KernelTask } from '../engine/simulate/kernel-task.ts'
+import type { BitPlane } from '../engine/simulate/pattern-set.ts'
+import type { SimulationResult, SimulationTask } from '../engine/simulate/simulation.ts'
+import {
+  Control,
+  type RunReport,
+  type RunRequest,
+  type SimulateWorkerData,
+  type SimulationCheckpoint,
+} from './simulate-protocol.ts'
+
+export type { SimulationCheckpoint } from './simulate-protocol.ts'
+
+export type SimulationProgress = {
+  readonly phase: 'packing' | 'simulating'
+  /** Patterns, of all that the set has. */
+  readonly done: number
+  readonly total: number
+  /** Uncollapsed faults × patterns a second, since the run began or was resumed. */
+  readonly pairsPerSecond: number
+}
+
+export type SimulationOptions = {
+  /** At most as many as the pool has; all of them where not said. */
+  readonly threads?: number
+  readonly signal?: AbortSignal
+  readonly onProgress?: (progress: SimulationProgress) => void
+  readonly resumeFrom?: SimulationCheckpoint
+  readonly onCheckpoint?: (checkpoint: SimulationCheckpoint) => void
+}
+
+export type SimulationOutcome =
+  | {
+      readonly state: 'done'
+      readonly result: SimulationResult
+      readonly kernelSeconds: number
+      /** What the kernel's memory took. */
+      readonly memoryBytes: number
+    }
+  | { readonly state: 'cancelled'; readonly checkpoint: SimulationCheckpoint }
+
+/** Threads that simulate one task after the other, in the order in which they were asked for. */
+export type SimulationPool = {
+  readonly threads: number
+  run(task: SimulationTask, options?: SimulationOptions): Promise<SimulationOutcome>
+  /** Stops the threads; a run under way is rejected. */
+  close(): Promise<void>
+}
+
+export type SimulationPoolConfig = {
+  readonly threads: number
+  /** The built kernel. */
+  readonly wasmBytes: Uint8Array
+  /** The script of the threads, where it is not beside this file. */
+  readonly workerUrl?: URL
+}
+
+const PROGRESS_MILLISECONDS = 100
+
+/** Starts the threads at once, so that they are ready when the first task has been read. */
+export function createSimulationPool(config: SimulationPoolConfig): SimulationPool {
+  const threads = Math.max(1, Math.floor(config.threads))
+  let crew: Crew | null = startCrew(threads, config)
+  let last: Promise<unknown> = Promise.resolve()
+  let runs = 0
+  const close = async (): Promise<void> => {
+    const leaving = crew
+    crew = null
+    await leaving?.stop()
+  }
+  const run = async (task: SimulationTask, options: SimulationOptions): Promise<SimulationOutcome> => {
+    crew ??= startCrew(threads, config)
+    try {
+      return await runOn(crew, ++runs, task, {
+        ...options,
+        threads: Math.min(threads, options.threads ?? threads),
+      })
+    } catch (error) {
+      await close()
+      throw error
+    }
+  }
+  return {
+    threads,
+    run(task, options = {}) {
+      const outcome = last.then(() => run(task, options))
+      last = outcome.catch(() => undefined)
+      return outcome
+    },
+    close,
+  }
+}
+
+type Crew = {
+  readonly coordinator: Worker
+  readonly stop: () => Promise<void>
+}
+
+function startCrew(threads: number, { wasmBytes, workerUrl }: SimulationPoolConfig): Crew {
+  const script = workerUrl ?? new URL('./simulate-worker.ts', import.meta.url)
+  const start = (data: SimulateWorkerData, ports: readonly MessagePort[]): Worker => {
+    const worker = new Worker(script, {
+      workerData: data,
+      transferList: [...ports],
+      name: `simulate ${data.role}`,
+    })
+    worker.unref()
+    return worker
+  }
+  const channels = Array.from({ length: threads - 1 }, () => new MessageChannel())
+  const ports = channels.map((channel) => channel.port1)
+  const coordinator = start({ role: 'coordinator', wasmBytes, helpers: ports }, ports)
+  const helpers = channels.map(({ port2 }) =>
+    start({ role: 'helper', wasmBytes, coordinator: port2 }, [port2]),
+  )
+  return {
+    coordinator,
+    async stop() {
+      await Promise.all([coordinator, ...helpers].map((worker) => worker.terminate()))
+    },
+  }
+}
+
+function runOn(
+  crew: Crew,
+  run: number,
+  task: SimulationTask,
+  options: SimulationOptions & { readonly threads: number },
+): Promise<SimulationOutcome> {
+  const { coordinator } = crew
+  const { signal, onProgress, onCheckpoint } = options
+  const control = new SharedArrayBuffer(4 * Control.words)
+  const words = new Int32Array(control)
+  const started = performance.now()
+  const total = task.patterns.nPatterns
+  const resumeFrom = options.resumeFrom ?? null
+  const report = (): void => onProgress?.(progressOf(words, task, resumeFrom, started))
+
+  return new Promise((resolve, reject) => {
+    const cancel = (): void => {
+      Atomics.store(words, Control.Cancel, 1)
+    }
+    const settle = (end: () => void): void => {
+      clearInterval(timer)
+      signal?.removeEventListener('abort', cancel)
+      coordinator.off('message', onMessage).off('error', onError).off('exit', onExit)
+      coordinator.unref()
+      end()
+    }
+    const onError = (error: Error): void => settle(() => reject(error))
+    const onExit = (): void => settle(() => reject(new Error('the simulation threads have stopped')))
+    const onMessage = (message: RunReport): void => {
+      if (message.run !== run) return
+      switch (message.kind) {
+        case 'checkpoint':
+          onCheckpoint?.(message.checkpoint)
+          return
+        case 'cancelled':
+          return settle(() => resolve({ state: 'cancelled', checkpoint: message.checkpoint }))
+        case 'failed':
+          return settle(() => reject(new Error(message.message)))
+        case 'done': {
+          const { profile, kernelSeconds, memoryBytes } = message
+          onProgress?.({ ...progressOf(words, task, resumeFrom, started), done: total })
+          settle(() => resolve({ state: 'done', result: resultOf(profile), kernelSeconds, memoryBytes }))
+        }
+      }
+    }
+    const timer = setInterval(report, PROGRESS_MILLISECONDS)
+    if (signal?.aborted) cancel()
+    signal?.addEventListener('abort', cancel)
+    coordinator.on('message', onMessage).on('error', onError).on('exit', onExit)
+    coordinator.ref()
+    coordinator.postMessage({
+      run,
+      task: shareable(kernelTaskOf(task)),
+      threads: options.threads,
+      resumeFrom,
+      wantCheckpoints: onCheckpoint !== undefined,
+      control,
+    } satisfies RunRequest)
+  })
+}
+
+function resultOf(profile: DetectionProfile): SimulationResult {
+  return { profile, matrix: null }
+}
+
+function progressOf(
+  control: Int32Array,
+  task: SimulationTask,
+  resumeFrom: SimulationCheckpoint | null,
+  started: number,
+): SimulationProgress {
+  const total = task.patterns.nPatterns
+  const blocks = Atomics.load(control, Control.BlocksDone)
+  const width = Atomics.load(control, Control.BlockWidth)
+  const done = Math.min(total, blocks * width)
+  const seconds = (performance.now() - started) / 1000
+  const fresh = Math.max(0, done - (resumeFrom?.patternsDone ?? 0))
+  return {
+    phase: width === 0 ? 'packing' : 'simulating',
+    done,
+    total,
+    pairsPerSecond: seconds > 0 ? (fresh * task.faults.nFaults) / seconds : 0,
+  }
+}
+
+/** Puts pattern words where all threads can read them, so that they are copied once and not once a thread. */
+function shareable(task: KernelTask): KernelTask {
+  const { patterns } = task
+  return {
+    ...task,
+    patterns: {
+      ...patterns,
+      value: sharedPlane(patterns.value),
+      unknown: patterns.unknown && sharedPlane(patterns.unknown),
+      observed: patterns.observed && sharedPlane(patterns.observed),
+    },
+  }
+}
+
+function sharedPlane(plane: BitPlane): BitPlane {
+  if (plane.words.buffer instanceof SharedArrayBuffer) return plane
+  const words = new Uint32Array(new SharedArrayBuffer(plane.words.byteLength))
+  words.set(plane.words)
+  return { ...plane, words }
+}
