@@ -1,0 +1,268 @@
+import type { FaultList } from '../faults/fault-list.ts'
+import { coverageByArea } from '../quality/area-shares.ts'
+import { sortIntoBlocks } from '../quality/block-coverage.ts'
+import { countFaults } from '../quality/count-faults.ts'
+import { bandNarrowings } from '../quality/escape-band.ts'
+import type { Product } from '../quality/product.ts'
+import { type Assumptions, sensitivityOf } from '../quality/sensitivity.ts'
+import { type FaultCounts, testCoverage } from '../quality/test-coverage.ts'
+import { chainsByShiftRate, sitesByEfficiency, steppedAround } from '../quality/what-if.ts'
+import { resolveYield } from '../quality/yield.ts'
+import { perDeviceMs } from '../tester/multi-site.ts'
+import { burstMeasures, matchProgram, type ProgramRow } from '../tester/program.ts'
+import type { Tester } from '../tester/tester.ts'
+import { costOfTime } from '../tester/tester-hours.ts'
+import { buildTimeModel, type PatternFacts, type ScanFacts, timeColumns } from '../tester/time-model.ts'
+import { chooseCut, type Goal, type Limit } from './budget.ts'
+import type { ChoiceTask } from './choice-task.ts'
+import { curveOf } from './coverage-curve.ts'
+import { deliveredOrder } from './delivered-order.ts'
+import { type Headroom, headroomOf } from './headroom.ts'
+import { cutsAllowed } from './cuts-allowed.ts'
+import type { CoverageCurve, Order } from './order.ts'
+import type { Marker, MarkerName, MovedOutcome, PlanResult, TimeOutcome } from './plan-result.ts'
+import { figuresAt, type PointFigures } from './point-figures.ts'
+import { type PricedOrder, type Pricing, priceOrder } from './price.ts'
+import { leastTotal, nextMillisecondBuysLess } from './stopping-rules.ts'
+
+/** Everything that a plan is made from. */
+export type PlanInput = {
+  readonly faults: FaultList
+  /** Length faults.nClasses: 1 where the class is proven untestable with free inputs. Null: nothing was proven. */
+  readonly untestable: Uint8Array | null
+  /** The choice that the order was made for: its matrix, weights, constraints and number of detections. */
+  readonly task: ChoiceTask
+  /** The weight of all faults of the base, by which coverage is divided. */
+  readonly total: number
+  readonly order: Order
+  readonly patterns: PatternFacts
+  /** The name of the pattern file, by which a row of the program list may mean it. */
+  readonly patternFile: string
+  readonly scan: ScanFacts
+  readonly tester: Tester
+  readonly product: Product
+  readonly program: readonly ProgramRow[]
+  readonly limits: readonly Limit[]
+  readonly goals: readonly Goal[]
+  /** bounds[k − 1]: no k of the patterns detect more. Null where none was worked out. */
+  readonly ceiling: Float64Array | null
+  /** Returns a bound on what any choice within a budget detects, for patterns that differ in cost; null for none. */
+  readonly ceilingWithin: Headroom['ceilingWithin']
+  readonly smallest: NonNullable<PlanResult['smallest']> | null
+  /** How many patterns run at the knee of the curve; null where it has none. */
+  readonly knee: number | null
+  /** The coverage, 0..1, that a millisecond must buy; a marker stands where none after it does. */
+  readonly worthOfMillisecond?: number
+}
+
+/** A plan, and the columns behind it for restating every figure at any other cut. */
+export type Plan = {
+  readonly result: PlanResult
+  readonly curve: CoverageCurve
+  readonly priced: PricedOrder
+  readonly pricing: Pricing
+  readonly counts: FaultCounts
+}
+
+const WORTH_OF_MILLISECOND = 0.0005
+const EFFICIENCIES = [0.8, 0.9, 0.95, 0.98, 1]
+const RATE_FACTORS = [0.5, 1, 1.5, 2]
+
+/** Prices an order, finds the cut that limits and goals ask for, and works out what hangs on it. */
+export function buildPlan(input: PlanInput): Plan {
+  const { faults, task, order, patterns, tester, product, limits, goals, total } = input
+  const counts = countFaults(faults, input.untestable)
+  const plainTask = { ...task, weights: classSizes(input), detections: 1 }
+  const isPlain =
+    task.detections === 1 && task.weights.every((weight, row) => weight === plainTask.weights[row])
+  const curve = curveOf(task, order, total)
+  const plainCurve = isPlain ? curve : curveOf(plainTask, order, counts.all)
+  const coverageOf = coveragesForQuality(input, plainTask, counts)
+  const coverage = coverageOf(order, plainCurve)
+
+  const deliveredCoverage = testCoverage(plainCurve.detected[patterns.nPatterns], counts)
+  const pricingFor = pricingOf(input, deliveredCoverage)
+  const pricing = pricingFor({ tester, product })
+  const priced = priceOrder(order.sequence, coverage, pricing)
+  const mayCut = cutsAllowed(task.rules, order)
+  const request = { curve, priced, chosen: order.chosen, mayCut, limits, goals }
+  const cut = chooseCut(request)
+  const at = (k: number): PointFigures => figuresAt(k, curve, priced, pricing)
+
+  const figures = at(cut.patterns)
+  return {
+    result: {
+      orderName: order.name,
+      order: Array.from(order.sequence, (pattern) => pattern + 1),
+      curve: Array.from(curve.detected.subarray(1)),
+      total,
+      ceiling: input.ceiling === null ? [] : Array.from(input.ceiling),
+      limits,
+      goals,
+      budget: {
+        ...figures,
+        chosen: Array.from(order.sequence.subarray(0, cut.patterns), (pattern) => pattern + 1),
+        plainDetected: plainCurve.detected[cut.patterns],
+        plainCoverage: counts.all > 0 ? plainCurve.detected[cut.patterns] / counts.all : 0,
+      },
+      gap:
+        input.ceiling === null
+          ? null
+          : headroomOf(figures, cut, { ceiling: input.ceiling, ceilingWithin: input.ceilingWithin, pricing }),
+      ...(input.smallest === null ? {} : { smallest: input.smallest }),
+      isReached: cut.broken === null && cut.unmet.length === 0,
+      cut,
+      markers: markersOf(),
+      asDelivered: asDelivered(),
+      yield: resolveYield(product, deliveredCoverage),
+      bandNarrowings: bandNarrowings(product, pricing.trueYield, figures.testCoverage),
+      sensitivity: sensitivityOf({ tester, product }, pricing.trueYield, movedOutcome),
+      whatIf: whatIf(),
+    },
+    curve,
+    priced,
+    pricing,
+    counts,
+  }
+
+  function markersOf(): readonly Marker[] {
+    const places: [MarkerName, number | null][] = [
+      ['goal', goals.length > 0 ? chooseCut(request).patterns : null],
+      ['limit', limits.length > 0 ? chooseCut({ ...request, goals: [] }).patterns : null],
+      ['knee', input.knee],
+      [
+        'next millisecond',
+        nextMillisecondBuysLess(
+          curve,
+          priced.milliseconds,
+          order.chosen,
+          input.worthOfMillisecond ?? WORTH_OF_MILLISECOND,
+        ),
+      ],
+      ['least total', priced.totalPerYear === null ? null : leastTotal(priced.totalPerYear, order.chosen)],
+      ['all', order.chosen],
+    ]
+    return places
+      .flatMap(([name, k]): Marker[] => (k === null ? [] : [{ name, figures: at(k) }]))
+      .sort((a, b) => a.figures.patterns - b.figures.patterns)
+  }
+
+  function asDelivered(): PlanResult['asDelivered'] {
+    const delivered = deliveredOrder(task.rules)
+    const itsCurve = curveOf(task, delivered, total)
+    const itsPlain = isPlain ? itsCurve : curveOf(plainTask, delivered, counts.all)
+    const itsPriced = priceOrder(delivered.sequence, coverageOf(delivered, itsPlain), pricing)
+    const itsFigures = (k: number): PointFigures => figuresAt(k, itsCurve, itsPriced, pricing)
+    const same = itsCurve.detected.findIndex((weight) => weight >= figures.detected)
+    const sameLimits = chooseCut({
+      curve: itsCurve,
+      priced: itsPriced,
+      chosen: delivered.chosen,
+      mayCut: cutsAllowed(task.rules, delivered),
+      limits,
+      goals: [],
+    })
+    return {
+      curve: Array.from(itsCurve.detected.subarray(1)),
+      sameDetected: same < 0 ? null : itsFigures(same),
+      sameLimits: itsFigures(sameLimits.patterns),
+    }
+  }
+
+  function movedOutcome(moved: Assumptions): MovedOutcome {
+    const repriced = priceOrder(order.sequence, coverage, pricingFor(moved))
+    const totals = repriced.totalPerYear
+    const cheapest = totals === null ? null : leastTotal(totals, order.chosen)
+    return {
+      patterns: chooseCut({ ...request, priced: repriced }).patterns,
+      leastTotalPatterns: cheapest,
+      leastTotal: totals === null || cheapest === null ? null : totals[cheapest],
+      dppm: repriced.dppm[cut.patterns],
+      perDeviceMilliseconds: repriced.perDeviceMilliseconds[cut.patterns],
+      costPerDevice: repriced.costPerDevice[cut.patterns],
+      totalPerYear: totals === null ? null : totals[cut.patterns],
+    }
+  }
+
+  function whatIf(): PlanResult['whatIf'] {
+    const running = order.sequence.subarray(0, cut.patterns)
+    const evaluate = (moved: Assumptions): TimeOutcome => {
+      const { time, restMs } = pricingFor(moved)
+      const { sites, multiSiteEfficiency, indexMs, costPerHour } = moved.tester
+      const { milliseconds } = timeColumns(time, running, false, 0)
+      const betweenMs = indexMs + figures.reloads * (moved.tester.reloadMs ?? 0)
+      const ms = perDeviceMs(restMs + milliseconds[cut.patterns], sites, multiSiteEfficiency, betweenMs)
+      return { perDeviceMilliseconds: ms, costPerDevice: costOfTime(ms, costPerHour) }
+    }
+    const now = { tester, product }
+    const { isScan, chains } = pricing.time
+    return {
+      chainsByShiftRate: isScan
+        ? chainsByShiftRate(
+            now,
+            input.scan.flipFlops,
+            steppedAround(chains),
+            RATE_FACTORS.map((factor) => tester.shiftMHz * factor),
+            evaluate,
+          )
+        : null,
+      sitesByEfficiency: sitesByEfficiency(now, steppedAround(tester.sites), EFFICIENCIES, evaluate),
+    }
+  }
+}
+
+function classSizes({ faults, task }: PlanInput): Float64Array {
+  return Float64Array.from(task.matrix.classOfRow, (one) => faults.classSize[one])
+}
+
+/** Returns a function from a tester and a product to what prices stand on; measured corrections stay as they are. */
+function pricingOf(
+  { patterns, patternFile, scan, tester, product, program }: PlanInput,
+  deliveredCoverage: number,
+): (assumptions: Assumptions) => Pricing {
+  const facts = matchProgram(program, patterns, patternFile)
+  const uncorrected = { ...product, timeCorrection: 1, chainTest: false }
+  const computed = buildTimeModel(tester, uncorrected, patterns, scan)
+  const general = { setupMs: product.setupMs, correction: product.timeCorrection }
+  const measures = burstMeasures(facts, patterns, computed, general)
+  return (moved) => ({
+    ...moved,
+    time: buildTimeModel(moved.tester, moved.product, patterns, scan, measures),
+    trueYield: resolveYield(moved.product, deliveredCoverage).value,
+    restMs: moved.product.otherMs + facts.fixedMs,
+  })
+}
+
+/**
+ * Returns a function from an order, with its curve of plain faults, to the test coverage of each prefix that escapes are
+ * reckoned from: over all faults, or by area where the product gives shares.
+ */
+function coveragesForQuality(
+  { faults, untestable, product }: PlanInput,
+  plainTask: ChoiceTask,
+  counts: FaultCounts,
+): (order: Order, plainCurve: CoverageCurve) => Float64Array {
+  if (product.areaShares === null) {
+    return (_, { detected }) => detected.map((count) => testCoverage(count, counts))
+  }
+  const shares = product.areaShares.map(({ share }) => share)
+  const { blockOf, classWeights } = sortIntoBlocks(faults, product.areaShares)
+  const blockCounts = shares.map((_, block) =>
+    countFaults(faults, untestable, (fault) => blockOf[fault] === block),
+  )
+  return (order) => {
+    const curves = classWeights.map((weights) => {
+      const task = {
+        ...plainTask,
+        weights: Float64Array.from(plainTask.matrix.classOfRow, (one) => weights[one]),
+      }
+      return curveOf(task, order, 0).detected
+    })
+    return Float64Array.from(curves[0], (_, k) =>
+      coverageByArea(
+        shares,
+        curves.map((detected, block) => testCoverage(detected[k], blockCounts[block])),
+      ),
+    )
+  }
+}
