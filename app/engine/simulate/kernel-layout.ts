@@ -29,7 +29,8 @@ export type Extent = { readonly at: number; readonly bytes: number }
 
 /** Where everything lies in the kernel's memory, and what a thread must know to load patterns and gather results. */
 export type KernelLayout = {
-  readonly threeValued: boolean
+  /** A source of X drives a net that matters, so that every block is three-valued. */
+  readonly unknownDrivers: boolean
   readonly blockWidth: number
   readonly nNets: number
   readonly nRegions: number
@@ -163,7 +164,7 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     possibly: task.nClasses,
   })
   const layout = {
-    threeValued,
+    unknownDrivers,
     blockWidth,
     nNets,
     nRegions,

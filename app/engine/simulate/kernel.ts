@@ -15,6 +15,9 @@ export type KernelExports = {
   evaluateGood(): void
   simulateRegions(from: number, to: number): void
   simulateTaps(): void
+  evaluateGoodThreeValued(): void
+  simulateRegionsThreeValued(from: number, to: number): void
+  simulateTapsThreeValued(): void
 }
 
 /** Throws where the kernel was built for another layout of memory than this program packs. */
@@ -49,45 +52,80 @@ export class KernelThread {
     this.words = new Uint32Array(memory)
     this.base = layout.ownStart + thread * layout.ownBytes
     kernel.attach(layout.shared.header.at, this.base)
-    this.loadConstants()
   }
 
   /** Simulates one block. `goOn` is asked between parts of it; false stops at once, and the block counts as not done. */
   simulateBlock(block: number, goOn: () => boolean): boolean {
     const { kernel, layout, task } = this
-    this.loadPatterns(block)
+    const threeValued = layout.unknownDrivers || this.hasUnknown(block)
+    const simulateRegions = threeValued ? kernel.simulateRegionsThreeValued : kernel.simulateRegions
+    this.loadConstants(threeValued)
+    this.loadPatterns(block, threeValued)
+    this.loadMasks(block)
     kernel.beginBlock(block * layout.blockWidth, task.detectionLimit)
-    kernel.evaluateGood()
+    if (threeValued) kernel.evaluateGoodThreeValued()
+    else kernel.evaluateGood()
     for (let from = layout.nRegions; from > 0; from -= REGIONS_AT_ONCE) {
       if (!goOn()) return false
-      kernel.simulateRegions(from, Math.max(0, from - REGIONS_AT_ONCE))
+      simulateRegions(from, Math.max(0, from - REGIONS_AT_ONCE))
     }
-    kernel.simulateTaps()
+    if (threeValued) kernel.simulateTapsThreeValued()
+    else kernel.simulateTaps()
     return true
   }
 
-  private loadConstants(): void {
+  private hasUnknown(block: number): boolean {
+    const { unknown } = this.task.patterns
+    if (unknown === null) return false
+    const planeWords = this.layout.blockWidth / 32
+    for (let row = 0; row < unknown.rows; row++) {
+      const from = row * unknown.wordsPerRow + block * planeWords
+      for (let word = from; word < from + planeWords; word++) if (unknown.words[word] !== 0) return true
+    }
+    return false
+  }
+
+  /** Two-valued, a net has one plane; three-valued it has two: known 1, then known 0. */
+  private loadConstants(threeValued: boolean): void {
     const { layout, words } = this
     const planeWords = layout.blockWidth / 32
+    const netWords = threeValued ? 2 * planeWords : planeWords
     for (const { slot, kind } of layout.constants) {
-      const at = ((this.base + layout.own.values.at) >> 2) + slot * planeWords
+      const at = ((this.base + layout.own.values.at) >> 2) + slot * netWords
       words.fill(kind === GateKind.Const1 ? 0xffffffff : 0, at, at + planeWords)
+      if (threeValued) words.fill(kind === GateKind.Const0 ? 0xffffffff : 0, at + planeWords, at + netWords)
     }
   }
 
-  private loadPatterns(block: number): void {
-    const { layout, words, task } = this
-    const { value, observed } = task.patterns
+  private loadPatterns(block: number, threeValued: boolean): void {
+    const { layout, words } = this
+    const { value, unknown } = this.task.patterns
     const planeWords = layout.blockWidth / 32
+    const netWords = threeValued ? 2 * planeWords : planeWords
     const values = (this.base + layout.own.values.at) >> 2
-    const from = block * planeWords
     for (let row = 0; row < value.rows; row++) {
       const slot = layout.slotOfRow[row]
       if (slot < 0) continue
-      const source = row * value.wordsPerRow + from
-      const at = values + slot * planeWords
-      for (let word = 0; word < planeWords; word++) words[at + word] = value.words[source + word]
+      const from = row * value.wordsPerRow + block * planeWords
+      const to = values + slot * netWords
+      for (let word = 0; word < planeWords; word++) {
+        const bits = value.words[from + word]
+        if (!threeValued) words[to + word] = bits
+        else {
+          const known =
+            unknown === null ? -1 : ~unknown.words[row * unknown.wordsPerRow + block * planeWords + word]
+          words[to + word] = bits & known
+          words[to + planeWords + word] = ~bits & known
+        }
+      }
     }
+  }
+
+  private loadMasks(block: number): void {
+    const { layout, words, task } = this
+    const { observed } = task.patterns
+    const planeWords = layout.blockWidth / 32
+    const from = block * planeWords
     const valid = (this.base + layout.own.valid.at) >> 2
     for (let word = 0; word < planeWords; word++) words[valid + word] = this.validBits(from + word)
     if (observed === null) return
@@ -158,6 +196,11 @@ export function gatherProfile(
           return { first: base + own.first.at, detections: base + own.detections.at }
         })
       : [{ first: shared.first.at, detections: shared.detections.at }]
+  for (let thread = 0; thread < threads; thread++) {
+    const own = layout.ownStart + thread * layout.ownBytes + layout.own.possibly.at
+    const threadPossibly = new Uint8Array(memory, own, nClasses)
+    for (let group = 0; group < nClasses; group++) possibly[group] |= threadPossibly[group]
+  }
   for (const source of sources) {
     const threadFirst = new Uint32Array(memory, source.first, nClasses)
     const threadDetections = new Uint32Array(memory, source.detections, nClasses)
@@ -167,6 +210,7 @@ export function gatherProfile(
       if (first[group] < 0 || threadFirst[group] < first[group]) first[group] = threadFirst[group]
     }
   }
+  for (let group = 0; group < nClasses; group++) if (detections[group] > 0) possibly[group] = 0
   if (limit > 0)
     for (let group = 0; group < nClasses; group++) detections[group] = Math.min(limit, detections[group])
   for (const [group, same] of layout.twins) {

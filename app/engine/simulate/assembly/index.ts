@@ -1,4 +1,7 @@
 export { patternsPerBlock } from './plane'
 export { attach, layoutVersion } from './memory'
+export { beginBlock } from './counting'
 export { evaluateGood } from './good'
-export { beginBlock, simulateRegions, simulateTaps } from './regions'
+export { simulateRegions, simulateTaps } from './regions'
+export { evaluateGoodThreeValued } from './three-valued-gates'
+export { simulateRegionsThreeValued, simulateTapsThreeValued } from './three-valued-regions'

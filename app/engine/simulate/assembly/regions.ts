@@ -1,7 +1,5 @@
 import {
   candidates,
-  detections,
-  first,
   gates,
   masks,
   nTaps,
@@ -19,51 +17,14 @@ import {
   watchMasks,
   watchSlots,
 } from './memory'
-import { AND_2, AND_N, ONE_INPUT, SOURCE, XOR_2 } from './good'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, count, firstOf, isEmpty, none } from './plane'
+import { NO_CLASS, countAll, countLimited, isSettled, limit } from './counting'
+import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './good'
+import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, isEmpty } from './plane'
 import { propagateFlip } from './propagate'
 
-const NO_CLASS: u32 = 0xffffffff
 const CANDIDATE_BYTES: i32 = PLANE_BYTES + 16
 
-let blockStart: u32 = 0
-let limit: u32 = 0
 let lastCandidate: usize = 0
-
-/** Prepares for a block whose first pattern has that number. A limit of 0 counts every detection. */
-export function beginBlock(start: u32, detectionLimit: u32): void {
-  blockStart = start
-  limit = detectionLimit
-}
-
-function countAll(group: u32, plane: usize): void {
-  const found = count(plane)
-  if (found == 0) return
-  const at = detections + (<usize>group << 2)
-  const before = load<u32>(at)
-  if (before == 0) store<u32>(first + (<usize>group << 2), blockStart + firstOf(plane))
-  store<u32>(at, before + found)
-}
-
-function countLimited(group: u32, plane: usize): void {
-  const at = first + (<usize>group << 2)
-  const pattern = blockStart + firstOf(plane)
-  let known = atomic.load<u32>(at)
-  while (pattern < known) {
-    const seen = atomic.cmpxchg<u32>(at, known, pattern)
-    if (seen == known) break
-    known = seen
-  }
-  atomic.add<u32>(detections + (<usize>group << 2), count(plane))
-}
-
-// @ts-ignore: decorator
-@inline
-function isSettled(group: u32): bool {
-  return (
-    load<u32>(detections + (<usize>group << 2)) >= limit && load<u32>(first + (<usize>group << 2)) < blockStart
-  )
-}
 
 /** Takes the patterns `seen` & value (or & ~value) as those in which a fault of this class shows at its region's stem. */
 // @ts-ignore: decorator

@@ -1,0 +1,292 @@
+import {
+  candidates,
+  detections,
+  gates,
+  nNets,
+  nTaps,
+  observability,
+  pinClasses,
+  pins,
+  possibly,
+  regions,
+  rowMasks,
+  scratch,
+  sites,
+  taps,
+  valid,
+  watched,
+  watchMasks,
+  watchSlots,
+} from './memory'
+import { NO_CLASS, countAll, countLimited, isSettled, limit } from './counting'
+import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './good'
+import { PLANE_BYTES, PLANE_SHIFT, clear, copy, isEmpty } from './plane'
+import { netValue, truthOfInputs } from './three-valued-gates'
+import { BOTH, DETECTIONS, FLIP, POSSIBLE, TO_X, propagateThreeValued } from './three-valued-propagate'
+
+const CANDIDATE_BYTES: i32 = 2 * PLANE_BYTES + 16
+
+let lastCandidate: usize = 0
+
+/** In which patterns a flip of the net flips its stem, and then in which it turns the stem to X: two planes a net. */
+// @ts-ignore: decorator
+@inline
+function effectsAt(slot: u32): usize {
+  return observability + (<usize>(nNets + (slot << 1)) << PLANE_SHIFT)
+}
+
+// @ts-ignore: decorator
+@inline
+function isOpen(group: u32): bool {
+  return load<u8>(possibly + group) == 0 && load<u32>(detections + (<usize>group << 2)) == 0
+}
+
+/** Counts a class of the patterns `seen` in which its line has the value that the fault takes away. */
+function visitCounting(group: u32, seen: usize, value: usize): void {
+  if (group == NO_CLASS) return
+  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    v128.store(scratch + lane, v128.and(v128.load(seen + lane), v128.load(value + lane)))
+  }
+  countAll(group, scratch)
+}
+
+/** Keeps a class whose result is still open, with the patterns in which it flips its stem or turns it to X. */
+function visitOpen(group: u32, effects: usize, value: usize): void {
+  if (group == NO_CLASS) return
+  if (limit == 0 ? !isOpen(group) : isSettled(group)) return
+  const to = lastCandidate
+  let any = i64x2.splat(0)
+  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    const active = v128.load(value + lane)
+    const flips = v128.and(v128.load(effects + lane), active)
+    const loses = v128.and(v128.load(effects + lane + PLANE_BYTES), active)
+    v128.store(to + lane, flips)
+    v128.store(to + lane + PLANE_BYTES, loses)
+    any = v128.or(any, v128.or(flips, loses))
+  }
+  if (!v128.any_true(any)) return
+  store<u32>(to + 2 * PLANE_BYTES, group)
+  lastCandidate = to + CANDIDATE_BYTES
+}
+
+/** Writes to `to` the patterns of `seen` in which a flip at the pin flips the gate. */
+function sensitiseFlip(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
+  copy(to, seen)
+  if (kind == ONE_INPUT) return
+  const isXor = kind == XOR_2 || kind > AND_N
+  const truth = truthOfInputs(load<u32>(record))
+  for (let other = firstPin; other < end; other += 4) {
+    if (other == pin) continue
+    const at = netValue(load<u32>(other) >> 1)
+    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      let passes = v128.load(at + lane + truth)
+      if (isXor) passes = v128.or(passes, v128.load(at + lane + (truth ^ PLANE_BYTES)))
+      v128.store(to + lane, v128.and(v128.load(to + lane), passes))
+    }
+  }
+}
+
+/**
+ * Writes to `to` the two planes of effects of a flip at the pin, given those of a flip of the gate's output. Where other
+ * inputs are X and none decides the output, a flip away from the deciding value turns the output to X; and an X on
+ * the output turns the stem to X wherever a flip has any effect there.
+ */
+function sensitiseBoth(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, effects: usize, to: usize): void {
+  const isXor = kind == XOR_2 || kind > AND_N
+  const truth = truthOfInputs(load<u32>(record))
+  const own = netValue(load<u32>(pin) >> 1)
+  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    let passes = i64x2.splat(-1)
+    let undecided = i64x2.splat(-1)
+    if (kind != ONE_INPUT) {
+      for (let other = firstPin; other < end; other += 4) {
+        if (other == pin) continue
+        const at = netValue(load<u32>(other) >> 1) + lane
+        const open = v128.load(at + truth)
+        const decides = v128.load(at + (truth ^ PLANE_BYTES))
+        passes = v128.and(passes, isXor ? v128.or(open, decides) : open)
+        undecided = v128.andnot(undecided, decides)
+      }
+    }
+    const flips = v128.load(effects + lane)
+    const loses = v128.load(effects + lane + PLANE_BYTES)
+    v128.store(to + lane, v128.and(flips, passes))
+    let lost = v128.and(loses, passes)
+    if (!isXor) {
+      const toX = v128.and(v128.andnot(undecided, passes), v128.load(own + lane + (truth ^ PLANE_BYTES)))
+      lost = v128.or(lost, v128.and(v128.or(flips, loses), toX))
+    }
+    v128.store(to + lane + PLANE_BYTES, lost)
+  }
+}
+
+/** Walks a region from its stem backwards and counts the detections of all of its lines' faults. */
+function walkCounting(start: u32, stem: u32): void {
+  for (let net = stem + 1; net > start; ) {
+    net--
+    const seen = observability + (<usize>net << PLANE_SHIFT)
+    const site = sites + (<usize>net << 4)
+    visitCounting(load<u32>(site, 0), seen, netValue(net))
+    visitCounting(load<u32>(site, 4), seen, netValue(net) + PLANE_BYTES)
+    const record = gates + (<usize>net << 4)
+    const kind = load<u32>(record) >> 2
+    if (kind == SOURCE) continue
+    const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
+    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
+    for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
+      const source = load<u32>(pin)
+      if (source & 1) {
+        sensitiseFlip(record, kind, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
+      } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
+        const to = scratch + PLANE_BYTES
+        sensitiseFlip(record, kind, pin, firstPin, end, seen, to)
+        visitCounting(load<u32>(classes, 0), to, netValue(source >> 1))
+        visitCounting(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
+      }
+    }
+  }
+}
+
+/** Walks a region from its stem backwards and gathers the classes whose results are open. */
+function walkOpen(start: u32, stem: u32): void {
+  copy(effectsAt(stem), valid)
+  clear(effectsAt(stem) + PLANE_BYTES)
+  lastCandidate = candidates
+  for (let net = stem + 1; net > start; ) {
+    net--
+    const effects = effectsAt(net)
+    const site = sites + (<usize>net << 4)
+    visitOpen(load<u32>(site, 0), effects, netValue(net))
+    visitOpen(load<u32>(site, 4), effects, netValue(net) + PLANE_BYTES)
+    const record = gates + (<usize>net << 4)
+    const kind = load<u32>(record) >> 2
+    if (kind == SOURCE) continue
+    const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
+    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
+    for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
+      const source = load<u32>(pin)
+      if (source & 1) {
+        sensitiseBoth(record, kind, pin, firstPin, end, effects, effectsAt(source >> 1))
+      } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
+        const to = scratch + PLANE_BYTES
+        sensitiseBoth(record, kind, pin, firstPin, end, effects, to)
+        visitOpen(load<u32>(classes, 0), to, netValue(source >> 1))
+        visitOpen(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
+      }
+    }
+  }
+}
+
+/** As propagateThreeValued, with the stem's own observation taken into account. `asked` is used up. */
+function observe(stem: u32, change: u32, ask: u32, asked: usize, reached: usize, possible: usize): void {
+  const watch = load<u8>(watched + stem)
+  const record = gates + (<usize>stem << 4)
+  if (watch == 0) {
+    if (load<u32>(record, 12) != load<u32>(record, 28)) {
+      propagateThreeValued(stem, change, ask, asked, reached, possible)
+    } else {
+      clear(reached)
+      clear(possible)
+    }
+    return
+  }
+  const direct = scratch + 10 * PLANE_BYTES
+  const mask = watch > 1 ? watchMasks + (<usize>load<u32>(watchSlots + (<usize>stem << 2)) << PLANE_SHIFT) : valid
+  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    v128.store(direct + lane, v128.and(v128.load(asked + lane), v128.load(mask + lane)))
+    v128.store(asked + lane, v128.andnot(v128.load(asked + lane), v128.load(mask + lane)))
+  }
+  if (watch == 1 || isEmpty(asked)) {
+    clear(reached)
+    clear(possible)
+  } else propagateThreeValued(stem, change, ask, asked, reached, possible)
+  const to = change == FLIP ? reached : possible
+  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    v128.store(to + lane, v128.or(v128.load(to + lane), v128.load(direct + lane)))
+  }
+}
+
+/** Propagates what the gathered classes do to their stem and writes down what comes of it. */
+function settleOpen(stem: u32): void {
+  if (lastCandidate == candidates) return
+  const asked = scratch + 3 * PLANE_BYTES
+  const reached = scratch + 4 * PLANE_BYTES
+  const flipPossible = scratch + 5 * PLANE_BYTES
+  const lossPossible = scratch + 6 * PLANE_BYTES
+  const unused = scratch + 7 * PLANE_BYTES
+  const ask = limit == 0 ? POSSIBLE : BOTH
+  clear(asked)
+  clear(unused)
+  for (let at = candidates; at < lastCandidate; at += CANDIDATE_BYTES) {
+    const mayBePossible = load<u8>(possibly + load<u32>(at + 2 * PLANE_BYTES)) == 0
+    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      v128.store(asked + lane, v128.or(v128.load(asked + lane), v128.load(at + lane)))
+      if (mayBePossible) {
+        v128.store(unused + lane, v128.or(v128.load(unused + lane), v128.load(at + lane + PLANE_BYTES)))
+      }
+    }
+  }
+  const losses = scratch + 12 * PLANE_BYTES
+  copy(losses, unused)
+  if (isEmpty(asked)) {
+    clear(reached)
+    clear(flipPossible)
+  } else observe(stem, FLIP, ask, asked, reached, flipPossible)
+  if (isEmpty(losses)) clear(lossPossible)
+  else observe(stem, TO_X, POSSIBLE, losses, unused, lossPossible)
+
+  for (let at = candidates; at < lastCandidate; at += CANDIDATE_BYTES) {
+    const group = load<u32>(at + 2 * PLANE_BYTES)
+    let maybe = i64x2.splat(0)
+    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      const flips = v128.load(at + lane)
+      maybe = v128.or(maybe, v128.and(flips, v128.load(flipPossible + lane)))
+      maybe = v128.or(maybe, v128.and(v128.load(at + lane + PLANE_BYTES), v128.load(lossPossible + lane)))
+      v128.store(at + lane, v128.and(flips, v128.load(reached + lane)))
+    }
+    if (v128.any_true(maybe)) store<u8>(possibly + group, 1)
+    if (limit != 0 && !isEmpty(at)) countLimited(group, at)
+  }
+}
+
+/** Simulates the faults of regions `from` − 1 down to `to`; every later region must have been done in this block. */
+export function simulateRegionsThreeValued(from: u32, to: u32): void {
+  const asked = scratch + 3 * PLANE_BYTES
+  const unused = scratch + 7 * PLANE_BYTES
+  for (let region = from; region > to; ) {
+    region--
+    const start = load<u32>(regions + (<usize>region << 2))
+    const stem = load<u32>(regions + (<usize>region << 2), 4) - 1
+    if (limit == 0) {
+      copy(asked, valid)
+      observe(stem, FLIP, DETECTIONS, asked, observability + (<usize>stem << PLANE_SHIFT), unused)
+      walkCounting(start, stem)
+    }
+    walkOpen(start, stem)
+    settleOpen(stem)
+  }
+}
+
+/** Counts the faults on flip-flops' data pins and output taps, which one response row alone observes. */
+export function simulateTapsThreeValued(): void {
+  const end = taps + (<usize>nTaps << 4)
+  for (let tap = taps; tap < end; tap += 16) {
+    const row = load<u32>(tap, 12)
+    const seen = row == NO_CLASS ? valid : rowMasks + (<usize>row << PLANE_SHIFT)
+    const value = netValue(load<u32>(tap, 0))
+    for (let stuck: u32 = 0; stuck < 2; stuck++) {
+      const group = load<u32>(tap + 4 + (stuck << 2))
+      if (group == NO_CLASS) continue
+      const active = value + (<usize>stuck << PLANE_SHIFT)
+      if (limit == 0) visitCounting(group, seen, active)
+      else if (!isSettled(group)) {
+        for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+          v128.store(scratch + lane, v128.and(v128.load(seen + lane), v128.load(active + lane)))
+        }
+        if (!isEmpty(scratch)) countLimited(group, scratch)
+      }
+    }
+  }
+}
