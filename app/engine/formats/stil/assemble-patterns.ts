@@ -1,0 +1,716 @@
+import {
+  PATTERNS_PER_BLOCK,
+  WORDS_PER_BLOCK,
+  emptyPlane,
+  type BitPlane,
+  type PatternBurst,
+  type PatternSet,
+} from '../../simulate/pattern-set.ts'
+import {
+  CHARACTERS,
+  COMPARE_MASK,
+  Compare,
+  DRIVE_MASK,
+  Drive,
+  PULSE,
+  type CompiledTable,
+} from './compile-table.ts'
+import type { PinMap } from './match-netlist.ts'
+import type { PatternRunner } from './run-patterns.ts'
+
+/** Why a pattern counts for time and not for coverage. */
+export type TimeOnlyReason =
+  | 'more than one capture'
+  | 'other clocks than the scan clocks'
+  | 'clocks at different times'
+  | 'nothing but a load and an unload'
+
+export type AssemblyCounts = {
+  /** Cycles before the first pattern of each burst, and after the last. */
+  openingCycles: number
+  closingCycles: number
+  timeOnly: Map<TimeOnlyReason, { count: number; first: number }>
+  /** Patterns whose flip-flops were not loaded in this pattern and are taken as X. */
+  stateNotLoaded: number
+  /** Expected values that were not used, by why. */
+  unusedExpects: { afterCapture: number; otherInputs: number; threeState: number }
+  /** Loads whose data are shorter or longer than their chain. */
+  wrongLengths: Map<string, { found: number; expected: number }>
+  /** Names of inputs without a value when a pattern captured. */
+  inputsWithoutValue: Set<number>
+  /** Levels seen, by signal: 1 low, 2 high, 4 unknown; at shifts and when patterns compare or capture. */
+  shiftLevels: Uint8Array
+  frameLevels: Uint8Array
+  pulsedInShift: Uint8Array
+  pulsedInCapture: Uint8Array
+}
+
+/** Bits of all planes together that a set may have, a gigabyte. */
+const MAX_PLANE_WORDS = 1 << 28
+
+/** One plane while patterns are still coming: a piece of rows × WORDS_PER_BLOCK words for each block of patterns. */
+class GrowingPlane {
+  private readonly rows: number
+  private readonly blocks: Uint32Array[] = []
+
+  constructor(rows: number) {
+    this.rows = rows
+  }
+
+  block(pattern: number): Uint32Array {
+    const at = Math.floor(pattern / PATTERNS_PER_BLOCK)
+    while (this.blocks.length <= at) this.blocks.push(new Uint32Array(this.rows * WORDS_PER_BLOCK))
+    return this.blocks[at]
+  }
+
+  finish(nPatterns: number): BitPlane {
+    const plane = emptyPlane(this.rows, nPatterns)
+    this.blocks.forEach((block, at) => {
+      if (at * PATTERNS_PER_BLOCK >= Math.max(1, nPatterns)) return
+      for (let row = 0; row < this.rows; row++) {
+        const from = row * WORDS_PER_BLOCK
+        plane.words.set(
+          block.subarray(from, from + WORDS_PER_BLOCK),
+          row * plane.wordsPerRow + at * WORDS_PER_BLOCK,
+        )
+      }
+    })
+    return plane
+  }
+}
+
+/** Data of a chain as the last shift left them, decoded once it is known how many pulses followed. */
+type PendingLoad = { text: string; from: number; stride: number; left: number; table: CompiledTable | null }
+
+/**
+ * Turns the cycles and shifts of a run into patterns. A pattern starts with a load, which is also the unload of the
+ * pattern before; without scan it is one vector that compares, with the vectors before it. Its values are those of the
+ * inputs when it captures, or, without a capture, when it first compares.
+ *
+ * Bit order: the first character of scan-in data ends in the cell next to scan-out, and the first character of scan-out
+ * data shows that cell.
+ */
+export class PatternAssembler {
+  nPatterns = 0
+  /** Compares and loads so far; loops look at it. */
+  events = 0
+  /** Captures of the open pattern. */
+  captures = 0
+  readonly counts: AssemblyCounts
+
+  private readonly pins: PinMap
+  private readonly maxPatterns: number
+  private readonly nInputs: number
+  private readonly nOutputs: number
+  private readonly value: GrowingPlane
+  private readonly known: GrowingPlane
+  private readonly expected: GrowingPlane
+  private readonly care: GrowingPlane
+  private readonly cycles: number[] = []
+  private readonly timeOnly: number[] = []
+  private readonly withoutCapture: number[] = []
+  private readonly dependent: number[] = []
+  private readonly bursts: PatternBurst[] = []
+  private burst = { name: '', first: 0 }
+
+  private scanOpen = false
+  private loading = false
+  private loadMark = 0
+  private boundary = 0
+  private sawBoundary = false
+  private strobed = false
+  private reason: TimeOnlyReason | null = null
+  private frame: Uint8Array | null = null
+  private readonly levels: Uint8Array
+  private readonly load: PendingLoad[]
+  private loadPending = false
+  private shiftsBefore = 0
+  private shiftsAfter = 0
+  private readonly shiftState: Uint8Array
+  private shiftClocks: Set<number> | null = null
+  private readonly clockLevel: Uint8Array
+  private clockedWithoutLoad = false
+  private readonly pulsing: number[] = []
+  private run: PatternRunner | null = null
+
+  constructor(pins: PinMap, nSignals: number, maxPatterns: number = Infinity) {
+    this.pins = pins
+    this.maxPatterns = maxPatterns
+    this.nInputs = pins.inputSignal.length
+    this.nOutputs = pins.outputSignal.length
+    this.value = new GrowingPlane(this.nInputs + pins.nFlipFlops)
+    this.known = new GrowingPlane(this.nInputs + pins.nFlipFlops)
+    this.expected = new GrowingPlane(this.nOutputs + pins.nFlipFlops)
+    this.care = new GrowingPlane(this.nOutputs + pins.nFlipFlops)
+    this.levels = new Uint8Array(this.nInputs)
+    this.load = pins.chains.map(() => ({ text: '', from: 0, stride: 1, left: 0, table: null }))
+    this.shiftState = new Uint8Array(nSignals)
+    this.clockLevel = new Uint8Array(pins.clocks.length)
+    this.counts = {
+      openingCycles: 0,
+      closingCycles: 0,
+      timeOnly: new Map(),
+      stateNotLoaded: 0,
+      unusedExpects: { afterCapture: 0, otherInputs: 0, threeState: 0 },
+      wrongLengths: new Map(),
+      inputsWithoutValue: new Set(),
+      shiftLevels: new Uint8Array(nSignals),
+      frameLevels: new Uint8Array(nSignals),
+      pulsedInShift: new Uint8Array(nSignals),
+      pulsedInCapture: new Uint8Array(nSignals),
+    }
+  }
+
+  get hasEnough(): boolean {
+    return this.nPatterns >= this.maxPatterns
+  }
+
+  /** True where the set would need more memory than a reading may take. */
+  get isTooLarge(): boolean {
+    const rows = 2 * (this.nInputs + this.nOutputs + 2 * this.pins.nFlipFlops)
+    return (rows * this.nPatterns) / 32 > MAX_PLANE_WORDS
+  }
+
+  attach(run: PatternRunner): void {
+    this.run = run
+  }
+
+  beginBurst(name: string): void {
+    this.burst = { name, first: this.nPatterns }
+    this.boundary = this.now()
+    this.sawBoundary = false
+    this.shiftClocks = null
+    this.clockedWithoutLoad = false
+    this.clockLevel.fill(0)
+  }
+
+  endBurst(): void {
+    const closing = this.now() - this.boundary
+    if (this.scanOpen && !this.strobed && this.nPatterns > this.burst.first) {
+      this.discard()
+      this.counts.closingCycles += closing
+    } else if (this.scanOpen) {
+      this.closePattern(this.now(), false)
+    } else {
+      this.counts.closingCycles += closing
+    }
+    this.scanOpen = false
+    const count = this.nPatterns - this.burst.first
+    if (count > 0) this.bursts.push({ name: this.burst.name, first: this.burst.first, count })
+  }
+
+  beginLoad(): void {
+    this.loading = true
+    this.loadMark = this.now()
+    this.shiftsBefore = 0
+  }
+
+  endLoad(): void {
+    this.loading = false
+  }
+
+  addCaptures(more: number): void {
+    if (more <= 0) return
+    this.captures += more
+    this.timeOnlyFor('more than one capture')
+  }
+
+  /** One vector outside of Shift. */
+  cycle(run: PatternRunner): void {
+    const clocked = this.clockEdges(run)
+    if (clocked && this.isShiftPulse(run)) {
+      if (run.compares > 0 && this.captures === 1 && this.shiftsBefore === 0) this.strobeAfterCapture(run)
+      if (this.loading && !this.loadPending) this.shiftsBefore++
+      else this.shiftsAfter++
+      return
+    }
+    if (run.compares > 0) this.strobe(run, clocked)
+    if (clocked) this.capture(run)
+    if (!this.scanOpen && this.strobed) this.closePattern(this.now(), false)
+  }
+
+  /** A shift of that many rounds; `shifted` are the signals that take a character a round from their data. */
+  shift(run: PatternRunner, length: number, vectors: number, shifted: readonly number[]): void {
+    this.events++
+    this.clockEdges(run)
+    const start = this.loading ? this.loadMark : this.now() - length * vectors
+    if (this.scanOpen) {
+      this.decodeLoad()
+      this.unload(run)
+      this.closePattern(start, true)
+    } else if (!this.sawBoundary) {
+      this.counts.openingCycles += start - this.boundary
+      this.sawBoundary = true
+      this.boundary = start
+    }
+    this.openPattern()
+    this.scanOpen = true
+    this.clockedWithoutLoad = false
+    this.shiftsBefore = 0
+    this.shiftsAfter = 0
+    this.loadPending = true
+    this.pins.chains.forEach((chain, at) => {
+      const load = this.load[at]
+      const { scanInSignal } = chain
+      const passed = scanInSignal >= 0 && shifted.includes(scanInSignal)
+      load.left = passed ? Math.max(0, run.argumentLeft[scanInSignal]) : 0
+      load.table = run.table
+      if (load.left === 0) return
+      load.text = run.argumentText[scanInSignal]
+      load.from = run.argumentFrom[scanInSignal]
+      load.stride = run.argumentStride[scanInSignal]
+      if (chain.length !== null && load.left !== chain.length) {
+        this.counts.wrongLengths.set(chain.name, { found: load.left, expected: chain.length })
+      }
+    })
+    this.shiftState.set(run.state)
+    this.noteShift(run, shifted)
+  }
+
+  /** Returns the set, with the cycles of each pattern; null where there is no pattern. */
+  finish(): PatternSet | null {
+    const { nPatterns } = this
+    if (nPatterns === 0) return null
+    const value = this.value.finish(nPatterns)
+    const known = this.known.finish(nPatterns)
+    const expected = { value: this.expected.finish(nPatterns), care: this.care.finish(nPatterns) }
+    const timeOnly = this.flags(this.timeOnly)
+    const withoutCapture = this.flags(this.withoutCapture)
+    return {
+      nPatterns,
+      value,
+      unknown: complement(known, nPatterns),
+      expected,
+      observed: this.observed(expected.care),
+      cycles: Uint32Array.from(this.cycles),
+      timeOnly,
+      withoutCapture,
+      dependsOnPrevious: this.flags(this.dependent),
+      bursts: this.bursts,
+    }
+  }
+
+  private flags(patterns: readonly number[]): Uint8Array | null {
+    if (patterns.length === 0) return null
+    const flags = new Uint8Array(this.nPatterns)
+    for (const pattern of patterns) flags[pattern] = 1
+    return flags
+  }
+
+  /** What is compared, less the unloads that only show what was loaded, since no fault simulation tells of those. */
+  private observed(care: BitPlane): BitPlane {
+    if (this.withoutCapture.length === 0) return care
+    const words = care.words.slice()
+    for (const pattern of this.withoutCapture) {
+      const clear = ~(1 << (pattern & 31))
+      for (let row = this.nOutputs; row < care.rows; row++) {
+        words[row * care.wordsPerRow + (pattern >>> 5)] &= clear
+      }
+    }
+    return { rows: care.rows, wordsPerRow: care.wordsPerRow, words }
+  }
+
+  private now(): number {
+    return this.run?.counts.cycles ?? 0
+  }
+
+  private openPattern(): void {
+    this.nPatterns++
+    this.captures = 0
+    this.strobed = false
+    this.reason = null
+    this.frame = null
+  }
+
+  private closePattern(end: number, unloaded: boolean): void {
+    const pattern = this.nPatterns - 1
+    this.decodeLoad()
+    this.cycles[pattern] = end - this.boundary
+    this.boundary = end
+    if (this.scanOpen) {
+      if (this.captures === 0) this.withoutCapture.push(pattern)
+      if (this.captures === 0 && !this.strobed && unloaded)
+        this.timeOnlyFor('nothing but a load and an unload')
+    } else {
+      this.counts.stateNotLoaded++
+      if (this.clockedWithoutLoad) this.dependent.push(pattern)
+      this.strobed = false
+    }
+    if (this.reason !== null) {
+      this.timeOnly.push(pattern)
+      const seen = this.counts.timeOnly.get(this.reason)
+      if (seen === undefined) this.counts.timeOnly.set(this.reason, { count: 1, first: pattern })
+      else seen.count++
+      this.clearRows(this.care, this.nOutputs + this.pins.nFlipFlops, pattern)
+      this.clearRows(this.expected, this.nOutputs + this.pins.nFlipFlops, pattern)
+    }
+    this.captures = 0
+    this.sawBoundary = true
+  }
+
+  private discard(): void {
+    const pattern = this.nPatterns - 1
+    this.loadPending = false
+    const rows = this.nInputs + this.pins.nFlipFlops
+    this.clearRows(this.value, rows, pattern)
+    this.clearRows(this.known, rows, pattern)
+    this.nPatterns--
+  }
+
+  private timeOnlyFor(reason: TimeOnlyReason): void {
+    this.reason ??= reason
+  }
+
+  private clearRows(plane: GrowingPlane, rows: number, pattern: number, first = 0): void {
+    const block = plane.block(pattern)
+    const clear = ~(1 << (pattern & 31))
+    const word = wordOf(pattern)
+    for (let row = first; row < rows; row++) block[row * WORDS_PER_BLOCK + word] &= clear
+  }
+
+  /** Fills `pulsing` with the clocks that leave their rest level in this cycle; true where any does. */
+  private clockEdges(run: PatternRunner): boolean {
+    const { clocks } = this.pins
+    this.pulsing.length = 0
+    for (let at = 0; at < clocks.length; at++) {
+      const { signal, rest } = clocks[at]
+      const flag = run.table.flags[run.table.row[signal] * CHARACTERS + run.state[signal]]
+      if ((flag & PULSE) !== 0) this.pulsing.push(signal)
+      const level = flag & DRIVE_MASK
+      const active = (flag & PULSE) === 0 && rest !== null && (level === Drive.Low || level === Drive.High)
+      const isActive = active && level !== (rest === 1 ? Drive.High : Drive.Low) ? 1 : 0
+      if (isActive === 1 && this.clockLevel[at] === 0) this.pulsing.push(signal)
+      this.clockLevel[at] = isActive
+    }
+    return this.pulsing.length > 0
+  }
+
+  /** Whether a pulse outside of Shift moves the chains on, since the scan enables are as they were in Shift. */
+  private isShiftPulse(run: PatternRunner): boolean {
+    const { scanEnables, scanInputs } = this.pins
+    if (!this.scanOpen && !this.loading) return false
+    if (scanEnables.length > 0) {
+      return scanEnables.every(({ signal, capture }) => {
+        const level = run.table.flags[run.table.row[signal] * CHARACTERS + run.state[signal]] & DRIVE_MASK
+        return level === (capture === 1 ? Drive.Low : Drive.High)
+      })
+    }
+    if (!this.loadPending || !this.loading) return false
+    return scanInputs.every((signal) => run.state[signal] === this.shiftState[signal])
+  }
+
+  private strobe(run: PatternRunner, clocked: boolean): void {
+    this.events++
+    if (!this.scanOpen && !this.strobed) {
+      if (!this.sawBoundary) this.sawBoundary = true
+      this.openPattern()
+    }
+    if (this.captures > 0) {
+      this.strobeAfterCapture(run)
+      return
+    }
+    this.strobed = true
+    const time = clocked ? this.edgeTime(run) : NaN
+    this.readLevels(run)
+    if (this.frame === null) this.keepFrame(run)
+    else if (!this.sameFrame()) {
+      this.counts.unusedExpects.otherInputs += run.compares
+      return
+    }
+    const pattern = this.nPatterns - 1
+    const expected = this.expected.block(pattern)
+    const care = this.care.block(pattern)
+    const bit = 1 << (pattern & 31)
+    const word = wordOf(pattern)
+    const { outputSignal } = this.pins
+    const { table, state } = run
+    for (let row = 0; row < outputSignal.length; row++) {
+      const signal = outputSignal[row]
+      if (signal < 0) continue
+      const at = table.row[signal] * CHARACTERS + state[signal]
+      const compare = table.flags[at] & COMPARE_MASK
+      if (compare === Compare.None) continue
+      if (compare === Compare.Other) {
+        this.counts.unusedExpects.threeState++
+        continue
+      }
+      if (clocked && table.shapes[table.shape[at]].strobe >= time) {
+        this.counts.unusedExpects.afterCapture++
+        continue
+      }
+      care[row * WORDS_PER_BLOCK + word] |= bit
+      if (compare === Compare.High) expected[row * WORDS_PER_BLOCK + word] |= bit
+    }
+  }
+
+  /** After one capture the scan-outs show their last cells' new values; other outputs depend on them and are not used. */
+  private strobeAfterCapture(run: PatternRunner): void {
+    const pattern = this.nPatterns - 1
+    const { table, state } = run
+    let used = 0
+    if (this.captures === 1 && this.scanOpen) {
+      for (const chain of this.pins.chains) {
+        if (chain.scanOutSignal < 0 || chain.flipFlop.length === 0) continue
+        const code = state[chain.scanOutSignal]
+        const compare = table.flags[table.row[chain.scanOutSignal] * CHARACTERS + code] & COMPARE_MASK
+        if (compare === Compare.None) continue
+        used++
+        if (compare !== Compare.Other) this.expectCell(chain, chain.flipFlop.length - 1, compare, pattern)
+      }
+    }
+    this.counts.unusedExpects.afterCapture += run.compares - used
+  }
+
+  private capture(run: PatternRunner): void {
+    if (!this.scanOpen) {
+      this.clockedWithoutLoad = true
+      return
+    }
+    this.captures++
+    for (const signal of this.pulsing) this.counts.pulsedInCapture[signal] = 1
+    if (this.captures > 1) {
+      this.timeOnlyFor('more than one capture')
+      return
+    }
+    if (this.shiftClocks !== null) {
+      const same =
+        this.pulsing.length === this.shiftClocks.size && this.pulsing.every((it) => this.shiftClocks?.has(it))
+      if (!same) this.timeOnlyFor('other clocks than the scan clocks')
+    }
+    if (new Set(this.pulsing.map((signal) => edgeOf(run, signal))).size > 1) {
+      this.timeOnlyFor('clocks at different times')
+    }
+    this.readLevels(run)
+    if (this.frame === null) this.keepFrame(run)
+    else if (!this.sameFrame()) {
+      const pattern = this.nPatterns - 1
+      this.counts.unusedExpects.otherInputs += this.countCares(pattern)
+      this.clearRows(this.care, this.nOutputs, pattern)
+      this.clearRows(this.expected, this.nOutputs, pattern)
+      this.keepFrame(run)
+    }
+  }
+
+  private countCares(pattern: number): number {
+    const block = this.care.block(pattern)
+    const word = wordOf(pattern)
+    let count = 0
+    for (let row = 0; row < this.nOutputs; row++) {
+      count += (block[row * WORDS_PER_BLOCK + word] >>> (pattern & 31)) & 1
+    }
+    return count
+  }
+
+  /** Levels of the inputs in this cycle: a clock at rest, another pin that pulses as it is at the strobe or the edge. */
+  private readLevels(run: PatternRunner): void {
+    const { inputSignal, isClock, restLevel } = this.pins
+    const { table, state } = run
+    let time = NaN
+    for (let row = 0; row < inputSignal.length; row++) {
+      const signal = inputSignal[row]
+      if (signal < 0) {
+        this.levels[row] = Drive.Unknown
+        continue
+      }
+      if (isClock[signal] === 1 && restLevel[signal] !== Drive.None) {
+        this.levels[row] = restLevel[signal]
+        continue
+      }
+      const at = table.row[signal] * CHARACTERS + state[signal]
+      const flag = table.flags[at]
+      let level = flag & DRIVE_MASK
+      if ((flag & PULSE) !== 0 && isClock[signal] === 0) {
+        if (Number.isNaN(time)) time = this.momentOf(run)
+        level = levelAt(table, at, time)
+      }
+      this.levels[row] = level
+    }
+  }
+
+  /** When inputs count in this cycle: at the first strobe, or at the clock edge. */
+  private momentOf(run: PatternRunner): number {
+    let moment = Infinity
+    const { table, state } = run
+    if (run.compares > 0) {
+      for (const signal of this.pins.outputSignal) {
+        if (signal < 0) continue
+        const { strobe } = table.shapes[table.shape[table.row[signal] * CHARACTERS + state[signal]]]
+        if (strobe < moment) moment = strobe
+      }
+    }
+    if (moment === Infinity) moment = this.edgeTime(run)
+    return moment
+  }
+
+  private edgeTime(run: PatternRunner): number {
+    let earliest = Infinity
+    for (const signal of this.pulsing) {
+      const edge = edgeOf(run, signal)
+      if (edge < earliest) earliest = edge
+    }
+    return earliest === Infinity ? NaN : earliest
+  }
+
+  private sameFrame(): boolean {
+    const { frame, levels } = this
+    if (frame === null) return false
+    for (let row = 0; row < levels.length; row++) if (frame[row] !== levels[row]) return false
+    return true
+  }
+
+  /** Makes the levels just read the pattern's input values. */
+  private keepFrame(run: PatternRunner): void {
+    const pattern = this.nPatterns - 1
+    if (this.frame === null) this.noteFrame(run)
+    this.frame ??= new Uint8Array(this.nInputs)
+    this.frame.set(this.levels)
+    const value = this.value.block(pattern)
+    const known = this.known.block(pattern)
+    const bit = 1 << (pattern & 31)
+    const word = wordOf(pattern)
+    for (let row = 0; row < this.nInputs; row++) {
+      const at = row * WORDS_PER_BLOCK + word
+      const level = this.levels[row]
+      value[at] = level === Drive.High ? value[at] | bit : value[at] & ~bit
+      known[at] = level === Drive.High || level === Drive.Low ? known[at] | bit : known[at] & ~bit
+      const signal = this.pins.inputSignal[row]
+      if (level === Drive.None && signal >= 0 && this.pins.isScanPin[signal] === 0) {
+        this.counts.inputsWithoutValue.add(signal)
+      }
+    }
+  }
+
+  /** Writes the scan-in data of the last shift to the flip-flops' rows of the open pattern. */
+  private decodeLoad(): void {
+    if (!this.loadPending) return
+    this.loadPending = false
+    const pattern = this.nPatterns - 1
+    const value = this.value.block(pattern)
+    const known = this.known.block(pattern)
+    const bit = 1 << (pattern & 31)
+    const word = wordOf(pattern)
+    this.pins.chains.forEach((chain, at) => {
+      const { text, from, stride, left, table } = this.load[at]
+      const { flipFlop, loadInverted, scanInSignal } = chain
+      if (left === 0 || table === null || scanInSignal < 0) return
+      const row = table.row[scanInSignal] * CHARACTERS
+      const firstCell = left - 1 + this.shiftsAfter
+      for (let index = Math.max(0, firstCell - flipFlop.length + 1); index < left; index++) {
+        const code = text.charCodeAt(from + index * stride)
+        const level = code < CHARACTERS ? table.flags[row + code] & DRIVE_MASK : Drive.Unknown
+        if (level !== Drive.Low && level !== Drive.High) continue
+        const cell = firstCell - index
+        const target = (this.nInputs + flipFlop[cell]) * WORDS_PER_BLOCK + word
+        known[target] |= bit
+        if ((level === Drive.High) !== (loadInverted[cell] === 1)) value[target] |= bit
+      }
+    })
+  }
+
+  /** Writes what this shift expects at the scan-outs to the pattern that it unloads. */
+  private unload(run: PatternRunner): void {
+    if (this.reason !== null) return
+    const pattern = this.nPatterns - 1
+    const { table } = run
+    for (const chain of this.pins.chains) {
+      const signal = chain.scanOutSignal
+      if (signal < 0 || run.argumentLeft[signal] <= 0) continue
+      const { flipFlop } = chain
+      const text = run.argumentText[signal]
+      const from = run.argumentFrom[signal]
+      const stride = run.argumentStride[signal]
+      const left = run.argumentLeft[signal]
+      const row = table.row[signal] * CHARACTERS
+      let lastCell = -1
+      for (let index = 0; index < left; index++) {
+        const code = text.charCodeAt(from + index * stride)
+        if (code >= CHARACTERS) continue
+        const compare = table.flags[row + code] & COMPARE_MASK
+        if (compare === Compare.None) continue
+        if (compare === Compare.Other) {
+          this.counts.unusedExpects.threeState++
+          continue
+        }
+        if (lastCell < 0) {
+          const { strobe } = table.shapes[table.shape[row + code]]
+          const shifts = this.shiftsBefore + (strobe >= this.lastEdge(run) ? 1 : 0)
+          lastCell = flipFlop.length - 1 - shifts
+          if (lastCell < 0) break
+        }
+        const cell = lastCell - index
+        if (cell < 0) break
+        this.expectCell(chain, cell, compare, pattern)
+      }
+    }
+  }
+
+  private lastEdge(run: PatternRunner): number {
+    let latest = -Infinity
+    for (const signal of this.pulsing) {
+      const edge = edgeOf(run, signal)
+      if (edge > latest) latest = edge
+    }
+    return latest === -Infinity ? NaN : latest
+  }
+
+  private expectCell(chain: PinMap['chains'][number], cell: number, compare: number, pattern: number): void {
+    const at = (this.nOutputs + chain.flipFlop[cell]) * WORDS_PER_BLOCK + wordOf(pattern)
+    const bit = 1 << (pattern & 31)
+    this.care.block(pattern)[at] |= bit
+    if ((compare === Compare.High) !== (chain.unloadInverted[cell] === 1))
+      this.expected.block(pattern)[at] |= bit
+  }
+
+  private noteShift(run: PatternRunner, shifted: readonly number[]): void {
+    if (this.pulsing.length > 0) {
+      this.shiftClocks ??= new Set()
+      for (const signal of this.pulsing) {
+        this.shiftClocks.add(signal)
+        this.counts.pulsedInShift[signal] = 1
+      }
+    }
+    this.noteLevels(run, this.counts.shiftLevels)
+    for (const signal of shifted) this.counts.shiftLevels[signal] |= 4
+  }
+
+  private noteFrame(run: PatternRunner): void {
+    if (this.scanOpen) this.noteLevels(run, this.counts.frameLevels)
+  }
+
+  private noteLevels(run: PatternRunner, seen: Uint8Array): void {
+    const { table, state } = run
+    for (let signal = 0; signal < state.length; signal++) {
+      const level = table.flags[table.row[signal] * CHARACTERS + state[signal]] & DRIVE_MASK
+      seen[signal] |= level === Drive.Low ? 1 : level === Drive.High ? 2 : 4
+    }
+  }
+}
+
+function wordOf(pattern: number): number {
+  return (pattern & (PATTERNS_PER_BLOCK - 1)) >>> 5
+}
+
+function edgeOf(run: PatternRunner, signal: number): number {
+  const { table, state } = run
+  return table.shapes[table.shape[table.row[signal] * CHARACTERS + state[signal]]].edge
+}
+
+function levelAt(table: CompiledTable, at: number, time: number): number {
+  let found: number = Drive.Unknown
+  for (const { time: from, level } of table.shapes[table.shape[at]].levels) if (from <= time) found = level
+  return found
+}
+
+/** The inverse of a plane over the patterns of the set; null where nothing is left. */
+function complement(plane: BitPlane, nPatterns: number): BitPlane | null {
+  const words = new Uint32Array(plane.words.length)
+  let any = 0
+  const whole = nPatterns >>> 5
+  const rest = (1 << (nPatterns & 31)) - 1
+  for (let row = 0; row < plane.rows; row++) {
+    const first = row * plane.wordsPerRow
+    for (let word = 0; word < whole; word++) any |= words[first + word] = ~plane.words[first + word]
+    if (rest !== 0) any |= words[first + whole] = ~plane.words[first + whole] & rest
+  }
+  return any === 0 ? null : { rows: plane.rows, wordsPerRow: plane.wordsPerRow, words }
+}
