@@ -1,0 +1,22 @@
+/** The light theme's colours: reports are for paper. The same values as the window's tokens. */
+export const PALETTE = {
+  text: '#15201d',
+  text2: '#46544f',
+  text3: '#5c6a65',
+  surface: '#ffffff',
+  ground: '#eef1f0',
+  chartGround: '#edf1ef',
+  line: '#dde3e1',
+  lineStrong: '#b7c2be',
+  cut: '#bf4408',
+  cutText: '#a83a04',
+  cutWash: '#fdf0e8',
+  series1: '#0d62bd',
+  series2: '#586064',
+  series3: '#5a2b63',
+  series4: '#009392',
+  limit: '#33413c',
+  hatch: '#d3d7d5',
+  bad: '#b3202c',
+  good: '#17713f',
+} as const
