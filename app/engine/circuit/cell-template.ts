@@ -27,7 +27,7 @@ export type CellTemplate = {
 export function buildCellTemplate(functions: readonly CellFunction[], nVariables: number): CellTemplate {
   const uses = new Uint32Array(nVariables)
   const simple = functions.map(simplified)
-  for (const of of simple) countUses(of, uses)
+  for (const each of simple) countUses(each, uses)
   const gates = new IntList()
   const useNet = new Int32Array(nVariables).fill(-1)
   const useInput = new Int32Array(nVariables).fill(-1)

@@ -36,9 +36,28 @@ export const Operation = {
   ThreeState: 3,
   /** nmos (0) or pmos (1): output bit, data bit, control bit. */
   Switch: 4,
-  /** module name, instance name, number of connections; each: pin name (−1: by position), number of bits, bits msb first. */
+  /** module name, instance name, 1 where parameters are overridden, number of connections; each: pin name (−1: by position), number of bits, bits msb first. */
   Instance: 5,
 } as const
+
+/** Where the statement at that place of the stream ends. */
+export function itemEnd(items: Int32Array, at: number): number {
+  switch (items[at]) {
+    case Operation.Gate:
+      return at + 5 + items[at + 4]
+    case Operation.Connect:
+      return at + 4
+    case Operation.FlipFlop:
+      return at + 5
+    case Operation.Instance: {
+      let end = at + 6
+      for (let count = items[at + 5]; count > 0; count--) end += 2 + items[end + 1]
+      return end
+    }
+    default:
+      return at + 6
+  }
+}
 
 /** One module as it was written, before anything is known about the modules that it instantiates. */
 export class ParsedModule {

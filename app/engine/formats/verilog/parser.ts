@@ -236,7 +236,7 @@ export class VerilogParser {
       if (word !== null) range = this.parseNetType()
       const place = this.lexer.start
       const name = this.expectName('the name of a port')
-      const signal = this.declare(name, flags | SignalFlag.Typed, range, place)
+      const signal = this.declareSignal(name, flags | SignalFlag.Typed, range, place)
       this.module.ports.push(signal)
       if (this.lexer.token === Sign.equals)
         this.unsupported(place, this.lexer.end, 'an initial value of a port')
@@ -311,7 +311,7 @@ export class VerilogParser {
   }
 
   /** Declares a name, or completes an earlier declaration of it (port list, direction, type). */
-  private declare(name: number, flags: number, range: Range | null, place: number): number {
+  private declareSignal(name: number, flags: number, range: Range | null, place: number): number {
     const { module } = this
     let signal = this.signalNamed(name)
     if (signal < 0) {
@@ -442,7 +442,7 @@ export class VerilogParser {
         )
         continue
       }
-      this.declare(name, flags, range, place)
+      this.declareSignal(name, flags, range, place)
       if (this.lexer.token === Sign.equals) this.unsupported(place, this.lexer.end, 'an initial value')
     } while (this.accept(Sign.comma))
     this.expect(Sign.semicolon, `";" or "," after ${module.nSignals > 0 ? 'a port' : 'the declaration'}`)
@@ -471,7 +471,7 @@ export class VerilogParser {
     do {
       const place = lexer.start
       const name = this.expectName('the name of a net')
-      const signal = this.declare(name, typeFlags | SignalFlag.Typed, range, place)
+      const signal = this.declareSignal(name, typeFlags | SignalFlag.Typed, range, place)
       if (lexer.token === Sign.openBracket) this.unsupported(place, lexer.end, 'an array (memory)')
       if (lexer.token === Sign.equals) {
         if (word === 'reg') this.unsupported(place, lexer.end, 'an initial value of a reg')
