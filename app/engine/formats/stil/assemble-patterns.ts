@@ -34,6 +34,8 @@ export type AssemblyCounts = {
   stateNotLoaded: number
   /** Expected values that were not used, by why. */
   unusedExpects: { afterCapture: number; otherInputs: number; threeState: number }
+  /** Unloads of flip-flops whose clock did not pulse: they show what was loaded, and are not compared. */
+  heldUnloads: number
   /** Loads whose data are shorter or longer than their chain. */
   wrongLengths: Map<string, { found: number; expected: number }>
   /** Names of inputs without a value when a pattern captured. */
@@ -128,6 +130,9 @@ export class PatternAssembler {
   private shiftsAfter = 0
   private readonly shiftState: Uint8Array
   private shiftClocks: Set<number> | null = null
+  /** Clocks that pulsed in the open pattern's capture, where others did not; null where all did. */
+  private captured: Set<number> | null = null
+  private readonly flipFlopClocks: Set<number>
   private readonly clockLevel: Uint8Array
   private clockedWithoutLoad = false
   private readonly pulsing: number[] = []
@@ -145,6 +150,7 @@ export class PatternAssembler {
     this.levels = new Uint8Array(this.nInputs)
     this.load = pins.chains.map(() => ({ text: '', from: 0, stride: 1, left: 0, table: null }))
     this.shiftState = new Uint8Array(nSignals)
+    this.flipFlopClocks = new Set(pins.clockOf?.filter((signal) => signal >= 0))
     this.clockLevel = new Uint8Array(pins.clocks.length)
     this.counts = {
       openingCycles: 0,
@@ -152,6 +158,7 @@ export class PatternAssembler {
       timeOnly: new Map(),
       stateNotLoaded: 0,
       unusedExpects: { afterCapture: 0, otherInputs: 0, threeState: 0 },
+      heldUnloads: 0,
       wrongLengths: new Map(),
       inputsWithoutValue: new Set(),
       shiftLevels: new Uint8Array(nSignals),
@@ -320,6 +327,7 @@ export class PatternAssembler {
     this.strobed = false
     this.reason = null
     this.frame = null
+    this.captured = null
   }
 
   private closePattern(end: number, unloaded: boolean): void {
@@ -472,11 +480,7 @@ export class PatternAssembler {
       this.timeOnlyFor('more than one capture')
       return
     }
-    if (this.shiftClocks !== null) {
-      const same =
-        this.pulsing.length === this.shiftClocks.size && this.pulsing.every((it) => this.shiftClocks?.has(it))
-      if (!same) this.timeOnlyFor('other clocks than the scan clocks')
-    }
+    if (!this.areCaptureClocks()) this.timeOnlyFor('other clocks than the scan clocks')
     if (new Set(this.pulsing.map((signal) => edgeOf(run, signal))).size > 1) {
       this.timeOnlyFor('clocks at different times')
     }
@@ -489,6 +493,22 @@ export class PatternAssembler {
       this.clearRows(this.expected, this.nOutputs, pattern)
       this.keepFrame(run)
     }
+  }
+
+  /**
+   * Whether one time frame shows a capture with the clocks that pulse. Where the netlist tells each flip-flop's clock, the
+   * others hold what was loaded; where it does not, the clocks must be those that shift.
+   */
+  private areCaptureClocks(): boolean {
+    const { pulsing, flipFlopClocks, shiftClocks } = this
+    if (this.pins.clockOf === null) {
+      return (
+        shiftClocks === null ||
+        (pulsing.length === shiftClocks.size && pulsing.every((signal) => shiftClocks.has(signal)))
+      )
+    }
+    if (pulsing.length < flipFlopClocks.size) this.captured = new Set(pulsing)
+    return pulsing.every((signal) => flipFlopClocks.has(signal))
   }
 
   private countCares(pattern: number): number {
@@ -654,6 +674,10 @@ export class PatternAssembler {
   }
 
   private expectCell(chain: PinMap['chains'][number], cell: number, compare: number, pattern: number): void {
+    if (this.captured !== null && !this.captured.has(this.pins.clockOf?.[chain.flipFlop[cell]] ?? -1)) {
+      this.counts.heldUnloads++
+      return
+    }
     const at = (this.nOutputs + chain.flipFlop[cell]) * WORDS_PER_BLOCK + wordOf(pattern)
     const bit = 1 << (pattern & 31)
     this.care.block(pattern)[at] |= bit

@@ -15,6 +15,8 @@ export type PinMap = {
   /** Signals that clock or reset, each with the level at which it does neither; null where unknown. */
   readonly clocks: readonly { readonly signal: number; readonly rest: 0 | 1 | null }[]
   readonly isClock: Uint8Array
+  /** The clock of each flip-flop, −1 where it is not known; null where the netlist has no clocks. */
+  readonly clockOf: Int32Array | null
   /** Drive.Low or Drive.High of clocks at rest, by signal; Drive.None of others. */
   readonly restLevel: Uint8Array
   /** Scan enables with their level in capture. */
@@ -97,12 +99,17 @@ export function matchNetlist(
     if (scan === 1) isScanPin[signal] = 1
   })
   const nFlipFlops = circuit?.flipFlops.length ?? 0
+  const clockOf =
+    netlist?.clocks === undefined
+      ? null
+      : Int32Array.from(netlist.clocks, ({ port }) => (port === null ? -1 : signalOf(port)))
   return {
     inputSignal,
     outputSignal,
     nFlipFlops,
     chains,
     clocks,
+    clockOf,
     isClock,
     restLevel,
     scanEnables,

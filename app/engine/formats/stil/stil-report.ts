@@ -1,4 +1,5 @@
 import type { Netlist, TestPin } from '../../circuit/netlist.ts'
+import { countOnes } from '../../simulate/count-ones.ts'
 import type { BitPlane, PatternSet } from '../../simulate/pattern-set.ts'
 import type { AssemblyCounts, TimeOnlyReason } from './assemble-patterns.ts'
 import { pulsingSignals } from './compile-table.ts'
@@ -57,6 +58,8 @@ export type StilReport = {
     readonly scanOuts: number
     /** Expected values of flip-flops as unloaded. */
     readonly unloads: number
+    /** Unloads of flip-flops whose clock did not pulse, which are not compared. */
+    readonly held: number
     readonly unusedAfterCapture: number
     readonly unusedOtherInputs: number
     readonly unusedThreeState: number
@@ -128,6 +131,7 @@ export function buildStilReport(parts: {
           ? 0
           : countRows(care, (row) => row < nOutputs && scanOuts.has(pins.outputSignal[row])),
       unloads: care === undefined ? 0 : countRows(care, (row) => row >= nOutputs),
+      held: assembly.heldUnloads,
       unusedAfterCapture: assembly.unusedExpects.afterCapture,
       unusedOtherInputs: assembly.unusedExpects.otherInputs,
       unusedThreeState: assembly.unusedExpects.threeState,
@@ -146,13 +150,6 @@ function countRows(plane: BitPlane, wanted: (row: number) => boolean): number {
     for (let word = 0; word < plane.wordsPerRow; word++) count += countOnes(plane.words[first + word])
   }
   return count
-}
-
-/** SOURCE: parallel bit count, Warren, Hacker's Delight, section 5-1. */
-function countOnes(word: number): number {
-  let sum = word - ((word >>> 1) & 0x55555555)
-  sum = (sum & 0x33333333) + ((sum >>> 2) & 0x33333333)
-  return (((sum + (sum >>> 4)) & 0x0f0f0f0f) * 0x01010101) >>> 24
 }
 
 const LOW = 1
