@@ -22,10 +22,11 @@ export type CeilingOptions = {
   readonly onProgress?: ChoiceProgress
 }
 
-const USUAL_EFFORT = 2e9
+const USUAL_EFFORT = 4e9
 
-/** Neighbouring budgets share multipliers up to this ratio. */
-const ANCHOR_RATIO = 1.12
+/** Up to so many budgets each get multipliers of their own; of more, those at least an eighth apart do. */
+const MANY_BUDGETS = 100
+const ANCHOR_RATIO = 1.125
 
 /** The budgets under which 1, 2, … nPatterns patterns fit, where costs count patterns. */
 export function patternBudgets(nPatterns: number): Float64Array {
@@ -46,7 +47,7 @@ export function ceilingOf(
 ): Ceiling | null {
   const { effort = USUAL_EFFORT, onProgress = () => true } = options
   const problem = buildDualProblem(task, () => onProgress(0, effort))
-  if (problem === null) return null
+  if (problem === null || !onProgress(0, effort)) return null
   const dual = new LagrangianDual(problem)
   const free = budgets.map((budget) => budget - problem.keptCost)
   const floor = greedyFloor(problem, () => onProgress(0, effort))
@@ -65,10 +66,12 @@ export function ceilingOf(
   }
 
   const anchors = chooseAnchors(free, floor)
+  const turns = effort / anchors.length / (problem.rowStart[problem.nRows] + 1)
+  const patience = Math.max(6, Math.min(30, 2 * turns)) // measured: short where few turns can be paid for
   let spent = 0
   for (const [turn, anchor] of anchors.entries()) {
     const until = spent + (effort - spent) / (anchors.length - turn)
-    const isDone = dual.descend(free[anchor], reachedAt(floor, free[anchor]), (steps) => {
+    const isDone = dual.descend(free[anchor], reachedAt(floor, free[anchor]), patience, (steps) => {
       spent += steps
       if (!onProgress(Math.min(spent, effort), effort)) return 'cancel'
       return spent < until ? 'go on' : 'enough'
@@ -99,14 +102,14 @@ function reachedAt({ cost, weight }: Floor, budget: number): number {
 /** Returns the places of the budgets to optimise for, up to the one within which the greedy choice detects everything. */
 function chooseAnchors(free: Float64Array, { cost }: Floor): number[] {
   const enough = cost[cost.length - 1] ?? 0
-  const anchors: number[] = []
+  const places = [...free.keys()].filter((at) => free[at] > 0 && (at === 0 || free[at - 1] < enough))
+  if (places.length <= MANY_BUDGETS) return places
   let last = 0
-  for (let at = 0; at < free.length && last < enough; at++) {
-    if (free[at] <= 0 || (free[at] < last * ANCHOR_RATIO && free[at] < enough)) continue
-    anchors.push(at)
+  return places.filter((at) => {
+    if (free[at] < last * ANCHOR_RATIO && free[at] < enough) return false
     last = free[at]
-  }
-  return anchors
+    return true
+  })
 }
 
 /** Chooses columns by gain per cost, on the problem's own order of columns, so that the bound does not hang on the file's. */

@@ -53,8 +53,8 @@ export function buildDualProblem(task: ChoiceTask, goOn: () => boolean = () => t
     if ((row & 511) === 0 && !goOn()) return null
     for (let at = rowStart[row]; at < rowStart[row + 1]; at++) columnItems[filled[rowItems[at]]++] = row
   }
-  if (!goOn()) return null
   const unitOfColumn = distinctColumns(units, start, columnItems, task.detections)
+  if (!goOn()) return null
   renumberRows(rowStart, rowItems, unitOfColumn, units.nUnits)
 
   let keptCost = 0

@@ -3,8 +3,11 @@ import type { DualProblem } from './dual-problem.ts'
 /** What the caller of a descent wants next, after so many elementary steps. */
 export type DescentAnswer = 'go on' | 'enough' | 'cancel'
 
-/** Turns without a clear gain after which the search returns to its best multipliers and aims half as far. */
-const PATIENCE = 12
+/** How much of a new subgradient goes into the direction; the rest is the direction before. */
+const FRESH_PART = 0.5
+
+/** Elementary steps between two questions whether to go on: some milliseconds. */
+const STEPS_BETWEEN_QUESTIONS = 4e6
 
 /**
  * The dual of a choice at one set of multipliers λ, kept up to date as they change. All of `lambda`, `gain` and sums of
@@ -28,7 +31,10 @@ export class LagrangianDual {
   readonly #share: Float64Array
   readonly #cover: Float64Array
   readonly #density: Float64Array
+  readonly #direction: Float64Array
   #steps = 0
+  #ask: (steps: number) => DescentAnswer = () => 'go on'
+  #answer: DescentAnswer = 'go on'
 
   /** Starts at λ = w / need, the best multipliers for a budget of one unit where one detection is enough. */
   constructor(problem: DualProblem) {
@@ -43,49 +49,60 @@ export class LagrangianDual {
     this.#share = new Float64Array(nColumns)
     this.#cover = new Float64Array(nRows)
     this.#density = new Float64Array(nColumns)
+    this.#direction = new Float64Array(nRows)
     this.#moveTo(this.best)
   }
 
   /**
    * Lowers the bound for one budget from the multipliers at hand by subgradient steps, until it meets `floor` (a weight
    * that a choice within the budget is known to detect), or steps gain nothing, or `ask` says enough. Ends at `best`.
-   * False when `ask` said cancel.
-   * SOURCE: step length (bound − target) / |direction|², Held, Wolfe & Crowder 1974; a target that comes nearer when it
-   * is not reached, Brännlund 1993.
+   * False when `ask` said cancel. After `patience` turns without a clear gain it returns to `best` and aims half as far.
+   * SOURCE: step length (bound − target) / |direction|², Held, Wolfe & Crowder 1974; directions that keep a part of the
+   * last one, Crowder 1976; a target that comes nearer when it is not reached, Brännlund 1993.
    */
-  descend(budget: number, floor: number, ask: (steps: number) => DescentAnswer): boolean {
-    const { nRows, nColumns, need } = this.problem
-    const cover = this.#cover
-    const lambda = this.#lambda
+  descend(budget: number, floor: number, patience: number, ask: (steps: number) => DescentAnswer): boolean {
+    this.#ask = ask
+    this.#answer = 'go on'
+    const { nRows, nColumns } = this.problem
     let lowest = Infinity
     let aim = Infinity
     let idle = 0
+    let freshPart = 1
     for (;;) {
-      this.#steps = 8 * nRows + 20 * nColumns
+      this.#steps += 8 * nRows + 20 * nColumns
       const bound = this.#take(budget)
       if (aim === Infinity) aim = (bound - floor * this.scale) / 4
       idle = bound < lowest - aim / 2 ? 0 : idle + 1
       if (bound < lowest) {
         lowest = bound
-        this.best.set(lambda)
+        this.best.set(this.#lambda)
       }
-      const answer = ask(this.#steps)
-      if (answer === 'cancel') return false
-      const isIdle = idle >= PATIENCE
-      if (isIdle) {
+      if (idle >= patience) {
         aim /= 2
         idle = 0
+        freshPart = 1
+        this.#moveTo(this.best)
+        if (aim < this.scale / 16) return this.#finish()
+        continue
       }
-      let norm = 0
-      for (let row = 0; row < nRows; row++) {
-        const way = need[row] - cover[row]
-        if ((way > 0 && lambda[row] < this.#cap[row]) || (way < 0 && lambda[row] > 0)) norm += way * way
-      }
+      const norm = this.#turn(freshPart)
+      freshPart = FRESH_PART
       const isMet = Math.floor(lowest / this.scale) <= floor
-      if (isIdle || isMet || norm === 0 || answer === 'enough') this.#moveTo(this.best)
-      if (isMet || norm === 0 || answer === 'enough' || aim < this.scale / 16) return true
-      if (!isIdle) this.#step((bound - lowest + aim) / norm)
+      if (isMet || norm === 0 || !this.#mayGoOn()) return this.#finish()
+      this.#step((bound - lowest + aim) / norm)
     }
+  }
+
+  #finish(): boolean {
+    this.#moveTo(this.best)
+    return this.#answer !== 'cancel'
+  }
+
+  /** Reports the steps since the last time and returns whether the search may go on. */
+  #mayGoOn(): boolean {
+    if (this.#answer === 'go on') this.#answer = this.#ask(this.#steps)
+    this.#steps = 0
+    return this.#answer === 'go on'
   }
 
   /** Returns the bound at the multipliers at hand for each budget, ascending; 0 for one below 0. */
@@ -162,18 +179,35 @@ export class LagrangianDual {
     this.#steps += end - columnAt[column]
   }
 
-  #step(length: number): void {
+  /** Mixes the subgradient at hand into the direction, and returns the squared length of its part that is free to go. */
+  #turn(freshPart: number): number {
     const { nRows, need } = this.problem
+    const cover = this.#cover
+    const direction = this.#direction
+    let norm = 0
     for (let row = 0; row < nRows; row++) {
-      const way = need[row] - this.#cover[row]
-      if (way === 0) continue
-      const wanted = Math.round(this.#lambda[row] + length * way)
+      const way = freshPart * (need[row] - cover[row]) + (1 - freshPart) * direction[row]
+      direction[row] = way
+      const lambda = this.#lambda[row]
+      if ((way > 0 && lambda < this.#cap[row]) || (way < 0 && lambda > 0)) norm += way * way
+    }
+    return norm
+  }
+
+  #step(length: number): void {
+    const { nRows } = this.problem
+    for (let row = 0; row < nRows; row++) {
+      const wanted = Math.round(this.#lambda[row] + length * this.#direction[row])
       this.#setMultiplier(row, Math.max(0, Math.min(this.#cap[row], wanted)))
+      if (this.#steps > STEPS_BETWEEN_QUESTIONS && !this.#mayGoOn()) return
     }
   }
 
   #moveTo(lambda: Float64Array): void {
-    for (let row = 0; row < lambda.length; row++) this.#setMultiplier(row, lambda[row])
+    for (let row = 0; row < lambda.length; row++) {
+      this.#setMultiplier(row, lambda[row])
+      if (this.#steps > STEPS_BETWEEN_QUESTIONS) this.#mayGoOn()
+    }
   }
 
   #setMultiplier(row: number, value: number): void {
