@@ -1,8 +1,15 @@
 import { parentPort, type MessagePort } from 'node:worker_threads'
-import { KernelThread, gatherProfile, resumeProfile } from '../engine/simulate/kernel.ts'
-import { blocksOf, kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simulate/kernel-layout.ts'
+import {
+  KernelThread,
+  blocksBefore,
+  gatherMatrix,
+  gatherProfile,
+  resumeProfile,
+  unitsOf,
+} from '../engine/simulate/kernel.ts'
+import { kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simulate/kernel-layout.ts'
 import { instantiateKernel } from './instantiate-kernel.ts'
-import { simulateBlocks } from './simulate-blocks.ts'
+import { simulateUnits } from './simulate-units.ts'
 import {
   CLOSED,
   Control,
@@ -58,55 +65,45 @@ function runTask(
   for (let thread = 0; thread < threads; thread++) writeOwn(layout, thread, buffer)
   if (resumeFrom !== null) resumeProfile(layout, buffer, resumeFrom.profile)
 
-  const nBlocks = blocksOf(layout, task)
-  const doneBefore = Math.floor((resumeFrom?.patternsDone ?? 0) / layout.blockWidth)
-  Atomics.store(control, Control.NextBlock, doneBefore)
-  Atomics.store(control, Control.BlocksDone, doneBefore)
-  Atomics.store(control, Control.BlockWidth, layout.blockWidth)
+  const units = unitsOf(layout, Math.floor((resumeFrom?.patternsDone ?? 0) / layout.blockWidth))
+  Atomics.store(control, Control.Units, units.count)
   for (let thread = 1; thread < threads; thread++) {
-    helpers[thread - 1]?.postMessage({
-      memory,
-      layout,
-      task,
-      thread,
-      control: request.control,
-    } satisfies JoinRequest)
+    const join: JoinRequest = { memory, layout, units, thread, control: request.control }
+    helpers[thread - 1]?.postMessage(join)
   }
   const started = performance.now()
-  const own = new KernelThread(instantiateKernel(module, memory), layout, task, buffer, 0)
-  const checkpointAt = (blocks: number): SimulationCheckpoint => ({
-    patternsDone: Math.min(task.patterns.nPatterns, blocks * layout.blockWidth),
-    profile: gatherProfile(layout, task, buffer, threads),
+  const own = new KernelThread(instantiateKernel(module, memory), layout, 0)
+  const checkpointAt = (unit: number): SimulationCheckpoint => ({
+    patternsDone: Math.min(task.patterns.nPatterns, blocksBefore(units, unit) * layout.blockWidth),
+    profile: gatherProfile(layout, buffer, threads),
   })
-  let checkpoint = resumeFrom ?? checkpointAt(doneBefore)
+  let checkpoint = resumeFrom ?? checkpointAt(0)
   let nextCheckpoint = started + CHECKPOINT_MILLISECONDS
-  const isDue = (): boolean => performance.now() >= nextCheckpoint
+  const isDue = (unit: number): boolean => unit >= units.inFirstBlock && performance.now() >= nextCheckpoint
 
   for (;;) {
-    const outcome = simulateBlocks(own, control, nBlocks, isDue)
-    if (outcome === 'due') {
-      const blocks = Atomics.exchange(control, Control.NextBlock, CLOSED)
-      waitForHelpers(control)
-      if (Atomics.load(control, Control.Cancel) !== 0) continue
-      const pausedAt = performance.now()
-      checkpoint = checkpointAt(Math.min(blocks, nBlocks))
-      if (request.wantCheckpoints) send({ run, kind: 'checkpoint', checkpoint })
-      Atomics.store(control, Control.NextBlock, blocks)
-      wakeHelpers(control)
-      const now = performance.now()
-      nextCheckpoint = now + Math.max(CHECKPOINT_MILLISECONDS, (now - pausedAt) / CHECKPOINT_SHARE)
-      continue
-    }
-    waitForHelpers(control)
+    const outcome = simulateUnits(own, control, units, isDue)
+    if (outcome !== 'due') waitForHelpers(control)
     if (outcome === 'cancelled' || Atomics.load(control, Control.Cancel) !== 0) {
       send({ run, kind: 'cancelled', checkpoint })
       return
     }
-    const kernelSeconds = (performance.now() - started) / 1000
-    const profile = gatherProfile(layout, task, buffer, threads)
-    send({ run, kind: 'done', profile, kernelSeconds, memoryBytes })
-    return
+    if (outcome === 'finished') break
+    const next = Atomics.exchange(control, Control.NextUnit, CLOSED)
+    waitForHelpers(control)
+    if (Atomics.load(control, Control.Cancel) !== 0) continue
+    const pausedAt = performance.now()
+    checkpoint = checkpointAt(Math.min(next, units.count))
+    if (request.wantCheckpoints) send({ run, kind: 'checkpoint', checkpoint })
+    Atomics.store(control, Control.NextUnit, next)
+    wakeHelpers(control)
+    const now = performance.now()
+    nextCheckpoint = now + Math.max(CHECKPOINT_MILLISECONDS, (now - pausedAt) / CHECKPOINT_SHARE)
   }
+  const kernelSeconds = (performance.now() - started) / 1000
+  const profile = gatherProfile(layout, buffer, threads)
+  const matrix = gatherMatrix(layout, profile, buffer)
+  send({ run, kind: 'done', profile, matrix, kernelSeconds, memoryBytes })
 }
 
 function sharedMemory(pages: number): WebAssembly.Memory {

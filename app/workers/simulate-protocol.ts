@@ -1,5 +1,6 @@
 import type { MessagePort } from 'node:worker_threads'
-import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
+import type { DetectionMatrix, DetectionProfile } from '../engine/simulate/detection-profile.ts'
+import type { Units } from '../engine/simulate/kernel.ts'
 import type { KernelLayout } from '../engine/simulate/kernel-layout.ts'
 import type { KernelTask } from '../engine/simulate/kernel-task.ts'
 
@@ -26,7 +27,7 @@ export type RunRequest = {
 export type JoinRequest = {
   readonly memory: WebAssembly.Memory
   readonly layout: KernelLayout
-  readonly task: KernelTask
+  readonly units: Units
   readonly thread: number
   readonly control: SharedArrayBuffer
 }
@@ -37,6 +38,7 @@ export type RunReport =
       readonly run: number
       readonly kind: 'done'
       readonly profile: DetectionProfile
+      readonly matrix: DetectionMatrix | null
       readonly kernelSeconds: number
       readonly memoryBytes: number
     }
@@ -47,17 +49,17 @@ export type RunReport =
 export const Control = {
   /** 1 once the run is to stop at once. */
   Cancel: 0,
-  /** The next block that nobody has claimed; CLOSED while the threads are to come to rest. */
-  NextBlock: 1,
-  /** Helpers that hold a block, or are about to claim one. */
+  /** The next unit of work that nobody has claimed; CLOSED while the threads are to come to rest. */
+  NextUnit: 1,
+  /** Helpers that hold a unit, or are about to claim one. */
   Busy: 2,
   /** Counts up when there may be work; helpers sleep on it. */
   Generation: 3,
   /** 1 once the run is over and helpers go home. */
   Over: 4,
-  BlocksDone: 5,
-  /** Patterns in a block; 0 until the run has been packed. */
-  BlockWidth: 6,
+  UnitsDone: 5,
+  /** How many units the run has; 0 until it has been packed. */
+  Units: 6,
   /** Length of the block. */
   words: 8,
 } as const

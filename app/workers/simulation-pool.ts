@@ -1,5 +1,4 @@
 import { MessageChannel, Worker, type MessagePort } from 'node:worker_threads'
-import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
 import { kernelTaskOf, type KernelTask } from '../engine/simulate/kernel-task.ts'
 import type { BitPlane } from '../engine/simulate/pattern-set.ts'
 import type { SimulationResult, SimulationTask } from '../engine/simulate/simulation.ts'
@@ -162,9 +161,9 @@ function runOn(
         case 'failed':
           return settle(() => reject(new Error(message.message)))
         case 'done': {
-          const { profile, kernelSeconds, memoryBytes } = message
+          const { profile, matrix, kernelSeconds, memoryBytes } = message
           onProgress?.({ ...progressOf(words, task, resumeFrom, started), done: total })
-          settle(() => resolve({ state: 'done', result: resultOf(profile), kernelSeconds, memoryBytes }))
+          settle(() => resolve({ state: 'done', result: { profile, matrix }, kernelSeconds, memoryBytes }))
         }
       }
     }
@@ -184,10 +183,6 @@ function runOn(
   })
 }
 
-function resultOf(profile: DetectionProfile): SimulationResult {
-  return { profile, matrix: null }
-}
-
 function progressOf(
   control: Int32Array,
   task: SimulationTask,
@@ -195,14 +190,13 @@ function progressOf(
   started: number,
 ): SimulationProgress {
   const total = task.patterns.nPatterns
-  const blocks = Atomics.load(control, Control.BlocksDone)
-  const width = Atomics.load(control, Control.BlockWidth)
-  const done = Math.min(total, blocks * width)
+  const units = Atomics.load(control, Control.Units)
+  const before = resumeFrom?.patternsDone ?? 0
+  const fresh = units === 0 ? 0 : (Atomics.load(control, Control.UnitsDone) / units) * (total - before)
   const seconds = (performance.now() - started) / 1000
-  const fresh = Math.max(0, done - (resumeFrom?.patternsDone ?? 0))
   return {
-    phase: width === 0 ? 'packing' : 'simulating',
-    done,
+    phase: units === 0 ? 'packing' : 'simulating',
+    done: Math.round(before + fresh),
     total,
     pairsPerSecond: seconds > 0 ? (fresh * task.faults.nFaults) / seconds : 0,
   }

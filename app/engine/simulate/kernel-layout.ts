@@ -5,10 +5,10 @@ import type { KernelTask } from './kernel-task.ts'
 import { isInternal, orderNets, type NetOrder } from './net-order.ts'
 
 /** The layout that this packer writes; a kernel built for another one is refused. */
-export const LAYOUT_VERSION = 1
+export const LAYOUT_VERSION = 2
 
 const NO_SLOT = 0xffffffff
-const HEADER_WORDS = 16
+const HEADER_WORDS = 32
 /** Addresses below are left alone. */
 const FIRST_ADDRESS = 1024
 const LINE = 64
@@ -23,77 +23,91 @@ const XOR_N = 5
 const UNWATCHED = 0
 const WATCHED = 1
 const WATCHED_BY_MASK = 2
+const STEM = 4
+
+/** Planes that the kernel needs for intermediate results. */
+const SCRATCH_PLANES = 40
 
 /** A region of memory: byte address and length. */
 export type Extent = { readonly at: number; readonly bytes: number }
 
-/** Where everything lies in the kernel's memory, and what a thread must know to load patterns and gather results. */
+/** Where everything lies in the kernel's memory, and what a thread must know to simulate and to gather results. */
 export type KernelLayout = {
-  /** A source of X drives a net that matters, so that every block is three-valued. */
-  readonly unknownDrivers: boolean
   readonly blockWidth: number
-  readonly nNets: number
+  readonly nBlocks: number
+  readonly nPatterns: number
   readonly nRegions: number
   readonly nClasses: number
-  /** The slot of each input row (primary inputs, then flip-flops), −1 where no observed net depends on it. */
-  readonly slotOfRow: Int32Array
-  /** The response rows that each watch mask gathers, where a pattern's mask says what is observed. */
-  readonly watchRows: readonly (readonly number[])[]
-  readonly nRows: number
-  readonly constants: readonly { readonly slot: number; readonly kind: number }[]
+  readonly detectionLimit: number
+  /** Words of a row of the detection matrix, where one is asked for. */
+  readonly matrixWords: number
   /** Pairs of classes with the same effect at every output: the first gets the second's result. */
   readonly twins: FaultSites['twins']
-  readonly shared: Shared
+  readonly shared: Readonly<Record<SharedTable, Extent>>
   /** What each thread has of its own; the parts of all threads follow each other from `ownStart`. */
-  readonly own: Own
+  readonly own: Readonly<Record<OwnTable, Extent>>
   readonly ownBytes: number
   readonly ownStart: number
 }
 
+/** In the order of the kernel's header, after the counts. */
+const SHARED_TABLES = [
+  'gates',
+  'sites',
+  'pins',
+  'pinClasses',
+  'fanouts',
+  'watched',
+  'watchSlots',
+  'watchRowStart',
+  'watchRows',
+  'regions',
+  'taps',
+  'masks',
+  'constants',
+  'inputSlots',
+  'patternValues',
+  'patternUnknowns',
+  'patternObserved',
+  'counted',
+  'matrix',
+] as const
+
+/** In the order of the header of a thread's own part. Extents count from the part's start. */
+const OWN_TABLES = [
+  'values',
+  'observability',
+  'effects',
+  'known',
+  'knownPass',
+  'settled',
+  'queue',
+  'summary',
+  'undo',
+  'candidates',
+  'watchMasks',
+  'rowMasks',
+  'valid',
+  'scratch',
+  'first',
+  'detections',
+  'possibly',
+] as const
+
+type SharedTable = (typeof SHARED_TABLES)[number] | 'header' | 'first' | 'detections'
+type OwnTable = (typeof OWN_TABLES)[number] | 'header'
+
 /** What is written into the memory before the first block. */
-export type KernelTables = { readonly order: NetOrder; readonly sites: FaultSites }
+export type KernelTables = {
+  readonly order: NetOrder
+  readonly sites: FaultSites
+  readonly constants: readonly { readonly slot: number; readonly kind: number }[]
+  /** The response rows that each watch mask gathers, where a pattern's mask says what is observed. */
+  readonly watchRows: readonly (readonly number[])[]
+  readonly unknownDrivers: boolean
+}
 
 export type KernelPlan = { readonly layout: KernelLayout; readonly tables: KernelTables }
-
-type Shared = Readonly<
-  Record<
-    | 'header'
-    | 'gates'
-    | 'sites'
-    | 'pins'
-    | 'pinClasses'
-    | 'fanouts'
-    | 'watched'
-    | 'watchSlots'
-    | 'regions'
-    | 'taps'
-    | 'masks'
-    | 'first'
-    | 'detections',
-    Extent
-  >
->
-
-/** Offsets from the start of a thread's own part. */
-type Own = Readonly<
-  Record<
-    | 'header'
-    | 'values'
-    | 'observability'
-    | 'queue'
-    | 'summary'
-    | 'undo'
-    | 'candidates'
-    | 'watchMasks'
-    | 'rowMasks'
-    | 'valid'
-    | 'scratch'
-    | 'first'
-    | 'detections'
-    | 'possibly',
-    Extent
-  >
->
 
 /** Lays extents one after the other, each on a cache line. */
 function layOut<K extends string>(
@@ -111,11 +125,10 @@ function layOut<K extends string>(
 
 /** Plans the memory of one task for a kernel whose blocks hold `blockWidth` patterns. */
 export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
-  const { circuit, patterns } = task
+  const { circuit, patterns, nClasses, detectionLimit } = task
   const order = orderNets(circuit)
   const sites = placeFaults(task, order)
   const nNets = order.nets.length
-  const plane = blockWidth / 8
   const nRegions = order.regionStart.length - 1
   const constants: { slot: number; kind: number }[] = []
   let nPins = 0
@@ -127,9 +140,8 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     else if (kind !== GateKind.Input && kind !== GateKind.FlipFlop) constants.push({ slot, kind })
     if (kind === GateKind.Unknown) unknownDrivers = true
   }
-  const threeValued = unknownDrivers || (patterns.unknown?.words.some((word) => word !== 0) ?? false)
   const watchRows = patterns.observed === null ? [] : rowsOfObservedNets(circuit, order)
-  const nRows = patterns.observed === null ? 0 : circuit.outputs.length + circuit.flipFlops.length
+  const rowBytes = 4 * patterns.value.wordsPerRow
 
   const shared = layOut(FIRST_ADDRESS, {
     header: 4 * HEADER_WORDS,
@@ -139,52 +151,63 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     pinClasses: 8 * nPins,
     fanouts: 4 * nPins,
     watched: nNets,
-    watchSlots: 4 * nNets,
+    watchSlots: patterns.observed === null ? 0 : 4 * nNets,
+    watchRowStart: 4 * (watchRows.length + 1),
+    watchRows: 4 * watchRows.reduce((sum, rows) => sum + rows.length, 0),
     regions: 4 * (nRegions + 1),
     taps: 16 * sites.taps.length,
     masks: 4 * 32,
-    first: 4 * task.nClasses,
-    detections: 4 * task.nClasses,
+    constants: 8 * constants.length,
+    inputSlots: 4 * patterns.value.rows,
+    patternValues: patterns.value.rows * rowBytes,
+    patternUnknowns: (patterns.unknown?.rows ?? 0) * rowBytes,
+    patternObserved: (patterns.observed?.rows ?? 0) * rowBytes,
+    counted: rowBytes,
+    matrix: task.wantMatrix ? nClasses * rowBytes : 0,
+    first: 4 * nClasses,
+    detections: 4 * nClasses,
   })
-  const ownClasses = task.detectionLimit === 0 ? task.nClasses : 0
+  const plane = blockWidth / 8
+  const netPlanes = unknownDrivers || patterns.unknown !== null ? 2 : 1
+  const region = largestRegion(circuit, order)
+  // Where all detections count each thread counts for itself; else threads must know what others have found.
+  const ownResults = detectionLimit === 0 ? nClasses : 0
+  const noted = detectionLimit === 0 ? 0 : nNets
   const own = layOut(0, {
     header: 4 * HEADER_WORDS,
-    values: nNets * plane * (threeValued ? 2 : 1),
-    observability: nNets * plane * (threeValued ? 3 : 1),
+    values: nNets * netPlanes * plane,
+    observability: nNets * plane,
+    effects: region.nets * netPlanes * plane,
+    known: noted * plane,
+    knownPass: 4 * noted,
+    settled: nRegions,
     queue: 8 * (Math.floor(nNets / 64) + 1),
     summary: 8 * (Math.floor(nNets / 4096) + 1),
-    undo: nNets * (plane * (threeValued ? 2 : 1) + 16),
-    candidates: largestRegion(circuit, order) * (plane * (threeValued ? 2 : 1) + 16),
+    undo: nNets * (netPlanes * plane + 16),
+    candidates: (region.faults + 1) * (netPlanes * plane + 16),
     watchMasks: watchRows.length * plane,
-    rowMasks: nRows * plane,
+    rowMasks: (patterns.observed?.rows ?? 0) * plane,
     valid: plane,
-    scratch: 16 * plane,
-    first: 4 * ownClasses,
-    detections: 4 * ownClasses,
-    possibly: task.nClasses,
+    scratch: SCRATCH_PLANES * plane,
+    first: 4 * ownResults,
+    detections: 4 * ownResults,
+    possibly: nClasses,
   })
   const layout = {
-    unknownDrivers,
     blockWidth,
-    nNets,
+    nBlocks: Math.ceil(patterns.nPatterns / blockWidth),
+    nPatterns: patterns.nPatterns,
     nRegions,
-    nClasses: task.nClasses,
-    slotOfRow: slotsOfRows(circuit, order),
-    watchRows,
-    nRows,
-    constants,
+    nClasses,
+    detectionLimit,
+    matrixWords: task.wantMatrix ? patterns.value.wordsPerRow : 0,
     twins: sites.twins,
     shared: shared.extents,
     own: own.extents,
     ownBytes: own.end,
     ownStart: shared.end,
   }
-  return { layout, tables: { order, sites } }
-}
-
-/** How many blocks the task's patterns fill. */
-export function blocksOf(layout: KernelLayout, task: KernelTask): number {
-  return Math.ceil(task.patterns.nPatterns / layout.blockWidth)
+  return { layout, tables: { order, sites, constants, watchRows, unknownDrivers } }
 }
 
 /** Bytes of memory that the task takes on that many threads. */
@@ -192,12 +215,60 @@ export function kernelBytes(layout: KernelLayout, threads: number): number {
   return layout.ownStart + threads * layout.ownBytes
 }
 
-/** Writes what all threads share: the circuit's tables and empty results. The memory must be all zero there. */
+/** Writes what all threads share: circuit, patterns, and empty results. The memory must be all zero there. */
 export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBufferLike): void {
   const { circuit, patterns } = task
-  const { layout } = plan
+  const { shared } = plan.layout
+  const { order, sites, constants, watchRows, unknownDrivers } = plan.tables
+  const words = (extent: Extent): Uint32Array => new Uint32Array(memory, extent.at, extent.bytes >> 2)
+  writeCircuit(plan, task, memory)
+  words(shared.regions).set(order.regionStart)
+  const taps = words(shared.taps)
+  sites.taps.forEach((tap, at) => {
+    const row = patterns.observed === null ? NO_SLOT : tap.row
+    taps.set([tap.slot, tap.classes[0], tap.classes[1], row], 4 * at)
+  })
+  const masks = words(shared.masks)
+  for (let inversions = 0; inversions < 4; inversions++) {
+    masks.fill(inversions & 1 ? NO_SLOT : 0, 8 * inversions, 8 * inversions + 4)
+    masks.fill(inversions & 2 ? NO_SLOT : 0, 8 * inversions + 4, 8 * inversions + 8)
+  }
+  const constantTable = words(shared.constants)
+  constants.forEach(({ slot, kind }, at) => {
+    const planes = kind === GateKind.Const1 ? 1 : kind === GateKind.Const0 ? 2 : 0
+    constantTable.set([slot, planes], 2 * at)
+  })
+  const rowStart = words(shared.watchRowStart)
+  watchRows.forEach((rows, watch) => {
+    rowStart[watch + 1] = rowStart[watch] + rows.length
+    words(shared.watchRows).set(rows, rowStart[watch])
+  })
+  const inputSlots = words(shared.inputSlots)
+  circuit.inputs.forEach((net, row) => (inputSlots[row] = order.slotOf[net]))
+  circuit.flipFlops.forEach((net, at) => (inputSlots[circuit.inputs.length + at] = order.slotOf[net]))
+  words(shared.patternValues).set(patterns.value.words)
+  if (patterns.unknown !== null) words(shared.patternUnknowns).set(patterns.unknown.words)
+  if (patterns.observed !== null) words(shared.patternObserved).set(patterns.observed.words)
+  writeCounted(patterns, words(shared.counted))
+  words(shared.first).fill(NO_SLOT)
+  words(shared.header).set([
+    order.nets.length,
+    plan.layout.nRegions,
+    sites.taps.length,
+    constants.length,
+    patterns.value.rows,
+    patterns.observed?.rows ?? 0,
+    watchRows.length,
+    4 * patterns.value.wordsPerRow,
+    Number(unknownDrivers),
+    ...SHARED_TABLES.map((table) => (shared[table].bytes === 0 ? 0 : shared[table].at)),
+  ])
+}
+
+function writeCircuit(plan: KernelPlan, task: KernelTask, memory: ArrayBufferLike): void {
+  const { circuit, patterns } = task
+  const { shared, nRegions } = plan.layout
   const { order, sites } = plan.tables
-  const { shared } = layout
   const words = (extent: Extent): Uint32Array => new Uint32Array(memory, extent.at, extent.bytes >> 2)
   const gates = words(shared.gates)
   const siteTable = words(shared.sites)
@@ -206,22 +277,27 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
   const fanouts = words(shared.fanouts)
   const watched = new Uint8Array(memory, shared.watched.at, shared.watched.bytes)
   const watchSlots = words(shared.watchSlots)
-  const fanoutEnd = new Uint32Array(layout.nNets)
+  const nNets = order.nets.length
+  const fanoutEnd = new Uint32Array(nNets)
 
   let fanoutStart = 0
   let watchSlot = 0
-  for (let slot = 0; slot < layout.nNets; slot++) {
+  for (let slot = 0; slot < nNets; slot++) {
     const net = order.nets[slot]
     gates[4 * slot + 3] = fanoutEnd[slot] = fanoutStart
     fanoutStart += order.uses[net]
-    watched[slot] =
-      order.observed[net] === 0 ? UNWATCHED : patterns.observed === null ? WATCHED : WATCHED_BY_MASK
-    if (watched[slot] === WATCHED_BY_MASK) watchSlots[slot] = watchSlot++
+    if (order.observed[net] === 0) watched[slot] = UNWATCHED
+    else if (patterns.observed === null) watched[slot] = WATCHED
+    else {
+      watched[slot] = WATCHED_BY_MASK
+      watchSlots[slot] = watchSlot++
+    }
   }
-  gates[4 * layout.nNets + 3] = fanoutStart
+  gates[4 * nNets + 3] = fanoutStart
+  for (let region = 1; region <= nRegions; region++) watched[order.regionStart[region] - 1] |= STEM
 
   let pin = 0
-  for (let slot = 0; slot < layout.nNets; slot++) {
+  for (let slot = 0; slot < nNets; slot++) {
     const net = order.nets[slot]
     siteTable[4 * slot] = sites.netClasses[2 * slot]
     siteTable[4 * slot + 1] = sites.netClasses[2 * slot + 1]
@@ -244,55 +320,26 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
     gates[4 * slot + 1] = listed ? firstPin : pins[firstPin] >>> 1
     gates[4 * slot + 2] = listed ? count : pins[pin - 1] >>> 1
   }
-
-  words(shared.regions).set(order.regionStart)
-  const taps = words(shared.taps)
-  sites.taps.forEach((tap, at) => {
-    const row = patterns.observed === null ? NO_SLOT : tap.row
-    taps.set([tap.slot, tap.classes[0], tap.classes[1], row], 4 * at)
-  })
-  const masks = words(shared.masks)
-  for (let inversions = 0; inversions < 4; inversions++) {
-    masks.fill(inversions & 1 ? NO_SLOT : 0, 8 * inversions, 8 * inversions + 4)
-    masks.fill(inversions & 2 ? NO_SLOT : 0, 8 * inversions + 4, 8 * inversions + 8)
-  }
-  words(shared.first).fill(NO_SLOT)
-  words(shared.header).set([
-    layout.nNets,
-    sites.taps.length,
-    shared.gates.at,
-    shared.sites.at,
-    shared.pins.at,
-    shared.pinClasses.at,
-    shared.fanouts.at,
-    shared.watched.at,
-    shared.watchSlots.at,
-    shared.regions.at,
-    shared.taps.at,
-    shared.masks.at,
-  ])
 }
 
-/** Writes the header of one thread's own part. Results are kept apart where all detections count. */
+/** Writes 1 for each pattern that counts for coverage. */
+function writeCounted({ nPatterns, timeOnly }: KernelTask['patterns'], words: Uint32Array): void {
+  words.fill(NO_SLOT, 0, nPatterns >>> 5)
+  if (nPatterns & 31) words[nPatterns >>> 5] = 2 ** (nPatterns & 31) - 1
+  timeOnly?.forEach((only, pattern) => {
+    if (only) words[pattern >>> 5] &= ~(1 << (pattern & 31))
+  })
+}
+
+/** Writes the header of one thread's own part. */
 export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBufferLike): void {
   const { own, shared } = layout
   const base = layout.ownStart + thread * layout.ownBytes
-  const apart = own.first.bytes > 0
-  new Uint32Array(memory, base, HEADER_WORDS).set([
-    base + own.values.at,
-    base + own.observability.at,
-    base + own.queue.at,
-    base + own.summary.at,
-    base + own.undo.at,
-    base + own.candidates.at,
-    base + own.watchMasks.at,
-    base + own.rowMasks.at,
-    base + own.valid.at,
-    base + own.scratch.at,
-    apart ? base + own.first.at : shared.first.at,
-    apart ? base + own.detections.at : shared.detections.at,
-    base + own.possibly.at,
-  ])
+  const addressOf = (table: (typeof OWN_TABLES)[number]): number => {
+    if ((table === 'first' || table === 'detections') && own[table].bytes === 0) return shared[table].at
+    return base + own[table].at
+  }
+  new Uint32Array(memory, base, HEADER_WORDS).set(OWN_TABLES.map(addressOf))
 }
 
 /** The kernel's code for a gate, and whether its inputs are listed in the pin table rather than in its record. */
@@ -310,14 +357,6 @@ function operation(kind: number, inputs: number): { op: number; listed: boolean 
   return { op: ((listed ? AND_N : AND_2) << 2) | inward | outward, listed }
 }
 
-function slotsOfRows(circuit: KernelTask['circuit'], order: NetOrder): Int32Array {
-  const { inputs, flipFlops } = circuit
-  const slots = new Int32Array(inputs.length + flipFlops.length)
-  inputs.forEach((net, row) => (slots[row] = order.slotOf[net]))
-  flipFlops.forEach((net, at) => (slots[inputs.length + at] = order.slotOf[net]))
-  return slots
-}
-
 /** The response rows that observe each observed net, in the order of the nets' slots. */
 function rowsOfObservedNets(circuit: KernelTask['circuit'], order: NetOrder): number[][] {
   const rowsOf = new Map<number, number[]>()
@@ -329,16 +368,20 @@ function rowsOfObservedNets(circuit: KernelTask['circuit'], order: NetOrder): nu
   return [...rowsOf.values()]
 }
 
-/** The most faults that one region, or one tap, can show at once. */
-function largestRegion(circuit: KernelTask['circuit'], order: NetOrder): number {
-  let largest = 2
+/** The most nets that one region has, and the most faults that one region, or one tap, can show at once. */
+function largestRegion(circuit: KernelTask['circuit'], order: NetOrder): { nets: number; faults: number } {
+  let nets = 0
+  let faults = 2
   for (let region = 0; region + 1 < order.regionStart.length; region++) {
-    let lines = 0
-    for (let slot = order.regionStart[region]; slot < order.regionStart[region + 1]; slot++) {
+    const start = order.regionStart[region]
+    const end = order.regionStart[region + 1]
+    let lines = end - start
+    for (let slot = start; slot < end; slot++) {
       const net = order.nets[slot]
-      lines += 1 + (isGate(circuit.kind[net]) ? circuit.faninStart[net + 1] - circuit.faninStart[net] : 0)
+      if (isGate(circuit.kind[net])) lines += circuit.faninStart[net + 1] - circuit.faninStart[net]
     }
-    largest = Math.max(largest, 2 * lines)
+    nets = Math.max(nets, end - start)
+    faults = Math.max(faults, 2 * lines)
   }
-  return largest + 1
+  return { nets, faults }
 }

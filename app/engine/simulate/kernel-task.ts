@@ -14,6 +14,7 @@ export type KernelTask = {
   readonly classes: Uint32Array | null
   readonly patterns: Pick<PatternSet, 'nPatterns' | 'value' | 'unknown' | 'observed' | 'timeOnly'>
   readonly detectionLimit: number
+  readonly wantMatrix: boolean
 }
 
 /** Returns the arrays of a task, without names and whatever else the kernel does not read. Nothing is copied. */
@@ -35,5 +36,6 @@ export function kernelTaskOf(task: SimulationTask): KernelTask {
     classes: task.classes,
     patterns: { nPatterns, value, unknown, observed, timeOnly },
     detectionLimit: task.detectionLimit,
+    wantMatrix: task.wantMatrix,
   }
 }

@@ -1,17 +1,8 @@
-import { detections, first } from './memory'
-import { count, firstOf } from './plane'
+import { detections, first, matrix, rowBytes } from './memory'
+import { blockStart, limit, rangeStart } from './block'
+import { copy, count, firstOf } from './plane'
 
 export const NO_CLASS: u32 = 0xffffffff
-
-let blockStart: u32 = 0
-/** Detections at which a class is no longer simulated; 0: all are counted. */
-export let limit: u32 = 0
-
-/** Prepares for a block whose first pattern has that number. */
-export function beginBlock(start: u32, detectionLimit: u32): void {
-  blockStart = start
-  limit = detectionLimit
-}
 
 /** Counts the patterns of the plane as detections, in results that are this thread's own. */
 export function countAll(group: u32, plane: usize): void {
@@ -21,6 +12,7 @@ export function countAll(group: u32, plane: usize): void {
   const before = load<u32>(at)
   if (before == 0) store<u32>(first + (<usize>group << 2), blockStart + firstOf(plane))
   store<u32>(at, before + found)
+  if (matrix != 0) copy(matrix + <usize>group * rowBytes + (blockStart >> 3), plane)
 }
 
 /** Counts the patterns of the plane, of which there must be some, in results that all threads share. */
@@ -36,11 +28,11 @@ export function countLimited(group: u32, plane: usize): void {
   atomic.add<u32>(detections + (<usize>group << 2), count(plane))
 }
 
-/** True where no pattern of this block can change the result of the class, whatever other threads find. */
+/** True where no pattern from this range on can change the result of the class, whatever other threads find. */
 // @ts-ignore: decorator
 @inline
 export function isSettled(group: u32): bool {
   return (
-    load<u32>(detections + (<usize>group << 2)) >= limit && load<u32>(first + (<usize>group << 2)) < blockStart
+    load<u32>(detections + (<usize>group << 2)) >= limit && load<u32>(first + (<usize>group << 2)) < rangeStart
   )
 }

@@ -1,5 +1,5 @@
 import { gates, masks, nNets, pins, values } from './memory'
-import { AND_2, AND_N, SOURCE, XOR_2 } from './good'
+import { AND_2, AND_N, SOURCE, XOR_2 } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, WIDE, none } from './plane'
 
 /**

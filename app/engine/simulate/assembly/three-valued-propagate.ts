@@ -1,6 +1,8 @@
 import { fanouts, gates, observability, queue, scratch, summary, undo, watched, watchMasks, watchSlots } from './memory'
 import { PLANE_BYTES, PLANE_SHIFT } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
+import { ALWAYS_WATCHED, WATCH_BITS } from './two-valued-propagate'
+import { spend } from './work'
 import { evaluateGate, netValue } from './three-valued-gates'
 
 const UNDO_BYTES: i32 = 2 * PLANE_BYTES + 16
@@ -44,9 +46,11 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
   const stemRecord = gates + (<usize>stem << 4)
   let pending = pushFanouts(fanouts + (<usize>load<u32>(stemRecord, 12) << 2), fanouts + (<usize>load<u32>(stemRecord, 28) << 2), bits, words)
   let gate = stem
+  let evaluated: u32 = 1
   while (pending > 0) {
     gate = takeNext(gate, bits, words)
     pending--
+    evaluated++
     const record = gates + (<usize>gate << 4)
     evaluateGate(record, load<u32>(record), fresh)
     const at = netValue(gate)
@@ -61,7 +65,7 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     }
     if (!v128.any_true(any)) continue
 
-    const watch = load<u8>(watched + gate)
+    const watch = load<u8>(watched + gate) & WATCH_BITS
     if (watch) {
       const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
       any = i64x2.splat(0)
@@ -71,7 +75,7 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
         const diffOne = v128.load(fresh + lane)
         const diffZero = v128.load(fresh + lane + PLANE_BYTES)
         let known = v128.or(one, zero)
-        if (watch > 1) known = v128.and(known, v128.load(mask + lane))
+        if (watch != ALWAYS_WATCHED) known = v128.and(known, v128.load(mask + lane))
         const flipped = v128.and(known, v128.and(diffOne, diffZero))
         const lost = v128.and(known, v128.xor(diffOne, diffZero))
         v128.store(reached + lane, v128.or(v128.load(reached + lane), flipped))
@@ -109,4 +113,5 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     const at = netValue(load<u32>(log + 2 * PLANE_BYTES))
     for (let lane = 0; lane < 2 * PLANE_BYTES; lane += 16) v128.store(at + lane, v128.load(log + lane))
   }
+  spend(evaluated)
 }

@@ -1,8 +1,8 @@
 import {
   candidates,
   detections,
+  effects,
   gates,
-  nNets,
   nTaps,
   observability,
   pinClasses,
@@ -11,6 +11,7 @@ import {
   regions,
   rowMasks,
   scratch,
+  settled,
   sites,
   taps,
   valid,
@@ -18,21 +19,30 @@ import {
   watchMasks,
   watchSlots,
 } from './memory'
-import { NO_CLASS, countAll, countLimited, isSettled, limit } from './counting'
-import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './good'
+import { limit } from './block'
+import { NO_CLASS, countAll, countLimited, isSettled } from './counting'
+import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, clear, copy, isEmpty } from './plane'
 import { netValue, truthOfInputs } from './three-valued-gates'
+import { ALWAYS_WATCHED, WATCH_BITS } from './two-valued-propagate'
+import { spend } from './work'
 import { BOTH, DETECTIONS, FLIP, POSSIBLE, TO_X, propagateThreeValued } from './three-valued-propagate'
 
 const CANDIDATE_BYTES: i32 = 2 * PLANE_BYTES + 16
 
 let lastCandidate: usize = 0
 
-/** In which patterns a flip of the net flips its stem, and then in which it turns the stem to X: two planes a net. */
+/** False once a region has a class whose result is still open. */
+let allSettled: bool = true
+
+/**
+ * In which patterns a flip of the net flips its region's stem, and then in which it turns the stem to X: two planes for
+ * each net of the region at hand.
+ */
 // @ts-ignore: decorator
 @inline
-function effectsAt(slot: u32): usize {
-  return observability + (<usize>(nNets + (slot << 1)) << PLANE_SHIFT)
+function effectsAt(slot: u32, start: u32): usize {
+  return effects + (<usize>(slot - start) << (PLANE_SHIFT + 1))
 }
 
 // @ts-ignore: decorator
@@ -51,15 +61,16 @@ function visitCounting(group: u32, seen: usize, value: usize): void {
 }
 
 /** Keeps a class whose result is still open, with the patterns in which it flips its stem or turns it to X. */
-function visitOpen(group: u32, effects: usize, value: usize): void {
+function visitOpen(group: u32, effect: usize, value: usize): void {
   if (group == NO_CLASS) return
   if (limit == 0 ? !isOpen(group) : isSettled(group)) return
+  allSettled = false
   const to = lastCandidate
   let any = i64x2.splat(0)
   for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
     const active = v128.load(value + lane)
-    const flips = v128.and(v128.load(effects + lane), active)
-    const loses = v128.and(v128.load(effects + lane + PLANE_BYTES), active)
+    const flips = v128.and(v128.load(effect + lane), active)
+    const loses = v128.and(v128.load(effect + lane + PLANE_BYTES), active)
     v128.store(to + lane, flips)
     v128.store(to + lane + PLANE_BYTES, loses)
     any = v128.or(any, v128.or(flips, loses))
@@ -91,7 +102,7 @@ function sensitiseFlip(record: usize, kind: u32, pin: usize, firstPin: usize, en
  * inputs are X and none decides the output, a flip away from the deciding value turns the output to X; and an X on
  * the output turns the stem to X wherever a flip has any effect there.
  */
-function sensitiseBoth(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, effects: usize, to: usize): void {
+function sensitiseBoth(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, effect: usize, to: usize): void {
   const isXor = kind == XOR_2 || kind > AND_N
   const truth = truthOfInputs(load<u32>(record))
   const own = netValue(load<u32>(pin) >> 1)
@@ -108,8 +119,8 @@ function sensitiseBoth(record: usize, kind: u32, pin: usize, firstPin: usize, en
         undecided = v128.andnot(undecided, decides)
       }
     }
-    const flips = v128.load(effects + lane)
-    const loses = v128.load(effects + lane + PLANE_BYTES)
+    const flips = v128.load(effect + lane)
+    const loses = v128.load(effect + lane + PLANE_BYTES)
     v128.store(to + lane, v128.and(flips, passes))
     let lost = v128.and(loses, passes)
     if (!isXor) {
@@ -150,15 +161,16 @@ function walkCounting(start: u32, stem: u32): void {
 
 /** Walks a region from its stem backwards and gathers the classes whose results are open. */
 function walkOpen(start: u32, stem: u32): void {
-  copy(effectsAt(stem), valid)
-  clear(effectsAt(stem) + PLANE_BYTES)
+  copy(effectsAt(stem, start), valid)
+  clear(effectsAt(stem, start) + PLANE_BYTES)
   lastCandidate = candidates
+  allSettled = true
   for (let net = stem + 1; net > start; ) {
     net--
-    const effects = effectsAt(net)
+    const effect = effectsAt(net, start)
     const site = sites + (<usize>net << 4)
-    visitOpen(load<u32>(site, 0), effects, netValue(net))
-    visitOpen(load<u32>(site, 4), effects, netValue(net) + PLANE_BYTES)
+    visitOpen(load<u32>(site, 0), effect, netValue(net))
+    visitOpen(load<u32>(site, 4), effect, netValue(net) + PLANE_BYTES)
     const record = gates + (<usize>net << 4)
     const kind = load<u32>(record) >> 2
     if (kind == SOURCE) continue
@@ -168,10 +180,10 @@ function walkOpen(start: u32, stem: u32): void {
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitiseBoth(record, kind, pin, firstPin, end, effects, effectsAt(source >> 1))
+        sensitiseBoth(record, kind, pin, firstPin, end, effect, effectsAt(source >> 1, start))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitiseBoth(record, kind, pin, firstPin, end, effects, to)
+        sensitiseBoth(record, kind, pin, firstPin, end, effect, to)
         visitOpen(load<u32>(classes, 0), to, netValue(source >> 1))
         visitOpen(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
       }
@@ -181,7 +193,7 @@ function walkOpen(start: u32, stem: u32): void {
 
 /** As propagateThreeValued, with the stem's own observation taken into account. `asked` is used up. */
 function observe(stem: u32, change: u32, ask: u32, asked: usize, reached: usize, possible: usize): void {
-  const watch = load<u8>(watched + stem)
+  const watch = load<u8>(watched + stem) & WATCH_BITS
   const record = gates + (<usize>stem << 4)
   if (watch == 0) {
     if (load<u32>(record, 12) != load<u32>(record, 28)) {
@@ -193,12 +205,12 @@ function observe(stem: u32, change: u32, ask: u32, asked: usize, reached: usize,
     return
   }
   const direct = scratch + 10 * PLANE_BYTES
-  const mask = watch > 1 ? watchMasks + (<usize>load<u32>(watchSlots + (<usize>stem << 2)) << PLANE_SHIFT) : valid
+  const mask = watch != ALWAYS_WATCHED ? watchMasks + (<usize>load<u32>(watchSlots + (<usize>stem << 2)) << PLANE_SHIFT) : valid
   for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
     v128.store(direct + lane, v128.and(v128.load(asked + lane), v128.load(mask + lane)))
     v128.store(asked + lane, v128.andnot(v128.load(asked + lane), v128.load(mask + lane)))
   }
-  if (watch == 1 || isEmpty(asked)) {
+  if (watch == ALWAYS_WATCHED || isEmpty(asked)) {
     clear(reached)
     clear(possible)
   } else propagateThreeValued(stem, change, ask, asked, reached, possible)
@@ -251,42 +263,44 @@ function settleOpen(stem: u32): void {
   }
 }
 
-/** Simulates the faults of regions `from` − 1 down to `to`; every later region must have been done in this block. */
-export function simulateRegionsThreeValued(from: u32, to: u32): void {
-  const asked = scratch + 3 * PLANE_BYTES
-  const unused = scratch + 7 * PLANE_BYTES
-  for (let region = from; region > to; ) {
-    region--
-    const start = load<u32>(regions + (<usize>region << 2))
-    const stem = load<u32>(regions + (<usize>region << 2), 4) - 1
-    if (limit == 0) {
-      copy(asked, valid)
-      observe(stem, FLIP, DETECTIONS, asked, observability + (<usize>stem << PLANE_SHIFT), unused)
-      walkCounting(start, stem)
-    }
-    walkOpen(start, stem)
-    settleOpen(stem)
+/** Simulates the faults of one region. */
+export function simulateRegionThreeValued(region: u32): void {
+  const start = load<u32>(regions + (<usize>region << 2))
+  const stem = load<u32>(regions + (<usize>region << 2), 4) - 1
+  spend(1)
+  if (limit == 0) {
+    const asked = scratch + 3 * PLANE_BYTES
+    copy(asked, valid)
+    observe(stem, FLIP, DETECTIONS, asked, observability + (<usize>stem << PLANE_SHIFT), scratch + 7 * PLANE_BYTES)
+    walkCounting(start, stem)
   }
+  if (load<u8>(settled + region)) return
+  walkOpen(start, stem)
+  if (allSettled) store<u8>(settled + region, 1)
+  else settleOpen(stem)
 }
 
-/** Counts the faults on flip-flops' data pins and output taps, which one response row alone observes. */
 export function simulateTapsThreeValued(): void {
   const end = taps + (<usize>nTaps << 4)
+  const seen = scratch + PLANE_BYTES
   for (let tap = taps; tap < end; tap += 16) {
     const row = load<u32>(tap, 12)
-    const seen = row == NO_CLASS ? valid : rowMasks + (<usize>row << PLANE_SHIFT)
-    const value = netValue(load<u32>(tap, 0))
-    for (let stuck: u32 = 0; stuck < 2; stuck++) {
-      const group = load<u32>(tap + 4 + (stuck << 2))
-      if (group == NO_CLASS) continue
-      const active = value + (<usize>stuck << PLANE_SHIFT)
-      if (limit == 0) visitCounting(group, seen, active)
-      else if (!isSettled(group)) {
-        for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-          v128.store(scratch + lane, v128.and(v128.load(seen + lane), v128.load(active + lane)))
-        }
-        if (!isEmpty(scratch)) countLimited(group, scratch)
+    copy(seen, valid)
+    if (row != NO_CLASS) {
+      const mask = rowMasks + (<usize>row << PLANE_SHIFT)
+      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+        v128.store(seen + lane, v128.and(v128.load(seen + lane), v128.load(mask + lane)))
       }
+    }
+    for (let stuck: u32 = 0; stuck < 2; stuck++) {
+      const group = load<u32>(tap + (stuck << 2), 4)
+      if (group == NO_CLASS || (limit != 0 && isSettled(group))) continue
+      const active = netValue(load<u32>(tap, 0)) + (<usize>stuck << PLANE_SHIFT)
+      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+        v128.store(scratch + lane, v128.and(v128.load(seen + lane), v128.load(active + lane)))
+      }
+      if (limit == 0) countAll(group, scratch)
+      else if (!isEmpty(scratch)) countLimited(group, scratch)
     }
   }
 }

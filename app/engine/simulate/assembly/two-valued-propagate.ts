@@ -1,16 +1,81 @@
-import { fanouts, gates, masks, observability, pins, queue, summary, undo, values, watched, watchMasks, watchSlots } from './memory'
-import { AND_2, AND_N, XOR_2, and2, andN, xor2, xorN } from './good'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE, flip, none } from './plane'
+import { pass } from './block'
+import {
+  fanouts,
+  gates,
+  known,
+  knownPass,
+  masks,
+  observability,
+  pins,
+  queue,
+  scratch,
+  summary,
+  undo,
+  values,
+  watched,
+  watchMasks,
+  watchSlots,
+} from './memory'
+import { AND_2, AND_N, XOR_2, and2, andN, xor2, xorN } from './two-valued-gates'
+import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, flip, none } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
+import { spend } from './work'
 
 const UNDO_BYTES: i32 = PLANE_BYTES + 16
 
+/** Bits of a net's entry in `watched`. */
+export const WATCH_BITS: u32 = 3
+export const ALWAYS_WATCHED: u32 = 1
+const STEM_BIT: u32 = 4
+
+const NOTE_BYTES: i32 = PLANE_BYTES + 16
+const MAX_NOTES: i32 = 16
+/** Where notes on lines that alone carried an effect are kept: past the planes that callers use. */
+// @ts-ignore: decorator
+@inline
+function notes(): usize {
+  return scratch + 16 * PLANE_BYTES
+}
+
+/** Notes that the net alone carries the effect in the patterns of the plane; returns the place of the next note. */
+function note(at: usize, net: u32, plane0: v128, plane1: v128, plane2: v128, plane3: v128): usize {
+  if (at >= notes() + MAX_NOTES * NOTE_BYTES) return at
+  store<u32>(at + PLANE_BYTES, net)
+  v128.store(at, plane0, 0)
+  v128.store(at, plane1, 16)
+  if (WIDE) {
+    v128.store(at, plane2, 32)
+    v128.store(at, plane3, 48)
+  }
+  return at + NOTE_BYTES
+}
+
+/** Adds what is now known of the noted nets: an effect there was observed in the patterns of `reached`, and in no others. */
+function keepNotes(end: usize, reached: usize): void {
+  for (let at = notes(); at < end; at += NOTE_BYTES) {
+    const net = load<u32>(at + PLANE_BYTES)
+    const knownAt = known + (<usize>net << PLANE_SHIFT)
+    const seenAt = observability + (<usize>net << PLANE_SHIFT)
+    const stamp = knownPass + (<usize>net << 2)
+    if (load<u32>(stamp) != pass) {
+      store<u32>(stamp, pass)
+      clear(knownAt)
+      clear(seenAt)
+    }
+    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      const asked = v128.load(at + lane)
+      v128.store(knownAt + lane, v128.or(v128.load(knownAt + lane), asked))
+      v128.store(seenAt + lane, v128.or(v128.load(seenAt + lane), v128.and(asked, v128.load(reached + lane))))
+    }
+  }
+}
+
 /**
- * Finds in which patterns of the plane `live` a flip of the stem is observed, and writes them to `reached`. Both planes
- * are the caller's; `live` is left with the patterns in which it is not. Effects that one net alone carries are looked up
- * where `lookUp` says that the observability of all later nets is known.
+ * Finds in which patterns of the plane `live` a flip of the stem is observed, and writes them to `reached`. Where one net
+ * alone carries the effect, its observability is looked up: that of any later net where `allKnown`, else that of stems
+ * as far as it has been found out in this pass.
  */
-export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bool): void {
+export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: bool): void {
   const base = values
   const bits = queue
   const words = summary
@@ -25,12 +90,16 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bo
 
   let log = undo
   flip(base + (<usize>stem << PLANE_SHIFT), live)
+  let noted = notes()
+  if (!allKnown) noted = note(noted, stem, live0, live1, live2, live3)
+  let evaluated: u32 = 1
   const stemRecord = gates + (<usize>stem << 4)
   let pending = pushFanouts(fanouts + (<usize>load<u32>(stemRecord, 12) << 2), fanouts + (<usize>load<u32>(stemRecord, 28) << 2), bits, words)
   let gate = stem
   while (pending > 0) {
     gate = takeNext(gate, bits, words)
     pending--
+    evaluated++
     const record = gates + (<usize>gate << 4)
     const op = load<u32>(record)
     const kind = op >> 2
@@ -89,10 +158,11 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bo
     if (WIDE) any = v128.or(any, v128.or(diff2, diff3))
     if (!v128.any_true(any)) continue
 
-    const watch = load<u8>(watched + gate)
+    const flags = load<u8>(watched + gate)
+    const watch = flags & WATCH_BITS
     if (watch) {
       let seen0 = diff0, seen1 = diff1, seen2 = diff2, seen3 = diff3
-      if (watch > 1) {
+      if (watch != ALWAYS_WATCHED) {
         const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
         seen0 = v128.and(seen0, v128.load(mask, 0))
         seen1 = v128.and(seen1, v128.load(mask, 16))
@@ -114,7 +184,7 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bo
         any = v128.or(any, v128.or(live2, live3))
       }
       if (!v128.any_true(any)) break
-      if (watch == 1) continue
+      if (watch == ALWAYS_WATCHED) continue
       diff0 = v128.andnot(diff0, seen0)
       diff1 = v128.andnot(diff1, seen1)
       any = v128.or(diff0, diff1)
@@ -125,15 +195,40 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bo
       }
       if (!v128.any_true(any)) continue
     }
-    if (pending == 0 && lookUp) {
-      const known = observability + (<usize>gate << PLANE_SHIFT)
-      reached0 = v128.or(reached0, v128.and(diff0, v128.load(known, 0)))
-      reached1 = v128.or(reached1, v128.and(diff1, v128.load(known, 16)))
-      if (WIDE) {
-        reached2 = v128.or(reached2, v128.and(diff2, v128.load(known, 32)))
-        reached3 = v128.or(reached3, v128.and(diff3, v128.load(known, 48)))
+    if (pending == 0) {
+      const seenAt = observability + (<usize>gate << PLANE_SHIFT)
+      if (allKnown) {
+        reached0 = v128.or(reached0, v128.and(diff0, v128.load(seenAt, 0)))
+        reached1 = v128.or(reached1, v128.and(diff1, v128.load(seenAt, 16)))
+        if (WIDE) {
+          reached2 = v128.or(reached2, v128.and(diff2, v128.load(seenAt, 32)))
+          reached3 = v128.or(reached3, v128.and(diff3, v128.load(seenAt, 48)))
+        }
+        break
       }
-      break
+      if (flags & STEM_BIT) {
+        if (load<u32>(knownPass + (<usize>gate << 2)) == pass) {
+          const knownAt = known + (<usize>gate << PLANE_SHIFT)
+          reached0 = v128.or(reached0, v128.and(diff0, v128.load(seenAt, 0)))
+          reached1 = v128.or(reached1, v128.and(diff1, v128.load(seenAt, 16)))
+          diff0 = v128.andnot(diff0, v128.load(knownAt, 0))
+          diff1 = v128.andnot(diff1, v128.load(knownAt, 16))
+          any = v128.or(diff0, diff1)
+          if (WIDE) {
+            reached2 = v128.or(reached2, v128.and(diff2, v128.load(seenAt, 32)))
+            reached3 = v128.or(reached3, v128.and(diff3, v128.load(seenAt, 48)))
+            diff2 = v128.andnot(diff2, v128.load(knownAt, 32))
+            diff3 = v128.andnot(diff3, v128.load(knownAt, 48))
+            any = v128.or(any, v128.or(diff2, diff3))
+          }
+          if (!v128.any_true(any)) break
+        }
+        live0 = diff0
+        live1 = diff1
+        live2 = diff2
+        live3 = diff3
+        noted = note(noted, gate, diff0, diff1, diff2, diff3)
+      }
     }
     v128.store(at, v128.xor(good0, diff0), 0)
     v128.store(at, v128.xor(good1, diff1), 16)
@@ -167,5 +262,6 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, lookUp: bo
   if (WIDE) {
     v128.store(reached, reached2, 32)
     v128.store(reached, reached3, 48)
-  }
+  }  if (!allKnown) keepNotes(noted, reached)
+  spend(evaluated)
 }

@@ -43,7 +43,7 @@ export function xorN(pin: usize, end: usize, base: usize, outward: v128, at: usi
 }
 
 /** Computes the fault-free values of all gates, two-valued, in the order of the nets. */
-export function evaluateGood(): void {
+export function evaluateGoodTwoValued(): void {
   const base = values
   let record = gates
   let to = base
