@@ -1,3 +1,4 @@
+import { visitVariables } from './cell-function.ts'
 import type { CellFunction } from './cell-library.ts'
 import { GateKind } from './circuit.ts'
 import { IntList } from './int-list.ts'
@@ -27,7 +28,7 @@ export type CellTemplate = {
 export function buildCellTemplate(functions: readonly CellFunction[], nVariables: number): CellTemplate {
   const uses = new Uint32Array(nVariables)
   const simple = functions.map(simplified)
-  for (const each of simple) countUses(each, uses)
+  for (const each of simple) visitVariables(each, (variable) => uses[variable]++)
   const gates = new IntList()
   const useNet = new Int32Array(nVariables).fill(-1)
   const useInput = new Int32Array(nVariables).fill(-1)
@@ -77,12 +78,6 @@ export function placeTemplate(
       graph.addInput(net, reference < nVariables ? variables[reference] : inner[reference - nVariables])
     }
   }
-}
-
-function countUses(of: CellFunction, uses: Uint32Array): void {
-  if (of.kind === 'variable') uses[of.index]++
-  else if (of.kind === 'not') countUses(of.of, uses)
-  else if (of.kind !== 'constant') for (const operand of of.of) countUses(operand, uses)
 }
 
 /** The same function without double inversions, and with AND in AND, OR in OR, XOR in XOR as one operator. */

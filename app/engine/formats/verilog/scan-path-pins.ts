@@ -1,6 +1,6 @@
 import type { Assembler } from './assemble.ts'
 import type { CellAssembler, SequentialRow } from './assemble-cells.ts'
-import type { CellFunction } from '../../circuit/cell-library.ts'
+import { visitVariables } from '../../circuit/cell-function.ts'
 
 /**
  * Marks the pins that the chain test exercises: scan-in, scan enable, clock, clear and preset pins of scanned flip-flops, and
@@ -66,13 +66,11 @@ export function markScanPath(
 function scanPins(cell: SequentialRow['plan']['cell']): Set<number> {
   const pins = new Set<number>()
   if (cell.scan !== null) pins.add(cell.scan.scanIn).add(cell.scan.scanEnable)
-  const addAll = (of: CellFunction | null): void => {
-    if (of === null || of.kind === 'constant') return
-    if (of.kind === 'variable') {
-      if (of.index < cell.pins.length) pins.add(of.index)
-    } else if (of.kind === 'not') addAll(of.of)
-    else for (const operand of of.of) addAll(operand)
+  const add = (variable: number): void => {
+    if (variable < cell.pins.length) pins.add(variable)
   }
-  for (const { clock, clear, preset } of cell.states) for (const each of [clock, clear, preset]) addAll(each)
+  for (const { clock, clear, preset } of cell.states) {
+    for (const each of [clock, clear, preset]) if (each !== null) visitVariables(each, add)
+  }
   return pins
 }

@@ -1,4 +1,5 @@
 import type { CellFunction, CellState } from '../../circuit/cell-library.ts'
+import { evaluateFunction, shiftInversion } from '../../circuit/cell-function.ts'
 import { buildCellTemplate, placeTemplate } from '../../circuit/cell-template.ts'
 import { GateKind, LineKind } from '../../circuit/circuit.ts'
 import type { FlipFlopClock, ScanChain, TestPin } from '../../circuit/netlist.ts'
@@ -118,7 +119,8 @@ class ScanAssembler {
       const { scan, states } = row.plan.cell
       if (scan === null || states.length !== 1) continue
       const enable = constants[row.pins[scan.scanEnable]]
-      const invertsScanIn = shiftInversion(row, scan.scanEnable, scan.shiftValue, scan.scanIn)
+      const [{ next }] = states
+      const invertsScanIn = shiftInversion(next, scan.scanEnable, scan.shiftValue, scan.scanIn)
       if (enable !== scan.shiftValue || invertsScanIn === null) continue
       rows.push(row)
       shiftCells.push({ state: row.states[0], scanIn: row.pins[scan.scanIn], invertsScanIn })
@@ -250,7 +252,7 @@ class ScanAssembler {
     constants: Int8Array,
   ): CellFunction | null {
     if (of === null) return null
-    return evaluate(of, (index) =>
+    return evaluateFunction(of, (index) =>
       index < pins.length ? (constants[pins[index]] ?? NOT_CONSTANT) : NOT_CONSTANT,
     ) === 0
       ? null
@@ -330,54 +332,4 @@ type TracedRows = {
   rows: readonly SequentialRow[]
   loadInverted: readonly boolean[]
   unloadInverted: readonly boolean[]
-}
-
-/** True where the cell stores the inverse of its scan-in while it shifts; null where it stores something else. */
-function shiftInversion(
-  row: SequentialRow,
-  enable: number,
-  shiftValue: 0 | 1,
-  scanIn: number,
-): boolean | null {
-  const stored = ([0, 1] as const).map((value) =>
-    evaluate(row.plan.cell.states[0].next, (index) => {
-      if (index === enable) return shiftValue
-      return index === scanIn ? value : NOT_CONSTANT
-    }),
-  )
-  if (stored[0] === NOT_CONSTANT || stored[0] === stored[1]) return null
-  return stored[0] === 1
-}
-
-/** A function's value, 0, 1 or −1, from those of its variables. */
-function evaluate(of: CellFunction, valueOf: (index: number) => number): number {
-  switch (of.kind) {
-    case 'constant':
-      return of.value === 'X' ? NOT_CONSTANT : of.value
-    case 'variable':
-      return valueOf(of.index)
-    case 'not': {
-      const value = evaluate(of.of, valueOf)
-      return value === NOT_CONSTANT ? value : 1 - value
-    }
-    case 'xor': {
-      let parity = 0
-      for (const operand of of.of) {
-        const value = evaluate(operand, valueOf)
-        if (value === NOT_CONSTANT) return value
-        parity ^= value
-      }
-      return parity
-    }
-    default: {
-      const decides = of.kind === 'and' ? 0 : 1
-      let isKnown = true
-      for (const operand of of.of) {
-        const value = evaluate(operand, valueOf)
-        if (value === decides) return value
-        if (value === NOT_CONSTANT) isKnown = false
-      }
-      return isKnown ? 1 - decides : NOT_CONSTANT
-    }
-  }
 }
