@@ -68,22 +68,26 @@ export class UnitSequence {
     for (const one of this.missingFor(unit)) this.place(one)
   }
 
+  /** Returns the patterns of the units placed so far, in the order in which they run. */
+  patterns(): Uint32Array {
+    const { unitStart, unitPatterns } = this.rules
+    return Uint32Array.from(
+      this.units.flatMap((unit) => [...unitPatterns.subarray(unitStart[unit], unitStart[unit + 1])]),
+    )
+  }
+
   /** Returns the order: what was placed, then the other units in file order, then the patterns left out. */
   finish(name: Order['name'], chosenUnits: number): Order {
-    const { rules } = this
-    for (let unit = 0; unit < rules.nUnits; unit++) this.placeWithPredecessors(unit)
-    const sequence = new Uint32Array(rules.nPatterns)
-    let length = 0
+    const { nPatterns, nUnits, unitOf, unitStart } = this.rules
+    for (let unit = 0; unit < nUnits; unit++) this.placeWithPredecessors(unit)
+    const running = this.patterns()
+    const sequence = new Uint32Array(nPatterns)
+    sequence.set(running)
+    let length = running.length
+    for (let pattern = 0; pattern < nPatterns; pattern++)
+      if (unitOf[pattern] < 0) sequence[length++] = pattern
     let chosen = 0
-    for (const [place, unit] of this.units.entries()) {
-      for (let at = rules.unitStart[unit]; at < rules.unitStart[unit + 1]; at++)
-        sequence[length++] = rules.unitPatterns[at]
-      if (place < chosenUnits) chosen = length
-    }
-    const runs = length
-    for (let pattern = 0; pattern < rules.nPatterns; pattern++) {
-      if (rules.unitOf[pattern] < 0) sequence[length++] = pattern
-    }
-    return { name, sequence, chosen, runs }
+    for (const unit of this.units.slice(0, chosenUnits)) chosen += unitStart[unit + 1] - unitStart[unit]
+    return { name, sequence, chosen, runs: running.length }
   }
 }
