@@ -85,13 +85,11 @@ export function compileRules(constraints: Constraints, nPatterns: number): Rules
         )
       }
       if (groupOf[pattern] >= 0) {
-        const where = groupOf[pattern] === index ? 'twice in one group' : 'in two groups'
-        return refuse(
-          'together',
-          index,
-          `pattern ${pattern + 1} stands ${where} that stays together`,
-          'Join the groups into one',
-        )
+        const where =
+          groupOf[pattern] === index
+            ? 'twice in one group that stays together'
+            : 'in two groups that stay together'
+        return refuse('together', index, `pattern ${pattern + 1} stands ${where}`, 'Join the groups into one')
       }
       groupOf[pattern] = index
     }
