@@ -1,6 +1,7 @@
 import type { Goal, Limit, Stop, UnmetGoal } from '../engine/choose/budget.ts'
 import type { OrderName } from '../engine/choose/order.ts'
-import type { PlanResult } from '../engine/choose/plan-result.ts'
+import type { MarkerName, PlanResult } from '../engine/choose/plan-result.ts'
+import type { SensitivityInput } from '../engine/quality/sensitivity.ts'
 import { type NumberFormats, textOf } from './format-number.ts'
 
 /** A piece of a sentence; the strong ones carry the figures. */
@@ -11,6 +12,24 @@ export const ORDER_WORDS: Readonly<Record<OrderName, string>> = {
   steepest: 'the steepest first',
   smallest: 'the smallest complete set',
   'by-hand': 'in an order set by hand',
+}
+
+export const INPUT_WORDS: Readonly<Record<SensitivityInput, string>> = {
+  yield: 'Yield',
+  n0: 'Faults on a defective device',
+  escapeCost: 'Cost of an escape',
+  costPerHour: 'Tester rate',
+  sites: 'Sites',
+  shiftMHz: 'Shift rate',
+}
+
+export const MARKER_WORDS: Readonly<Record<MarkerName, string>> = {
+  goal: 'To the goal only',
+  limit: 'To the limit',
+  knee: 'Knee of the curve',
+  'next millisecond': 'Where time stops paying',
+  'least total': 'Least total cost',
+  all: 'All that detect something',
 }
 
 /** Returns why the answer of a plan is no, one sentence each; empty where it is yes. */

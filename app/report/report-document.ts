@@ -29,21 +29,26 @@ export type Block =
   | { readonly kind: 'table'; readonly table: Table }
   | { readonly kind: 'list'; readonly items: readonly string[] }
   | { readonly kind: 'code'; readonly text: string }
-  | { readonly kind: 'columns'; readonly columns: readonly (readonly Block[])[]; readonly widths: readonly number[] }
+  | {
+      readonly kind: 'columns'
+      readonly columns: readonly (readonly Block[])[]
+      readonly widths: readonly number[]
+    }
 
 export type LabelledFigure = { readonly label: string; readonly figure: Figure; readonly note: string }
 
-/** A drawing in its own units; `draw` returns the elements inside `<svg>`, for a font of that name. */
+/** A drawing in its own units. */
 export type Chart = {
   readonly width: number
   readonly height: number
   /** What it shows, for those who can't see it. */
   readonly label: string
+  /** The elements inside `<svg>`. */
   readonly markup: string
 }
 
 export type Table = {
-  readonly columns: readonly { readonly head: string; readonly isNumber: boolean }[]
+  readonly columns: readonly { readonly head: string; readonly holds: 'text' | 'number' | 'code' }[]
   readonly rows: readonly (readonly string[])[]
   /** The row of the budget itself, from 0; null where there is none. */
   readonly marked: number | null

@@ -71,6 +71,7 @@ const RATE_FACTORS = [0.5, 1, 1.5, 2]
 /** Prices an order, finds the cut that limits and goals ask for, and works out what hangs on it. */
 export function buildPlan(input: PlanInput): Plan {
   const { faults, task, order, patterns, tester, product, limits, goals, total } = input
+  const worthOfMillisecond = input.worthOfMillisecond ?? WORTH_OF_MILLISECOND
   const counts = countFaults(faults, input.untestable)
   const plainTask = { ...task, weights: classSizes(input), detections: 1 }
   const isPlain =
@@ -113,6 +114,7 @@ export function buildPlan(input: PlanInput): Plan {
       isReached: cut.broken === null && cut.unmet.length === 0,
       cut,
       markers: markersOf(),
+      worthOfMillisecond,
       asDelivered: asDelivered(),
       yield: resolveYield(product, deliveredCoverage),
       bandNarrowings: bandNarrowings(product, pricing.trueYield, figures.testCoverage),
@@ -132,12 +134,7 @@ export function buildPlan(input: PlanInput): Plan {
       ['knee', input.knee],
       [
         'next millisecond',
-        nextMillisecondBuysLess(
-          curve,
-          priced.milliseconds,
-          order.chosen,
-          input.worthOfMillisecond ?? WORTH_OF_MILLISECOND,
-        ),
+        nextMillisecondBuysLess(curve, priced.milliseconds, order.chosen, worthOfMillisecond),
       ],
       ['least total', priced.totalPerYear === null ? null : leastTotal(priced.totalPerYear, order.chosen)],
       ['all', order.chosen],

@@ -28,6 +28,8 @@ export type PlanResult = {
   readonly cut: Cut
   /** Points worth knowing on the same order, in ascending order of patterns. */
   readonly markers: readonly Marker[]
+  /** The coverage, 0..1, that a millisecond must buy for the marker 'next millisecond'. */
+  readonly worthOfMillisecond: number
   /** The patterns in file order: the shortest prefix that detects as much as the budget, and what the same limits give. */
   readonly asDelivered: {
     /** Like `curve`, for the patterns in file order. */

@@ -1,6 +1,7 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
-import { stopWords } from '../../contract/plan-words.ts'
-import type { PlanResult } from '../../engine/choose/plan-result.ts'
+import { limitWords } from '../../contract/plan-words.ts'
+import type { Limit } from '../../engine/choose/budget.ts'
+import type { MarkerName, PlanResult } from '../../engine/choose/plan-result.ts'
 import type { Chart } from '../report-document.ts'
 import { PALETTE } from './palette.ts'
 import { linearScale, type Scale, thinned, ticksOf } from './scale.ts'
@@ -22,7 +23,8 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
   const ceiling = plan.ceiling.length > 0 ? [share(plan.ceiling[0] ?? 0), ...plan.ceiling.map(share)] : []
   const goal = plan.goals.find(({ kind }) => kind === 'coverage')
   const goalCoverage = goal?.kind === 'coverage' ? goal.least : null
-  const limitAt = plan.markers.find(({ name }) => name === 'limit')?.figures.patterns ?? null
+  const [limit] = plan.limits
+  const limitAt = limitPlace(plan)
 
   const last = lastShown(plan)
   const { low, high } = rangeShown(plan, Math.max(...curve, ...ceiling), goalCoverage)
@@ -46,7 +48,8 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
     const edge = within(thinned(ceiling, 0, last, pixels))
     parts.push(element('g', inPlot, hatching(edge, PLOT), path(edge, CEILING)))
   }
-  if (limitAt !== null && plan.cut !== null) parts.push(limitLine(plan, x(Math.min(limitAt, last)), formats))
+  if (limitAt !== null && limit !== undefined)
+    parts.push(limitLine(limit, x(Math.min(limitAt, last)), formats))
   if (goalCoverage !== null) parts.push(goalLine(y(goalCoverage), goalCoverage, formats))
   parts.push(
     element('g', inPlot, path(within(thinned(delivered, 0, last, pixels)), DELIVERED)),
@@ -54,8 +57,16 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
   )
   if (plan.orderName !== 'as-delivered') {
     parts.push(
-      nameAt(curve, last, 0.1, x, y, plan.orderName === 'steepest' ? 'Steepest first' : 'This order'),
-      nameAt(delivered, last, 0.62, x, y, 'As delivered'),
+      nameAt(
+        curve,
+        last,
+        budget.patterns,
+        0.1,
+        x,
+        y,
+        plan.orderName === 'steepest' ? 'Steepest first' : 'This order',
+      ),
+      nameAt(delivered, last, budget.patterns, 0.62, x, y, 'As delivered'),
     )
   }
   parts.push(cutLine(x(Math.min(budget.patterns, last)), y(budget.coverage), budget.patterns, formats))
@@ -67,9 +78,22 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
   }
 }
 
+/** Where the limits end the order; null where they let all of it run. */
+export function limitPlace({ markers }: PlanResult): number | null {
+  const placeOf = (wanted: MarkerName): number | null =>
+    markers.find(({ name }) => name === wanted)?.figures.patterns ?? null
+  const place = placeOf('limit')
+  return place === placeOf('all') ? null : place
+}
+
 const CHOSEN = { stroke: PALETTE.series1, 'stroke-width': 2.2 }
 const DELIVERED = { stroke: PALETTE.series2, 'stroke-width': 1.6, 'stroke-dasharray': '8 4' }
-const CEILING = { stroke: PALETTE.text, 'stroke-width': 1.2, 'stroke-dasharray': '1 3', 'stroke-linecap': 'round' }
+const CEILING = {
+  stroke: PALETTE.text,
+  'stroke-width': 1.2,
+  'stroke-dasharray': '1 3',
+  'stroke-linecap': 'round',
+}
 const LIMIT = { stroke: PALETTE.limit, 'stroke-width': 1.2 }
 
 /** As far as the patterns as delivered need for what the budget detects, and a bit more. */
@@ -80,7 +104,11 @@ function lastShown({ order, markers, budget, asDelivered }: PlanResult): number 
 }
 
 /** The range in which goal, cut and the last of the curve fill the plot, not above 100 %. */
-function rangeShown({ budget }: PlanResult, highest: number, goal: number | null): { low: number; high: number } {
+function rangeShown(
+  { budget }: PlanResult,
+  highest: number,
+  goal: number | null,
+): { low: number; high: number } {
   const lowest = Math.min(budget.coverage, goal ?? 1)
   const span = Math.min(1, Math.max(0.04, (highest - lowest) * 3))
   const high = Math.min(1, highest + span * 0.1)
@@ -97,11 +125,20 @@ function definitions(): string {
 }
 
 function rectangle(left: number, top: number, right: number, bottom: number, fill: string): string {
-  return element('rect', { x: left, y: top, width: Math.max(0, right - left), height: Math.max(0, bottom - top), fill })
+  return element('rect', {
+    x: left,
+    y: top,
+    width: Math.max(0, right - left),
+    height: Math.max(0, bottom - top),
+    fill,
+  })
 }
 
 /** Hatches all above an edge by lines of their own, which every renderer of SVG draws. */
-function hatching(edge: readonly (readonly [number, number])[], { left, right, top, bottom }: typeof PLOT): string {
+function hatching(
+  edge: readonly (readonly [number, number])[],
+  { left, right, top, bottom }: typeof PLOT,
+): string {
   const strokes: string[] = []
   const height = bottom - top
   for (let start = left - height; start < right; start += 7) {
@@ -111,7 +148,11 @@ function hatching(edge: readonly (readonly [number, number])[], { left, right, t
   const area = `${outline}L${right} ${edge.at(-1)?.[1].toFixed(2) ?? top}L${right} ${top}L${left} ${top}Z`
   return [
     element('clipPath', { id: 'beyond' }, element('path', { d: area })),
-    element('g', { 'clip-path': 'url(#beyond)' }, element('path', { d: strokes.join(''), stroke: PALETTE.hatch, 'stroke-width': 1, fill: 'none' })),
+    element(
+      'g',
+      { 'clip-path': 'url(#beyond)' },
+      element('path', { d: strokes.join(''), stroke: PALETTE.hatch, 'stroke-width': 1, fill: 'none' }),
+    ),
   ].join('')
 }
 
@@ -139,23 +180,20 @@ function axes(x: Scale, y: Scale, formats: NumberFormats): string {
 }
 
 function decimalsOf(value: number): number {
-  return Number.isInteger(Number(value.toFixed(6))) ? 0 : Number.isInteger(Number((value * 10).toFixed(6))) ? 1 : 2
+  return Number.isInteger(Number(value.toFixed(6)))
+    ? 0
+    : Number.isInteger(Number((value * 10).toFixed(6)))
+      ? 1
+      : 2
 }
 
-function limitLine(plan: PlanResult, place: number, formats: NumberFormats): string {
-  const [limit] = plan.limits
-  const isNearCut = limit === undefined
-  if (isNearCut) return ''
-  const name = stopWords(limit, formats).replace('the limit of ', '')
+function limitLine(limit: Limit, place: number, formats: NumberFormats): string {
   const anchor = place > PLOT.right - 120 ? 'end' : 'start'
-  const shift = anchor === 'end' ? -4 : 4
   return (
     line(place, PLOT.top, place, PLOT.bottom, LIMIT) +
-    label(place + shift, PLOT.top + 12, `${name}, limit`, anchor, HALO)
+    label(place + (anchor === 'end' ? -5 : 5), PLOT.top + 13, `limit ${limitWords(limit, formats)}`, anchor)
   )
 }
-
-const HALO = {}
 
 function goalLine(place: number, goal: number, formats: NumberFormats): string {
   if (place < PLOT.top || place > PLOT.bottom) return ''
@@ -165,19 +203,28 @@ function goalLine(place: number, goal: number, formats: NumberFormats): string {
   )
 }
 
-/** The name of a line, with a leader to the point at that share of the width. */
-function nameAt(curve: readonly number[], last: number, share: number, x: Scale, y: Scale, name: string): string {
+/** The name of a line, with a leader to the point at that share of the width, clear of the cut. */
+function nameAt(
+  curve: readonly number[],
+  last: number,
+  cut: number,
+  share: number,
+  x: Scale,
+  y: Scale,
+  name: string,
+): string {
   let k = Math.max(1, Math.round(last * share))
-  while (k < last && (curve[k] ?? 0) < y.from) k++
-  if ((curve[k] ?? 0) < y.from) return ''
-  const [px, py] = [x(k), y(curve[k] ?? 0)]
-  const isRoomBelow = py + 34 < PLOT.bottom
-  const down = isRoomBelow ? 1 : -0.5
-  const anchor = px > PLOT.right - 110 ? 'end' : 'start'
+  while (k < last && (curve[k] ?? 0) < y.from + (y.to - y.from) * 0.25) k++
+  const room = 130
+  if (x(k) < x(cut) && x(k) + room > x(cut)) k = Math.min(last, cut + Math.ceil((last - cut) * 0.12))
+  const [px, py] = [x(k), Math.min(PLOT.bottom - 34, y(curve[k] ?? 0))]
+  const anchor = px + room > PLOT.right ? 'end' : 'start'
   const along = anchor === 'end' ? -22 : 22
   return (
-    line(px + along * 0.12, py + 4 * down, px + along * 0.9, py + 20 * down, { stroke: PALETTE.text3, 'stroke-width': 0.8 }) +
-    label(px + along, py + 27 * down, name, anchor, { 'font-size': 12, fill: PALETTE.text })
+    line(px + along * 0.12, py + 4, px + along * 0.9, py + 20, {
+      stroke: PALETTE.text3,
+      'stroke-width': 0.8,
+    }) + label(px + along, py + 28, name, anchor, { 'font-size': 12, fill: PALETTE.text })
   )
 }
 

@@ -15,7 +15,8 @@ export function ticksOf({ from, to }: Scale, wanted: number): number[] {
   const raw = (to - from) / wanted
   if (!(raw > 0)) return [from]
   const power = 10 ** Math.floor(Math.log10(raw))
-  const step = [1, 2, 5, 10].map((factor) => factor * power).find((candidate) => candidate >= raw) ?? 10 * power
+  const step =
+    [1, 2, 5, 10].map((factor) => factor * power).find((candidate) => candidate >= raw) ?? 10 * power
   const first = Math.ceil(from / step - 1e-9)
   const last = Math.floor(to / step + 1e-9)
   return Array.from({ length: last - first + 1 }, (_, at) => Number(((first + at) * step).toPrecision(12)))

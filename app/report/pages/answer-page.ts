@@ -1,0 +1,208 @@
+import { type NumberFormats, textOf } from '../../contract/format-number.ts'
+import {
+  answerPhrases,
+  goalWords,
+  limitWords,
+  MARKER_WORDS,
+  shortfallsOf,
+} from '../../contract/plan-words.ts'
+import type { PointFigures } from '../../engine/choose/point-figures.ts'
+import { coverageChart, limitPlace } from '../charts/coverage-chart.ts'
+import type { Block, LabelledFigure, ReportPage, Table } from '../report-document.ts'
+import type { ReportInput } from '../report-input.ts'
+
+/** Page 1: the answer, the chart that it is read from, five figures, why, and what moving the cut would do. */
+export function answerPage(input: ReportInput, title: string, formats: NumberFormats): ReportPage {
+  const { plan, counts } = input
+  const shortfalls = shortfallsOf(plan, formats)
+  return {
+    blocks: [
+      { kind: 'title', text: title },
+      { kind: 'lead', phrases: answerPhrases(plan, formats) },
+      ...shortfalls.map((text): Block => ({ kind: 'caution', text })),
+      { kind: 'chart', chart: coverageChart(plan, formats), caption: chartCaption(input, formats) },
+      { kind: 'figures', figures: fiveFigures(input, formats) },
+      {
+        kind: 'columns',
+        widths: [1, 1.25],
+        columns: [
+          [
+            { kind: 'heading', text: 'Why this cut' },
+            { kind: 'text', text: whyWords(input, formats) },
+          ],
+          [
+            { kind: 'heading', text: 'What moving it would do' },
+            { kind: 'table', table: movesTable(input, formats) },
+          ],
+        ],
+      },
+      { kind: 'heading', text: 'Read with care' },
+      { kind: 'text', text: `${CAUTION} ${careWords(input, formats)}` },
+    ],
+    foot: `Fault coverage: ${formats.count(counts.all).value} stuck-at faults on ${input.faultBase}, uncollapsed.`,
+  }
+}
+
+function chartCaption({ plan, counts, faultBase }: ReportInput, formats: NumberFormats): string {
+  const hasLimit = limitPlace(plan) !== null
+  const hasGoal = plan.goals.some(({ kind }) => kind === 'coverage')
+  const inside = [hasLimit ? 'inside the limit' : '', hasGoal ? 'above the goal' : ''].filter(Boolean)
+  return [
+    `Coverage against patterns applied. Base: ${formats.count(counts.all).value} stuck-at faults on ${faultBase}, uncollapsed.`,
+    inside.length > 0 ? `White: ${inside.join(' and ')}.` : '',
+    plan.ceiling.length > 0 ? 'Hatched: proven out of reach for any choice of these patterns.' : '',
+  ]
+    .filter(Boolean)
+    .join(' ')
+}
+
+function fiveFigures({ plan, pricing }: ReportInput, formats: NumberFormats): readonly LabelledFigure[] {
+  const { budget, limits, goals } = plan
+  const { tester } = pricing
+  const limit = limits.find(({ kind }) => kind === 'milliseconds')
+  const coverageGoal = goals.find((goal) => goal.kind === 'coverage')
+  const dppmGoal = goals.find((goal) => goal.kind === 'dppm')
+  const band = `${formats.dppm(budget.dppmLow).value} to ${formats.dppm(budget.dppmHigh).value}`
+  const guarded = `${textOf(formats.milliseconds(budget.guardedMilliseconds))} with guard band`
+  return [
+    {
+      label: 'Time on one site',
+      figure: formats.milliseconds(budget.milliseconds),
+      note: limit === undefined ? guarded : `limit ${formats.milliseconds(limit.most).value}`,
+    },
+    {
+      label: 'Fault coverage',
+      figure: formats.coverage(budget.plainCoverage),
+      note:
+        coverageGoal === undefined
+          ? `${textOf(formats.coverage(budget.testCoverage))} of testable`
+          : `goal ${formats.coverage(coverageGoal.least).value}`,
+    },
+    {
+      label: 'Escape rate, estimated',
+      figure: formats.dppm(budget.dppm),
+      note: dppmGoal === undefined ? band : `at most ${formats.dppm(dppmGoal.most).value}`,
+    },
+    memoryFigure(budget, tester.vectorMemory, formats),
+    budget.hoursPerYear === null
+      ? {
+          label: 'Cost of test',
+          figure: { ...formats.costPerThousand(budget.costPerDevice, tester.currency), unit: '' },
+          note: 'per 1,000 devices',
+        }
+      : {
+          label: 'Tester hours a year',
+          figure: formats.hours(budget.hoursPerYear),
+          note: textOf(formats.money(budget.testCostPerYear, tester.currency)),
+        },
+  ]
+}
+
+function memoryFigure(
+  { vectorMemory, reloads }: PointFigures,
+  depth: number | null,
+  formats: NumberFormats,
+): LabelledFigure {
+  if (depth === null) {
+    return {
+      label: 'Vector memory',
+      figure: formats.count(vectorMemory),
+      note: 'cycles per pin, no limit given',
+    }
+  }
+  const again = reloads > 0 ? `, ${formats.count(reloads).value} reloads` : ''
+  return {
+    label: 'Vector memory',
+    figure: formats.share(vectorMemory / depth),
+    note: `of ${formats.count(depth).value} cycles${again}`,
+  }
+}
+
+function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
+  const { budget, limits, goals, asDelivered, ceiling, gap } = plan
+  const count = (value: number): string => formats.count(value).value
+  const reasons: string[] = []
+  const [goal] = goals
+  const [limit] = limits
+  if (goal !== undefined && plan.isReached) {
+    reasons.push(`It is the fewest patterns of this order that reach ${goalWords(goal, formats)}.`)
+  } else if (limit !== undefined && plan.cut.stop !== null) {
+    reasons.push(`It is as much of this order as fits ${limitWords(limit, formats)}.`)
+  } else if (goals.length === 0) {
+    reasons.push('It holds every pattern of this order that detects something more.')
+  }
+  if (plan.orderName !== 'as-delivered' && asDelivered.sameDetected !== null) {
+    const { patterns, milliseconds } = asDelivered.sameDetected
+    reasons.push(
+      `As delivered, the set needs ${count(patterns)} patterns and ${textOf(formats.milliseconds(milliseconds))} to detect as much.`,
+    )
+  }
+  const bound = ceiling[budget.patterns - 1]
+  if (bound !== undefined) {
+    reasons.push(
+      `No choice of ${count(budget.patterns)} patterns can detect more than ${count(bound)} faults; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
+    )
+  }
+  if (gap !== null && gap > 0 && limits.length > 0) {
+    reasons.push(`Under the same limit no choice could add more than ${count(gap)}.`)
+  }
+  return reasons.join(' ')
+}
+
+function withinWords(bound: number, detected: number, formats: NumberFormats): string {
+  if (bound <= detected) return ', which is proven best'
+  return `, within ${textOf(formats.coverage((bound - detected) / bound))} of it`
+}
+
+function movesTable({ plan }: ReportInput, formats: NumberFormats): Table {
+  const { budget, markers } = plan
+  const rows: { name: string; figures: PointFigures; isBudget: boolean }[] = [
+    { name: 'This budget', figures: budget, isBudget: true },
+  ]
+  for (const { name, figures } of markers) {
+    if (rows.every((row) => row.figures.patterns !== figures.patterns)) {
+      const isWorth = name === 'next millisecond'
+      const words = isWorth
+        ? `Next ms buys under ${textOf(formats.coverage(plan.worthOfMillisecond))}`
+        : MARKER_WORDS[name]
+      rows.push({ name: words, figures, isBudget: false })
+    }
+  }
+  rows.sort((a, b) => a.figures.patterns - b.figures.patterns)
+  return {
+    columns: [
+      { head: '', holds: 'text' },
+      { head: 'Patterns', holds: 'number' },
+      { head: 'ms', holds: 'number' },
+      { head: 'Coverage, %', holds: 'number' },
+      { head: 'DPPM', holds: 'number' },
+    ],
+    rows: rows.map(({ name, figures }) => [
+      name,
+      formats.count(figures.patterns).value,
+      formats.milliseconds(figures.milliseconds).value,
+      formats.coverage(figures.coverage).value,
+      formats.dppm(figures.dppm).value,
+    ]),
+    marked: rows.findIndex(({ isBudget }) => isBudget),
+  }
+}
+
+/** Stands on page 1 of every report and in every workbook. */
+export const CAUTION =
+  'All figures are estimates of a model. This plan is no safety case: where the part can hurt someone, the governing standard and the people licensed to apply it decide.'
+
+function careWords({ plan, pricing }: ReportInput, formats: NumberFormats): string {
+  const { budget } = plan
+  const model =
+    pricing.product.model === 'williams-brown'
+      ? 'Williams and Brown (1981), 1 − Y^(1−T),'
+      : `Agrawal, Seth and Agrawal (1982) with ${formats.plain(pricing.product.n0)} faults on a defective device,`
+  const band = `${formats.dppm(budget.dppmLow).value} to ${textOf(formats.dppm(budget.dppmHigh))}`
+  const origin = plan.yield.origin === 'assumed' ? ' (assumed, not measured)' : ''
+  return [
+    `The escape rate follows ${model} with yield Y = ${textOf(formats.share(pricing.trueYield))}${origin} `,
+    `and T the test coverage, ${textOf(formats.coverage(budget.testCoverage))}; over both models and the ranges of their inputs it runs from ${band}. `,
+    'It counts stuck-at faults only. ',
+  ].join('')
+}

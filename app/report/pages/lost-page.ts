@@ -1,0 +1,77 @@
+import type { NumberFormats } from '../../contract/format-number.ts'
+import type { ReportPage, Table } from '../report-document.ts'
+import type { LostBlock, ReportInput } from '../report-input.ts'
+
+const MOST_ROWS = 30
+
+/** What the cut gives up, by block, and the account of all faults. Null where neither was worked out. */
+export function lostPage({ plan, lost, states, counts }: ReportInput, formats: NumberFormats): ReportPage {
+  const count = (value: number): string => formats.count(value).value
+  const sorted = [...(lost ?? [])].sort((a, b) => b.lost - a.lost)
+  const total = sorted.reduce((sum, block) => sum + block.lost, 0)
+  const words =
+    lost === null
+      ? 'What is lost by block was not worked out.'
+      : total === 0
+        ? 'The cut loses nothing: it detects all that the whole pattern set detects.'
+        : `The cut loses ${count(total)} faults that the whole pattern set detects, in ${count(sorted.filter((block) => block.lost > 0).length)} of ${count(sorted.length)} blocks.`
+  const left = sorted.length - MOST_ROWS
+  return {
+    blocks: [
+      { kind: 'title', text: 'What the cut loses' },
+      { kind: 'text', text: words },
+      ...(sorted.length === 0
+        ? []
+        : [{ kind: 'table', table: lostTable(sorted.slice(0, MOST_ROWS), formats) } as const]),
+      ...(left > 0
+        ? [
+            {
+              kind: 'text',
+              text: `${count(left)} more blocks, each losing fewer, are in the XLSX report.`,
+            } as const,
+          ]
+        : []),
+      { kind: 'heading', text: 'All faults under the whole pattern set' },
+      {
+        kind: 'table',
+        table: {
+          columns: [
+            { head: 'State', holds: 'text' },
+            { head: 'Faults, uncollapsed', holds: 'number' },
+            { head: 'Share, %', holds: 'number' },
+          ],
+          rows: states.map(({ state, faults }) => [
+            state.charAt(0).toUpperCase() + state.slice(1),
+            count(faults),
+            formats.coverage(counts.all > 0 ? faults / counts.all : 0).value,
+          ]),
+          marked: null,
+        },
+      },
+    ],
+    foot: `Budget of ${count(plan.budget.patterns)} patterns; the whole set has ${count(plan.order.length)}.`,
+  }
+}
+
+function lostTable(blocks: readonly LostBlock[], formats: NumberFormats): Table {
+  const count = (value: number): string => formats.count(value).value
+  return {
+    columns: [
+      { head: 'Block', holds: 'text' },
+      { head: 'Faults', holds: 'number' },
+      { head: 'Coverage, %', holds: 'number' },
+      { head: 'Lost', holds: 'number' },
+      { head: 'Brought back most cheaply by', holds: 'number' },
+    ],
+    rows: blocks.map(({ block, faults, detected, lost, cheapest }) => [
+      block,
+      count(faults),
+      formats.coverage(faults > 0 ? detected / faults : null).value,
+      count(lost),
+      cheapest === null
+        ? '–'
+        : `pattern ${count(cheapest.pattern)}: ${count(cheapest.faults)} in ${count(cheapest.cycles)} cycles`,
+    ]),
+    marked: null,
+  }
+}
