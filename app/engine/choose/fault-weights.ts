@@ -1,8 +1,17 @@
 import { faultName, type FaultList } from '../faults/fault-list.ts'
-import type { WeightRow } from '../formats/weights/read-weights.ts'
 import { closestName } from '../source/closest-name.ts'
 import type { Diagnostic } from '../source/diagnostic.ts'
+import type { Span } from '../source/source.ts'
 import { blockOf } from './lost-faults.ts'
+
+/** What the user says that a fault, or every fault of a block, is worth. */
+export type WeightRow = {
+  /** A fault such as `G7>G10.1/0`, a block such as `core/alu`, or in flat netlists whatever names begin with. */
+  readonly name: string
+  readonly weight: number
+  /** Where the row stands in its file. */
+  readonly span: Span
+}
 
 export type FaultWeights = {
   /** Length nFaults: the weight of each fault; 1 where no row speaks of it. */

@@ -1,6 +1,6 @@
 import type { ChoiceProgress, ChoiceTask } from './choice-task.ts'
 import { UnitSequence } from './delivered-order.ts'
-import type { Order } from './order.ts'
+import type { Order, OrderName } from './order.ts'
 import { Gains } from './gains.ts'
 import { buildUnitMatrix, type UnitMatrix } from './unit-matrix.ts'
 
@@ -14,6 +14,32 @@ import { buildUnitMatrix, type UnitMatrix } from './unit-matrix.ts'
  * fault from all of its patterns when it counts no more.
  */
 export function steepestFirst(task: ChoiceTask, onProgress: ChoiceProgress = () => true): Order | null {
+  return orderBySteps(task, 'steepest', () => true, onProgress)
+}
+
+/**
+ * Returns the order that first runs a given choice, steepest first, and then the rest. The choice has to be one that the
+ * rules allow.
+ */
+export function steepestWithin(task: ChoiceTask, name: OrderName, patterns: Iterable<number>): Order {
+  const isMember = new Uint8Array(task.rules.nUnits)
+  for (const pattern of patterns) isMember[task.rules.unitOf[pattern]] = 1
+  const order = orderBySteps(
+    task,
+    name,
+    (unit) => isMember[unit] === 1,
+    () => true,
+  )
+  if (order === null) throw new Error('nothing asked the order to end')
+  return order
+}
+
+function orderBySteps(
+  task: ChoiceTask,
+  name: OrderName,
+  isCandidate: (unit: number) => boolean,
+  onProgress: ChoiceProgress,
+): Order | null {
   const { rules } = task
   const units = buildUnitMatrix(task)
   const gains = new Gains(units, task.detections)
@@ -35,19 +61,20 @@ export function steepestFirst(task: ChoiceTask, onProgress: ChoiceProgress = () 
     place(unit)
   }
   const hasPredecessors = rules.predecessors.length > 0
+  const isFree = (unit: number): boolean =>
+    gains.gain[unit] > 0 && order.placed[unit] === 0 && isCandidate(unit)
   for (;;) {
-    let unit = steepest(
-      units,
-      gains,
-      (one) => gains.gain[one] > 0 && order.placed[one] === 0 && (!hasPredecessors || order.isReady(one)),
-    )
+    const unit = steepest(units, gains, (one) => isFree(one) && (!hasPredecessors || order.isReady(one)))
     let bundle = unit < 0 ? [] : [unit]
-    if (hasPredecessors) bundle = steeperBundle(units, gains, order, bundle)
+    if (hasPredecessors) bundle = steeperBundle(units, gains, order, bundle, isFree)
     if (bundle.length === 0) break
-    for (unit of bundle) place(unit)
+    for (const one of bundle) place(one)
     if (!onProgress(units.nRows + order.units.length, units.nRows + units.nUnits)) return null
   }
-  return order.finish('steepest', order.units.length)
+  if (name !== 'steepest') {
+    for (let unit = 0; unit < rules.nUnits; unit++) if (isCandidate(unit)) order.placeWithPredecessors(unit)
+  }
+  return order.finish(name, order.units.length)
 }
 
 /** Returns the unit with the largest gain per cycle among those allowed, −1 where there is none. */
@@ -74,7 +101,13 @@ function steepest(
 }
 
 /** Returns the best of the bundle at hand and of every waiting unit with all that it waits for. */
-function steeperBundle(units: UnitMatrix, gains: Gains, order: UnitSequence, bundle: number[]): number[] {
+function steeperBundle(
+  units: UnitMatrix,
+  gains: Gains,
+  order: UnitSequence,
+  bundle: number[],
+  isFree: (unit: number) => boolean,
+): number[] {
   const { unitCost } = units
   const sum = (list: readonly number[], of: Float64Array): number =>
     list.reduce((total, unit) => total + of[unit], 0)
@@ -82,7 +115,7 @@ function steeperBundle(units: UnitMatrix, gains: Gains, order: UnitSequence, bun
   let bestGain = sum(bundle, gains.gain)
   let bestCost = sum(bundle, unitCost)
   for (let unit = 0; unit < units.nUnits; unit++) {
-    if (order.placed[unit] === 1 || gains.gain[unit] === 0 || order.isReady(unit)) continue
+    if (!isFree(unit) || order.isReady(unit)) continue
     const candidate = order.missingFor(unit)
     const cost = sum(candidate, unitCost)
     const isSteeper = (gain: number): boolean => best.length === 0 || gain * bestCost > bestGain * cost

@@ -1,3 +1,4 @@
+import type { WeightRow } from '../../choose/fault-weights.ts'
 import {
   type Diagnostic,
   type DiagnosticCode,
@@ -5,14 +6,6 @@ import {
   type Reading,
 } from '../../source/diagnostic.ts'
 import type { Source, Span } from '../../source/source.ts'
-
-/** One row of a weights file: what a fault, or every fault of a block, is worth. */
-export type WeightRow = {
-  /** A fault such as `G7>G10.1/0`, a block such as `core/alu`, or in flat netlists whatever names begin with. */
-  readonly name: string
-  readonly weight: number
-  readonly span: Span
-}
 
 const LARGEST_WEIGHT = 1e6
 
