@@ -1,5 +1,5 @@
 import { MAX_DIAGNOSTICS, type Diagnostic, type DiagnosticCode, type DiagnosticNote } from './diagnostic.ts'
-import type { Source } from './source.ts'
+import type { Source, Span } from './source.ts'
 
 /** What a finding may add to its message. */
 export type FindingExtras = { readonly hint?: string | null; readonly notes?: readonly DiagnosticNote[] }
@@ -74,7 +74,7 @@ export class FindingList {
       code,
       severity,
       file: source.name,
-      span: { start, end },
+      span: spanWithin(source, start, end),
       message,
       ...(extras.hint ? { hint: extras.hint } : {}),
       ...(extras.notes ? { notes: extras.notes } : {}),
@@ -82,6 +82,12 @@ export class FindingList {
     this.found.push(diagnostic)
     this.last = diagnostic
   }
+}
+
+/** The span as far as the text goes. */
+function spanWithin(source: Source, start: number, end: number): Span {
+  const from = Math.max(0, Math.min(start, source.text.length))
+  return { start: from, end: Math.max(from, Math.min(end, source.text.length)) }
 }
 
 /** A name as it stands in a message: quoted, and cut where it is long. */

@@ -46,6 +46,8 @@ export class CellAssembler {
   private readonly pinSink = new IntList(4096)
   private readonly pinInput = new IntList(4096)
   private readonly pinByChain = new IntList(4096)
+  /** Rows of the pin table from here on are lines of gates that stand beside cells. */
+  private cellPinRows = 0
   private scan: ScanView | null = null
   private readonly shared: Assembler
 
@@ -155,6 +157,21 @@ export class CellAssembler {
     this.pinByChain.push(0)
   }
 
+  /** Adds the lines of gates and flip-flops that stand beside cells, as a netlist of gates names them. */
+  addWrittenGates(): void {
+    const { flat, graph } = this.shared
+    this.cellPinRows = this.pinKind.length
+    const add = (net: number): void => {
+      const isFlipFlop = graph.kind.data[net] === GateKind.FlipFlop
+      for (let k = 0; k < graph.count(net); k++) {
+        this.pushPin(isFlipFlop ? LineKind.FlipFlopData : LineKind.GateInput, graph.input(net, k), net, k)
+      }
+      this.pushPin(LineKind.Stem, net, -1, 0)
+    }
+    for (const net of flat.gateNet.view()) add(this.shared.rootOf(net))
+    for (let at = 1; at < flat.flipFlops.length; at += 5) add(this.shared.rootOf(flat.flipFlops.data[at]))
+  }
+
   /** Moves the faults of a cell's pin to where its value is used after all. */
   movePin(row: number, pin: number, kind: LineKind, net: number, sink: number, input: number): void {
     const at = this.pinRow(row, pin)
@@ -259,7 +276,13 @@ export class CellAssembler {
     }
     const firstPin = this.firstPin.data.slice(0, this.firstPin.length)
     const faultPins = (row: number): readonly number[] => this.planAt(row).faultPins
+    const lineName = (row: number): string => {
+      const name = this.shared.netName(this.pinNet.data[row])
+      const sinkNet = this.pinSink.data[row]
+      return sinkNet < 0 ? name : `${name}>${this.shared.netName(sinkNet)}.${this.pinInput.data[row]}`
+    }
     const nameOf = (row: number): string => {
+      if (row >= this.cellPinRows) return lineName(row)
       let low = 0
       let high = firstPin.length - 1
       while (low < high) {

@@ -61,6 +61,9 @@ export class Assembler {
   private driverPlace = new Int32Array(0)
   private driverScope = new Int32Array(0)
   private readonly threeState = new Map<number, ThreeStateDriver[]>()
+  /** Per net of the graph: its net in the circuit, or −1. */
+  private netOf = new Int32Array(0)
+  private readonly innerCount = new Map<number, number>()
   private isMapped = false
 
   constructor(
@@ -95,7 +98,8 @@ export class Assembler {
     const inputs = this.listInputs()
     this.placeFlipFlops(inputs)
     cellAssembler.placeSequential(inputs)
-    this.reportUndriven()
+    cellAssembler.addWrittenGates()
+    this.reportUndriven(cellAssembler)
     if (this.findings.hasErrors) return null
     return this.finish(inputs, cellAssembler)
   }
@@ -144,6 +148,15 @@ export class Assembler {
     else drivers.push(driver)
   }
 
+  /** A gate that is part of what drives a net, named after it. */
+  private innerGate(owner: number, kind: GateKind, ...inputs: readonly number[]): number {
+    const net = this.graph.gate(kind, ...inputs)
+    const number = (this.innerCount.get(owner) ?? 0) + 1
+    this.innerCount.set(owner, number)
+    this.ownNames.set(net, `${this.netName(owner)}:${number}`)
+    return net
+  }
+
   /** The name of a net for people. */
   netName(net: number): string {
     return net < this.flat.nNets ? this.flat.netText(net) : (this.ownNames.get(net) ?? '')
@@ -187,9 +200,12 @@ export class Assembler {
     const { data: gates, length: end } = flat.threeState
     for (let at = 0; at < end; at += 6) {
       const [net, data, control, flags, scope, place] = gates.subarray(at, at + 6)
-      const driven = (flags & 2) !== 0 ? graph.gate(GateKind.Not, this.rootOf(data)) : this.rootOf(data)
-      const enable = (flags & 1) !== 0 ? graph.gate(GateKind.Not, this.rootOf(control)) : this.rootOf(control)
-      this.addThreeState(this.rootOf(net), { data: driven, enable, scope, place })
+      const root = this.rootOf(net)
+      const straight = (pin: number): number => this.rootOf(pin)
+      const inverted = (pin: number): number => this.innerGate(root, GateKind.Not, this.rootOf(pin))
+      const driven = ((flags & 2) === 0 ? straight : inverted)(data)
+      const enable = ((flags & 1) === 0 ? straight : inverted)(control)
+      this.addThreeState(root, { data: driven, enable, scope, place })
     }
   }
 
@@ -238,8 +254,9 @@ export class Assembler {
         const { data, enable, place, scope } = drivers[0]
         this.driverPlace[net] = place
         this.driverScope[net] = scope
-        const driven = graph.gate(GateKind.And, enable, data)
-        const floating = graph.gate(GateKind.And, graph.gate(GateKind.Not, enable), FlatNet.Unknown)
+        const driven = this.innerGate(net, GateKind.And, enable, data)
+        const disabled = this.innerGate(net, GateKind.Not, enable)
+        const floating = this.innerGate(net, GateKind.And, disabled, FlatNet.Unknown)
         graph.drive(net, GateKind.Or, driven, floating)
         continue
       }
@@ -288,7 +305,8 @@ export class Assembler {
 
   /**
    * Flip-flops written as such are all in the full-scan view, as in `.bench` files, if their clock comes straight from an
-   * input. One whose clock is made by logic, or that takes its data at the other edge than most, is a source of X.
+   * input; beside library cells they are on no chain, so only where the caller assumes it. One whose clock is made by
+   * logic, or that takes its data at the other edge than most, is a source of X.
    */
   private placeFlipFlops(inputs: readonly number[]): void {
     const { flat, graph, unusable } = this
@@ -310,7 +328,8 @@ export class Assembler {
       const data = this.rootOf(rows[at + 2])
       if (!this.claim(net, rows[at + 3], rows[at + 4])) continue
       const clock = clocks[at / 5]
-      if (clock.port >= 0 && clock.inverted === usualInverted) {
+      const isScanned = !this.isMapped || this.options.assumeScanned
+      if (isScanned && clock.port >= 0 && clock.inverted === usualInverted) {
         graph.drive(net, GateKind.FlipFlop, data)
         const edge = clock.inverted ? 'falling' : 'rising'
         this.flipFlops.push({ net, clock: { port: this.netName(clock.port), edge } })
@@ -321,22 +340,27 @@ export class Assembler {
         row.unobserved.push(data)
         if (row.count > 1) continue
         const source = flat.sourceOf(rows[at + 3])
-        const why = clock.port < 0 ? 'is made by logic' : 'rises where that of most others falls'
+        const why = !isScanned
+          ? 'it is on no scan chain'
+          : clock.port < 0
+            ? 'its clock is made by logic'
+            : 'its clock rises where that of most others falls'
         this.findings.warn(
           'not-scanned',
           source,
           rows[at + 4],
           this.tokenEnd(source.text, rows[at + 4]),
-          `the clock of flip-flop ${quoted(this.netName(net))} ${why}: it is a source of X, not scanned`,
+          `flip-flop ${quoted(this.netName(net))} is not scanned but a source of X: ${why}`,
         )
       }
     }
   }
 
   /** Nets that something takes in and nothing drives carry X. */
-  private reportUndriven(): void {
+  private reportUndriven(cellAssembler: CellAssembler): void {
     const { flat, graph, unusable } = this
     const used = this.loadedNets()
+    cellAssembler.markPinNets(used)
     for (const net of flat.outputs.view()) used[this.rootOf(net)] = 1
     const examples: number[] = []
     const end = graph.nNets
@@ -372,7 +396,7 @@ export class Assembler {
     const outputs = this.distinctOutputs()
     const patternInputs = this.patternInputs(inputs, outputs)
     const builder = new CircuitBuilder()
-    const netOf = new Int32Array(graph.nNets).fill(-1)
+    const netOf = (this.netOf = new Int32Array(graph.nNets).fill(-1))
     const add = (net: number): void => {
       if (netOf[net] < 0) netOf[net] = builder.addNet(this.netName(net))
     }
@@ -422,7 +446,7 @@ export class Assembler {
         cellsUsed: cellAssembler.cellsUsed(),
         cellsUnknown: this.cellsUnknown(),
         unusable: this.unusable.finish(netOf),
-        testPins: cellAssembler.testPins(),
+        testPins: this.isMapped ? cellAssembler.testPins() : this.clockPins(),
       },
     }
   }
@@ -435,7 +459,7 @@ export class Assembler {
       for (const fault of result) {
         if (fault.kind !== 'combinational-loop') throw new RangeError('a net without a driver')
         const net = fault.nets[0] as number
-        this.reportLoop(fault.nets.map((each: number) => builder.names[each]))
+        this.reportLoop(fault.nets as readonly number[], builder.names)
         const row = this.unusable.add('cut loop', builder.names[net])
         row.circuitSources.push(net)
         builder.cut(net)
@@ -443,17 +467,20 @@ export class Assembler {
     }
   }
 
-  private reportLoop(path: readonly string[]): void {
-    const named = path.filter((name) => name !== '')
-    const shown = named.slice(0, 16).join(' → ')
-    const module = this.flat.scopeModules[0]
+  private reportLoop(nets: readonly number[], names: readonly string[]): void {
+    const { flat } = this
+    const path = nets.filter((net) => names[net] !== '')
+    const shown = path.slice(0, 16).map((net) => names[net])
+    const written = this.netOf.findIndex((net, at) => at < flat.nNets && path.includes(net))
+    const module = flat.scopeModules[written < 0 ? 0 : flat.netScope.data[written]]
+    const place = written < 0 ? module.place : flat.netPlace.data[written]
     this.findings.warn(
       'combinational-loop',
       module.source,
-      module.place,
-      this.tokenEnd(module.source.text, module.place),
-      `a loop without a flip-flop is cut with X: ${shown}` +
-        `${named.length > 16 ? ` … (${named.length} nets)` : ''} → ${named[0] ?? ''}`,
+      place,
+      this.tokenEnd(module.source.text, place),
+      `a loop without a flip-flop is cut with X: ${shown.join(' → ')}` +
+        `${path.length > 16 ? ` … (${path.length} nets)` : ''} → ${shown[0] ?? ''}`,
     )
   }
 
@@ -516,6 +543,19 @@ export class Assembler {
 
   private rootOfAny(net: number): number {
     return net < this.root.length ? this.root[net] : net
+  }
+
+  /** The clocks of a netlist of gates, which patterns do not give. */
+  private clockPins(): TestPin[] {
+    const ports = new Map(this.flipFlops.map(({ clock }) => [clock.port, clock.edge]))
+    const clocks = Array.from(ports, ([port, edge]): TestPin => {
+      return { name: port ?? '', role: 'clock', value: edge === 'rising' ? 0 : 1, from: 'library' }
+    })
+    return [...this.options.testPins, ...clocks.filter(({ name }) => !this.isTestPin(name))]
+  }
+
+  private isTestPin(name: string): boolean {
+    return this.options.testPins.some((pin) => pin.name === name)
   }
 
   private cellsUnknown(): { cell: string; count: number }[] {

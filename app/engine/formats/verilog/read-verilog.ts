@@ -30,8 +30,8 @@ export type VerilogOptions = {
  *
  * A netlist of gates has the lines that a `.bench` file of the same structure has: each operator of an expression and each
  * plain `assign` is a gate (see VerilogParser), and every D flip-flop whose clock is an input is scanned. Where
- * cells of a library are used, faults sit on cell pins, with the pins of gates that stand beside them left out; Liberty
- * functions simulate as they are written; only flip-flops on a traced scan chain are scanned.
+ * cells of a library are used, faults sit on the pins of the cells and on those of gates that stand beside them, a plain
+ * `assign` is a wire, Liberty functions simulate as they are written, and only flip-flops on a traced scan chain are scanned.
  *
  * Inputs, outputs and flip-flops stand in the order of their declarations, the bits of a vector from the left. Errors come from the
  * text alone where it cannot be parsed, else from all the later steps too.
