@@ -1,6 +1,6 @@
 import type { Reading } from '../source/diagnostic.ts'
 import type { Source } from '../source/source.ts'
-import { type AssumptionField, defaultsOf, readAssumptions } from './assumption-field.ts'
+import { type AssumptionField, type Contradiction, defaultsOf, readAssumptions } from './assumption-field.ts'
 
 /** A tester on the test floor: its rates, its memory, its sites and its price. Null is explained at each field. */
 export type Tester = {
@@ -149,17 +149,19 @@ export const DEFAULT_TESTER: Tester = defaultsOf(TESTER_FIELDS)
 
 /** Reads a tester file. Codes: those of readAssumptions. */
 export function readTester(source: Source): Reading<Tester> {
-  return readAssumptions(source, 'tester file', TESTER_FIELDS, (tester) =>
-    tester.scanMemory !== null && tester.vectorMemory === null
-      ? [
-          {
-            key: 'scanMemory',
-            message: '"scanMemory" is given, "vectorMemory" is not',
-            hint: 'Give the depth of both memories, or "vectorMemory" alone where scan data sit in it',
-          },
-        ]
-      : [],
-  )
+  return readAssumptions(source, 'tester file', TESTER_FIELDS, testerContradictions)
+}
+
+/** Returns what does not fit together in a tester, key by key; empty where all does. */
+export function testerContradictions(tester: Tester): readonly Contradiction<Tester>[] {
+  if (tester.scanMemory === null || tester.vectorMemory !== null) return []
+  return [
+    {
+      key: 'scanMemory',
+      message: '"scanMemory" is given, "vectorMemory" is not',
+      hint: 'Give the depth of both memories, or "vectorMemory" alone where scan data sit in it',
+    },
+  ]
 }
 
 export function captureMHzOf(tester: Tester): number {
