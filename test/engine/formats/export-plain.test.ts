@@ -8,11 +8,7 @@ import { writeVectors } from '../../../app/engine/formats/vectors/write-vectors.
 import { simulateGood } from '../../../app/engine/simulate/good-machine.ts'
 import { emptyPlane } from '../../../app/engine/simulate/pattern-set.ts'
 
-const TEXT =
-  'INPUT(a)\nINPUT(b)\nOUTPUT(y)\nOUTPUT(q)\nq = DFF(n)\nn = NAND(a, b)\ny = XOR(a, q)\n'.replaceAll(
-    'b,1',
-    'b',
-  )
+const TEXT = 'INPUT(a)\nINPUT(b)\nOUTPUT(y)\nOUTPUT(q)\nq = DFF(n)\nn = NAND(a, b)\ny = XOR(a, q)\n'
 const { circuit } = readBench({ name: 'small.bench', text: TEXT }).value!
 const vectors = '101 HHH @7\nX10 XLX\n000 LLH @3\n'
 const patterns = readVectors({ name: 'small.vec', text: vectors }, circuit).value!
