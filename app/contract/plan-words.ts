@@ -78,6 +78,18 @@ function brokenWords(broken: Stop, patterns: number, formats: NumberFormats): st
   return `The constraints and ${stopWords(broken, formats)} don't go together: ${kept} kept do not fit.`
 }
 
+/** Returns what a plan's curve counts. */
+export function countedWords({ isWeighted, detections }: PlanResult): string {
+  const what = isWeighted ? 'of the weight of faults' : 'faults'
+  return detections === 1 ? what : `${what}, each ${detections} times or more`
+}
+
+/** Returns what a plan's coverage is of. */
+export function coverageWords({ isWeighted, detections }: PlanResult): string {
+  const what = isWeighted ? 'Weighted coverage' : 'Coverage'
+  return detections === 1 ? what : `${what} by ${detections} patterns or more`
+}
+
 /** Returns the answer of a plan: what to run, what it takes, what it detects, what escapes. */
 export function answerPhrases(plan: PlanResult, formats: NumberFormats): readonly Phrase[] {
   const { budget } = plan

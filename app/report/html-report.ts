@@ -128,7 +128,7 @@ footer span:last-child{white-space:nowrap}
 h1{font-size:26px;line-height:32px;font-weight:600;letter-spacing:-.3px;margin:26px 0 10px;text-wrap:balance;overflow-wrap:anywhere}
 h2.part{font-size:20px;line-height:26px;font-weight:600;margin:26px 0 8px}
 h3{font-size:14px;line-height:20px;font-weight:600;margin:18px 0 3px}
-.columns h3{margin-top:0}
+.columns h3:first-child{margin-top:0}
 .lead{font-size:16px;line-height:25px;text-wrap:pretty}
 .lead b{font-weight:600}
 p{text-wrap:pretty}

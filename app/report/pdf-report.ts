@@ -114,7 +114,12 @@ function nodeOf(block: Block, width: number): Node {
       return { ul: block.items.map((item) => ({ text: runs(item) })), color: PALETTE.text2 }
     case 'code':
       return {
-        table: { widths: ['*'], body: [[{ text: breakable(printable(block.text)), fontSize: 9 }]] },
+        table: {
+          widths: ['*'],
+          body: [
+            [{ text: printable(block.text), fontSize: 9, characterSpacing: 0.2, wordBreak: 'break-all' }],
+          ],
+        },
         layout: {
           hLineColor: () => PALETTE.line,
           vLineColor: () => PALETTE.line,
@@ -140,11 +145,6 @@ function runs(text: string): readonly Node[] {
   return superscripts(printable(text)).map((run) =>
     run.isRaised ? { text: run.text, sup: true } : { text: run.text },
   )
-}
-
-/** Lets long names and commands break anywhere after the signs at which people break them. */
-function breakable(text: string): string {
-  return text.replace(/[/_.,=]/g, '$&\u200b')
 }
 
 function svg({ width, height, markup }: Chart): string {
@@ -181,6 +181,9 @@ function figures(list: readonly LabelledFigure[]): Node {
   }
 }
 
+/** A word that would widen its column past the page. */
+const LONG_WORD = /\S{28}/
+
 const ALIGNMENT = { text: 'left', number: 'right', code: 'left' } as const
 
 function table({ columns, rows, marked }: Table): Node {
@@ -195,7 +198,8 @@ function table({ columns, rows, marked }: Table): Node {
     row.map((cell, column) => {
       const holds = columns[column]?.holds ?? 'text'
       return {
-        text: holds === 'number' ? printable(cell) : breakable(printable(cell)),
+        text: printable(cell),
+        ...(LONG_WORD.test(cell) ? { wordBreak: 'break-all' } : {}),
         alignment: ALIGNMENT[holds],
         ...(holds === 'code' ? { fontSize: 7.5 } : {}),
         ...(at === marked ? { bold: true, color: PALETTE.cutText } : {}),

@@ -1,3 +1,4 @@
+import type { LostBlock } from '../engine/choose/lost-blocks.ts'
 import type { PlanResult } from '../engine/choose/plan-result.ts'
 import type { PricedOrder, Pricing } from '../engine/choose/price.ts'
 import type { CoverageCurve } from '../engine/choose/order.ts'
@@ -51,16 +52,6 @@ export type InputFile = {
   /** Hexadecimal. */
   readonly sha256: string
   readonly sizeBytes: number
-}
-
-export type LostBlock = {
-  readonly block: string
-  readonly faults: number
-  readonly detected: number
-  /** Detected by the whole set, but not by the budget. */
-  readonly lost: number
-  /** The pattern, from 1, that brings the most of them back per cycle; null where none does. */
-  readonly cheapest: { readonly pattern: number; readonly cycles: number; readonly faults: number } | null
 }
 
 export type ReportSection = 'assumptions' | 'money' | 'lost' | 'reproduce' | 'patterns'

@@ -23,8 +23,8 @@ export type CutRequest = {
   readonly priced: PricedOrder
   /** How many patterns at the front were chosen for a gain; a cut goes no further. */
   readonly chosen: number
-  /** Length nPatterns + 1: 1 where constraints let a cut lie (not within a group, not before what is kept). Null: everywhere. */
-  readonly mayCut: Uint8Array | null
+  /** Length nPatterns + 1: 1 where constraints let a cut lie, as cutPlaces says. */
+  readonly mayCut: Uint8Array
   readonly limits: readonly Limit[]
   readonly goals: readonly Goal[]
 }
@@ -57,7 +57,7 @@ const SLACK = 1e-12
  */
 export function chooseCut(request: CutRequest): Cut {
   const { curve, priced, chosen, mayCut, limits, goals } = request
-  const mayEnd = (k: number): boolean => mayCut === null || mayCut[k] === 1
+  const mayEnd = (k: number): boolean => mayCut[k] === 1
   const shortest = firstPrefix(chosen, mayEnd) ?? chosen
   const broken = stopAt(shortest, priced, limits)
   if (broken !== null) return { patterns: shortest, stop: broken, broken, unmet: [] }

@@ -3,9 +3,10 @@ import { coverageByArea } from '../quality/area-shares.ts'
 import { sortIntoBlocks } from '../quality/block-coverage.ts'
 import { countFaults } from '../quality/count-faults.ts'
 import { bandNarrowings } from '../quality/escape-band.ts'
+import { priceInsertions } from '../quality/insertions.ts'
 import type { Product } from '../quality/product.ts'
 import { type Assumptions, sensitivityOf } from '../quality/sensitivity.ts'
-import { type FaultCounts, testCoverage } from '../quality/test-coverage.ts'
+import { type FaultCounts, faultCoverage, testCoverage } from '../quality/test-coverage.ts'
 import { chainsByShiftRate, sitesByEfficiency, steppedAround } from '../quality/what-if.ts'
 import { resolveYield } from '../quality/yield.ts'
 import { perDeviceMs } from '../tester/multi-site.ts'
@@ -17,8 +18,10 @@ import { chooseCut, type Goal, type Limit } from './budget.ts'
 import type { ChoiceTask } from './choice-task.ts'
 import { curveOf } from './coverage-curve.ts'
 import { deliveredOrder } from './delivered-order.ts'
+import { detectedWeight } from './detected-weight.ts'
 import { type Headroom, headroomOf } from './headroom.ts'
-import { cutsAllowed } from './cuts-allowed.ts'
+import { cutPlaces } from './cut-places.ts'
+import { kneeOf } from './knee.ts'
 import type { CoverageCurve, Order } from './order.ts'
 import type { Marker, MarkerName, MovedOutcome, PlanResult, TimeOutcome } from './plan-result.ts'
 import { figuresAt, type PointFigures } from './point-figures.ts'
@@ -49,8 +52,6 @@ export type PlanInput = {
   /** Returns a bound on what any choice within a budget detects, for patterns that differ in cost; null for none. */
   readonly ceilingWithin: Headroom['ceilingWithin']
   readonly smallest: NonNullable<PlanResult['smallest']> | null
-  /** How many patterns run at the knee of the curve; null where it has none. */
-  readonly knee: number | null
   /** The coverage, 0..1, that a millisecond must buy; a marker stands where none after it does. */
   readonly worthOfMillisecond?: number
 }
@@ -74,8 +75,8 @@ export function buildPlan(input: PlanInput): Plan {
   const worthOfMillisecond = input.worthOfMillisecond ?? WORTH_OF_MILLISECOND
   const counts = countFaults(faults, input.untestable)
   const plainTask = { ...task, weights: classSizes(input), detections: 1 }
-  const isPlain =
-    task.detections === 1 && task.weights.every((weight, row) => weight === plainTask.weights[row])
+  const isWeighted = task.weights.some((weight, row) => weight !== plainTask.weights[row])
+  const isPlain = task.detections === 1 && !isWeighted
   const curve = curveOf(task, order, total)
   const plainCurve = isPlain ? curve : curveOf(plainTask, order, counts.all)
   const coverageOf = coveragesForQuality(input, plainTask, counts)
@@ -85,7 +86,7 @@ export function buildPlan(input: PlanInput): Plan {
   const pricingFor = pricingOf(input, deliveredCoverage)
   const pricing = pricingFor({ tester, product })
   const priced = priceOrder(order.sequence, coverage, pricing)
-  const mayCut = cutsAllowed(task.rules, order)
+  const mayCut = cutPlaces(order, task.rules)
   const request = { curve, priced, chosen: order.chosen, mayCut, limits, goals }
   const cut = chooseCut(request)
   const at = (k: number): PointFigures => figuresAt(k, curve, priced, pricing)
@@ -98,13 +99,15 @@ export function buildPlan(input: PlanInput): Plan {
       curve: Array.from(curve.detected.subarray(1)),
       total,
       ceiling: input.ceiling === null ? [] : Array.from(input.ceiling),
+      isWeighted,
+      detections: task.detections,
       limits,
       goals,
       budget: {
         ...figures,
         chosen: Array.from(order.sequence.subarray(0, cut.patterns), (pattern) => pattern + 1),
         plainDetected: plainCurve.detected[cut.patterns],
-        plainCoverage: counts.all > 0 ? plainCurve.detected[cut.patterns] / counts.all : 0,
+        plainCoverage: faultCoverage(plainCurve.detected[cut.patterns], counts),
       },
       gap:
         input.ceiling === null
@@ -116,6 +119,7 @@ export function buildPlan(input: PlanInput): Plan {
       markers: markersOf(),
       worthOfMillisecond,
       asDelivered: asDelivered(),
+      insertions: insertions(),
       yield: resolveYield(product, deliveredCoverage),
       bandNarrowings: bandNarrowings(product, pricing.trueYield, figures.testCoverage),
       sensitivity: sensitivityOf({ tester, product }, pricing.trueYield, movedOutcome),
@@ -131,7 +135,7 @@ export function buildPlan(input: PlanInput): Plan {
     const places: [MarkerName, number | null][] = [
       ['goal', goals.length > 0 ? chooseCut(request).patterns : null],
       ['limit', limits.length > 0 ? chooseCut({ ...request, goals: [] }).patterns : null],
-      ['knee', input.knee],
+      ['knee', kneeOf(curve)],
       [
         'next millisecond',
         nextMillisecondBuysLess(curve, priced.milliseconds, order.chosen, worthOfMillisecond),
@@ -155,7 +159,7 @@ export function buildPlan(input: PlanInput): Plan {
       curve: itsCurve,
       priced: itsPriced,
       chosen: delivered.chosen,
-      mayCut: cutsAllowed(task.rules, delivered),
+      mayCut: cutPlaces(delivered, task.rules),
       limits,
       goals: [],
     })
@@ -164,6 +168,43 @@ export function buildPlan(input: PlanInput): Plan {
       sameDetected: same < 0 ? null : itsFigures(same),
       sameLimits: itsFigures(sameLimits.patterns),
     }
+  }
+
+  function insertions(): PlanResult['insertions'] {
+    if (product.insertions === null) return null
+    const running = order.sequence.subarray(0, cut.patterns)
+    const steps = product.insertions.map((planned) => {
+      const isHere = patterns.bursts.map(({ name }) => planned.bursts?.includes(name) ?? true)
+      const sequence = running
+        .filter((pattern) => isHere[pricing.time.burstOf[pattern]])
+        .slice(0, planned.patterns ?? running.length)
+      const detected = detectedWeight(plainTask, sequence)
+      const own = { ...tester, ...planned.tester }
+      const { milliseconds } = timeColumns(pricingFor({ tester: own, product }).time, sequence, false, 0)
+      return {
+        facts: {
+          patterns: sequence.length,
+          coverage: faultCoverage(detected, counts),
+          testCoverage: testCoverage(detected, counts),
+          unknownBursts: (planned.bursts ?? []).filter((name) =>
+            patterns.bursts.every((burst) => burst.name !== name),
+          ),
+        },
+        step: {
+          name: planned.name,
+          tester: own,
+          yieldIn: planned.yieldIn,
+          coverage: testCoverage(detected, counts),
+          programMs: planned.otherMs + milliseconds[sequence.length],
+        },
+      }
+    })
+    const priced = priceInsertions(
+      steps.map(({ step }) => step),
+      pricing.trueYield,
+      product.retestRate,
+    )
+    return priced.map((step, place) => ({ ...step, ...steps[place].facts }))
   }
 
   function movedOutcome(moved: Assumptions): MovedOutcome {

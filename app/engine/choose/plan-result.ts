@@ -1,4 +1,5 @@
 import type { BandNarrowing } from '../quality/escape-band.ts'
+import type { PricedInsertion } from '../quality/insertions.ts'
 import type { SensitivityRow } from '../quality/sensitivity.ts'
 import type { WhatIfGrid } from '../quality/what-if.ts'
 import type { YieldOrigin } from '../quality/yield.ts'
@@ -17,6 +18,10 @@ export type PlanResult = {
   readonly total: number
   /** ceiling[k − 1]: no k of these patterns detect more. Empty where no ceiling was worked out. */
   readonly ceiling: readonly number[]
+  /** True where weights other than the number of faults were given. */
+  readonly isWeighted: boolean
+  /** How many patterns have to detect a fault for it to count. */
+  readonly detections: number
   readonly limits: readonly Limit[]
   readonly goals: readonly Goal[]
   readonly budget: Budget
@@ -37,6 +42,8 @@ export type PlanResult = {
     readonly sameDetected: PointFigures | null
     readonly sameLimits: PointFigures
   }
+  /** Each step of test, where the product plans several. */
+  readonly insertions: readonly InsertionResult[] | null
   readonly yield: { readonly value: number; readonly origin: YieldOrigin }
   /** What the band of the escape rate would be once one input is known, narrowest first. */
   readonly bandNarrowings: readonly BandNarrowing[]
@@ -53,6 +60,14 @@ export type Budget = PointFigures & {
   /** Uncollapsed faults without weights and counted at the first detection; the same as `detected` where there are none. */
   readonly plainDetected: number
   readonly plainCoverage: number
+}
+
+export type InsertionResult = PricedInsertion & {
+  readonly patterns: number
+  readonly coverage: number
+  readonly testCoverage: number
+  /** Names that the product gives and the pattern set does not have. */
+  readonly unknownBursts: readonly string[]
 }
 
 export type MarkerName = 'goal' | 'limit' | 'knee' | 'next millisecond' | 'least total' | 'all'

@@ -5,13 +5,30 @@ import {
   type Contradiction,
   defaultsOf,
   readAssumptions,
+  shapesOf,
 } from '../tester/assumption-field.ts'
+import { type Tester, TESTER_FIELDS } from '../tester/tester.ts'
 
 export const DEFECT_MODELS = ['williams-brown', 'agrawal-seth-agrawal'] as const
 export type DefectModel = (typeof DEFECT_MODELS)[number]
 
 /** A block of the hierarchy, by the prefix of its names, and its share of the chip's area. */
 export type AreaShare = { readonly block: string; readonly share: number }
+
+/** One step of test, as a product plans it: which bursts run there, on what. */
+export type PlannedInsertion = {
+  readonly name: string
+  /** Names of the bursts that run here. Null: all. */
+  readonly bursts: readonly string[] | null
+  /** At most so many of their patterns, in the order. Null: all that the budget holds. */
+  readonly patterns: number | null
+  /** The yield of what comes in. Null: the product's at the first, then what the step before lets through. */
+  readonly yieldIn: number | null
+  /** The rest of its program on one site. */
+  readonly otherMs: number
+  /** What its tester has different from the plan's. */
+  readonly tester: Partial<Tester>
+}
 
 /** A product: what it yields, how it is scanned, how many are shipped, what an escape costs. Null is explained at each field. */
 export type Product = {
@@ -40,6 +57,7 @@ export type Product = {
   readonly shippedPerYear: number | null
   readonly retestRate: number
   readonly escapeCost: number | null
+  readonly insertions: readonly PlannedInsertion[] | null
 }
 
 /** The yield where a product file says nothing of it: an assumption, no measurement. */
@@ -288,6 +306,34 @@ export const PRODUCT_FIELDS: readonly AssumptionField<Product>[] = [
     nullMeans: 'not known: the cost of escapes is not worked out',
     explanation: 'What one defective device costs once it is shipped.',
   },
+  {
+    key: 'insertions',
+    label: 'Insertions',
+    unit: '',
+    shape: {
+      kind: 'or-null',
+      of: {
+        kind: 'list',
+        minItems: 1,
+        of: {
+          kind: 'object',
+          keys: {
+            name: { kind: 'text' },
+            bursts: { kind: 'or-null', of: { kind: 'list', of: { kind: 'text' } } },
+            patterns: { kind: 'or-null', of: COUNT },
+            yieldIn: { kind: 'or-null', of: YIELD },
+            otherMs: AMOUNT,
+            tester: { kind: 'object', keys: shapesOf(TESTER_FIELDS) },
+          },
+          required: ['name'],
+        },
+      },
+    },
+    default: null,
+    nullMeans: 'the patterns run once, on the tester of the plan',
+    explanation:
+      'Steps of test such as wafer sort and final test, each with its bursts, yield in and tester.',
+  },
 ]
 
 export const DEFAULT_PRODUCT: Product = defaultsOf(PRODUCT_FIELDS)
@@ -297,7 +343,18 @@ const SHARE_TOLERANCE = 1e-3
 
 /** Reads a product file. Codes: those of readAssumptions. */
 export function readProduct(source: Source): Reading<Product> {
-  return readAssumptions(source, 'product file', PRODUCT_FIELDS, productContradictions)
+  const { value, diagnostics } = readAssumptions(
+    source,
+    'product file',
+    PRODUCT_FIELDS,
+    productContradictions,
+  )
+  if (value === null || value.insertions === null) return { value, diagnostics }
+  const unsaid = { bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: {} }
+  return {
+    value: { ...value, insertions: value.insertions.map((insertion) => ({ ...unsaid, ...insertion })) },
+    diagnostics,
+  }
 }
 
 /** Returns what does not fit together in a product, key by key; empty where all does. */

@@ -25,6 +25,11 @@ export function defaultsOf<Values>(fields: readonly AssumptionField<Values>[]): 
   return Object.fromEntries(fields.map((field) => [field.key, field.default])) as Values
 }
 
+/** Returns the shapes of fields by key, for a reader. */
+export function shapesOf<Values>(fields: readonly AssumptionField<Values>[]): Keys {
+  return Object.fromEntries(fields.map((field) => [field.key, field.shape]))
+}
+
 /** Returns what is wrong with a value typed into a field, or null where it fits. NaN and null do not fit a number. */
 export function fieldProblem<Values>(field: AssumptionField<Values>, value: unknown): string | null {
   const text = JSON.stringify({ [field.key]: value ?? null })
@@ -44,8 +49,7 @@ export function readAssumptions<Values>(
   fields: readonly AssumptionField<Values>[],
   contradictions: (values: Values, given: ReadonlySet<keyof Values>) => readonly Contradiction<Values>[],
 ): Reading<Values> {
-  const shapes: Keys = Object.fromEntries(fields.map((field) => [field.key, field.shape]))
-  const read = readJsonObject(source, what, shapes)
+  const read = readJsonObject(source, what, shapesOf(fields))
   if (read.value === null) return { value: null, diagnostics: read.diagnostics }
   const { values: found, spanOf } = read.value
   const values = { ...defaultsOf(fields), ...found } as Values

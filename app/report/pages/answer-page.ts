@@ -1,6 +1,8 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
 import {
   answerPhrases,
+  countedWords,
+  coverageWords,
   goalWords,
   limitWords,
   MARKER_WORDS,
@@ -48,7 +50,7 @@ function chartCaption({ plan, counts, faultBase }: ReportInput, formats: NumberF
   const hasGoal = plan.goals.some(({ kind }) => kind === 'coverage')
   const inside = [hasLimit ? 'inside the limit' : '', hasGoal ? 'above the goal' : ''].filter(Boolean)
   return [
-    `Coverage against patterns applied. Base: ${formats.count(counts.all).value} stuck-at faults on ${faultBase}, uncollapsed.`,
+    `${coverageWords(plan)} against patterns applied. Base: ${formats.count(counts.all).value} stuck-at faults on ${faultBase}, uncollapsed.`,
     inside.length > 0 ? `White: ${inside.join(' and ')}.` : '',
     plan.ceiling.length > 0 ? 'Hatched: proven out of reach for any choice of these patterns.' : '',
   ]
@@ -140,11 +142,11 @@ function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
   const bound = ceiling[budget.patterns - 1]
   if (bound !== undefined) {
     reasons.push(
-      `No choice of ${count(budget.patterns)} patterns can detect more than ${count(bound)} faults; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
+      `No choice of ${count(budget.patterns)} patterns can detect more than ${count(bound)} ${countedWords(plan)}; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
     )
   }
   if (gap !== null && gap > 0 && limits.length > 0) {
-    reasons.push(`Under the same limit no choice could add more than ${count(gap)}.`)
+    reasons.push(`Under the same limit no choice could add more than ${count(gap)} ${countedWords(plan)}.`)
   }
   return reasons.join(' ')
 }

@@ -29,6 +29,8 @@ export function assumptionsPage(input: ReportInput, formats: NumberFormats): Rep
           [
             { kind: 'heading', text: 'Tester' },
             { kind: 'table', table: fieldTable(TESTER_FIELDS, tester, tester.currency, formats) },
+            { kind: 'heading', text: 'How firm the escape rate is' },
+            { kind: 'text', text: bandWords(input, formats) },
           ],
           [
             { kind: 'heading', text: 'Product' },
@@ -38,7 +40,6 @@ export function assumptionsPage(input: ReportInput, formats: NumberFormats): Rep
       },
       { kind: 'heading', text: 'Formulas' },
       { kind: 'list', items: FORMULAS },
-      { kind: 'text', text: bandWords(input, formats) },
     ],
     foot: '• differs from the default.',
   }
@@ -72,7 +73,7 @@ function fieldTable<Values>(
     ],
     rows: fields.flatMap((field) => {
       const value = values[field.key]
-      if (value === null) return LEFT_OUT.has(field.nullMeans) ? [] : [[field.label, field.nullMeans]]
+      if (value === null) return LEFT_OUT.has(field.key) ? [] : [[field.label, field.nullMeans]]
       const isChanged = JSON.stringify(value) !== JSON.stringify(field.default)
       const text = withUnit(written(value, formats), field.unit, currency)
       return [[field.label, isChanged ? `${text} •` : text]]
@@ -81,8 +82,8 @@ function fieldTable<Values>(
   }
 }
 
-/** What needs no row where it is not given. */
-const LEFT_OUT = new Set(['not given', 'not measured'])
+/** What needs no row where it is not given: where the yield comes from is said above. */
+const LEFT_OUT = new Set(['yield', 'areaMm2', 'defectsPerCm2', 'clustering', 'passFraction', 'passCoverage'])
 
 function withUnit(value: string, unit: string, currency: string): string {
   if (unit.startsWith('money')) return `${currency}${value}${unit.slice('money'.length)}`

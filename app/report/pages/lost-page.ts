@@ -1,6 +1,7 @@
+import type { LostBlock } from '../../engine/choose/lost-blocks.ts'
 import type { NumberFormats } from '../../contract/format-number.ts'
 import type { ReportPage, Table } from '../report-document.ts'
-import type { LostBlock, ReportInput } from '../report-input.ts'
+import type { ReportInput } from '../report-input.ts'
 
 const MOST_ROWS = 30
 
@@ -64,7 +65,7 @@ function lostTable(blocks: readonly LostBlock[], formats: NumberFormats): Table 
       { head: 'Brought back most cheaply by', holds: 'number' },
     ],
     rows: blocks.map(({ block, faults, detected, lost, cheapest }) => [
-      block,
+      block === '' ? 'top of the hierarchy' : block,
       count(faults),
       formats.coverage(faults > 0 ? detected / faults : null).value,
       count(lost),

@@ -1,6 +1,6 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
 import { INPUT_WORDS } from '../../contract/plan-words.ts'
-import type { MovedOutcome, TimeOutcome } from '../../engine/choose/plan-result.ts'
+import type { InsertionResult, MovedOutcome, TimeOutcome } from '../../engine/choose/plan-result.ts'
 import type { WhatIfGrid } from '../../engine/quality/what-if.ts'
 import { moneyChart } from '../charts/money-chart.ts'
 import { sensitivityChart, type SensitivityMeasure } from '../charts/sensitivity-chart.ts'
@@ -38,6 +38,14 @@ export function moneyPage(input: ReportInput, formats: NumberFormats): ReportPag
     { kind: 'table', table: movesTable(input, formats) },
     { kind: 'heading', text: 'Time per device with other equipment, ms' },
   )
+  if (plan.insertions !== null) {
+    blocks.splice(
+      -1,
+      0,
+      { kind: 'heading', text: 'Insertions' },
+      { kind: 'table', table: insertionTable(plan.insertions, pricing.tester.currency, formats) },
+    )
+  }
   const sites = gridTable(whatIf.sitesByEfficiency, 'Sites', (value) => `E ${formats.plain(value)}`, formats)
   if (whatIf.chainsByShiftRate === null) blocks.push({ kind: 'table', table: sites })
   else {
@@ -126,6 +134,32 @@ function movesTable({ plan }: ReportInput, formats: NumberFormats): Table {
       ),
       fromTo(low.outcome.patterns, high.outcome.patterns, count),
       ...(hasTotal ? [fromTo(low.outcome.leastTotalPatterns, high.outcome.leastTotalPatterns, count)] : []),
+    ]),
+    marked: null,
+  }
+}
+
+function insertionTable(steps: readonly InsertionResult[], currency: string, formats: NumberFormats): Table {
+  return {
+    columns: [
+      { head: '', holds: 'text' },
+      { head: 'Patterns', holds: 'number' },
+      { head: 'Test coverage, %', holds: 'number' },
+      { head: 'Yield in, %', holds: 'number' },
+      { head: 'Passing, %', holds: 'number' },
+      { head: 'ms a device', holds: 'number' },
+      { head: 'Tests per 1,000 shipped', holds: 'number' },
+      { head: `Cost per 1,000 shipped, ${currency}`, holds: 'number' },
+    ],
+    rows: steps.map((step) => [
+      step.name,
+      formats.count(step.patterns).value,
+      formats.coverage(step.testCoverage).value,
+      formats.share(step.yieldIn).value,
+      formats.share(step.passFraction).value,
+      formats.milliseconds(step.perDeviceMilliseconds).value,
+      formats.count(step.testedPerShipped * 1000).value,
+      formats.costPerThousand(step.costPerShipped, '').value,
     ]),
     marked: null,
   }

@@ -14,7 +14,7 @@ function cut(
   goals: Goal[],
   chosen = 4,
   tester: Partial<Tester> = {},
-  mayCut: Uint8Array | null = null,
+  mayCut = new Uint8Array(6).fill(1),
 ) {
   const wholeTester = { ...DEFAULT_TESTER, vectorMHz: 0.001, ...tester }
   const product = { ...DEFAULT_PRODUCT, residualDppm: 0 }

@@ -1,68 +1,6 @@
 import { describe, expect, test } from 'vitest'
-import { buildPlan, type PlanInput } from '../../../app/engine/choose/build-plan.ts'
-import { compileRules } from '../../../app/engine/choose/choice-rules.ts'
-import type { Constraints } from '../../../app/engine/choose/constraints.ts'
-import { NO_CONSTRAINTS } from '../../../app/engine/choose/constraints.ts'
-import { steepestFirst } from '../../../app/engine/choose/steepest-first.ts'
-import { buildFaultList } from '../../../app/engine/faults/build-fault-list.ts'
-import { readBench } from '../../../app/engine/formats/bench/read-bench.ts'
 import { DEFAULT_PRODUCT } from '../../../app/engine/quality/product.ts'
-import { emptyPlane, setBit } from '../../../app/engine/simulate/pattern-set.ts'
-import { simulateTwin } from '../../../app/engine/simulate/twin.ts'
-import { DEFAULT_TESTER } from '../../../app/engine/tester/tester.ts'
-
-/** A plan of one NAND gate `y` with inputs `a` and `b` under the patterns 00, 01, 11, 10, at 1 ms a vector. */
-function planOfNand(
-  { weights, ...changes }: Partial<PlanInput> & { weights?: Float64Array } = {},
-  constraints: Partial<Constraints> = {},
-) {
-  const text = 'INPUT(a)\nINPUT(b)\nOUTPUT(y)\ny = NAND(a, b)\n'
-  const { circuit } = readBench({ name: 'nand.bench', text }).value!
-  const faults = buildFaultList(circuit)
-  const nPatterns = 4
-  const value = emptyPlane(2, nPatterns)
-  for (const [pattern, bits] of ['00', '01', '11', '10'].entries()) {
-    for (const row of [0, 1]) if (bits[row] === '1') setBit(value, row, pattern)
-  }
-  const bursts = [{ name: 'all', first: 0, count: nPatterns }]
-  const set = { unknown: null, expected: null, observed: null, cycles: null, timeOnly: null, bursts }
-  const patterns = { ...set, nPatterns, value }
-  const { matrix } = simulateTwin({
-    circuit,
-    faults,
-    patterns,
-    detectionLimit: 0,
-    classes: null,
-    wantMatrix: true,
-  })!
-  const task = {
-    matrix: matrix!,
-    weights: weights ?? Float64Array.from(matrix!.classOfRow, (one) => faults.classSize[one]),
-    costs: new Float64Array(nPatterns).fill(1),
-    rules: compileRules({ ...NO_CONSTRAINTS, ...constraints }, nPatterns).rules!,
-    detections: 1,
-  }
-  return buildPlan({
-    faults,
-    untestable: null,
-    total: faults.nFaults,
-    order: steepestFirst(task)!,
-    patterns: { nPatterns, bursts, cycles: null },
-    patternFile: 'nand.vec',
-    scan: { flipFlops: 0, tracedChains: null, tracedLongest: null },
-    tester: { ...DEFAULT_TESTER, vectorMHz: 0.001 },
-    product: { ...DEFAULT_PRODUCT, yield: 0.5, residualDppm: 0 },
-    program: [],
-    limits: [],
-    goals: [],
-    ceiling: Float64Array.of(3, 5, 6, 6),
-    ceilingWithin: () => null,
-    smallest: null,
-    knee: null,
-    task,
-    ...changes,
-  })
-}
+import { planOfNand } from '../../helpers/nand-plan.ts'
 
 // Common practice, no source: a NAND has 6 faults; {01, 11, 10} detects all, {11, 01} 5 of 6.
 describe('a plan of a NAND gate', () => {
@@ -164,9 +102,8 @@ describe('a plan of a NAND gate', () => {
 
   test('marks where the money is least, in ascending order of patterns', () => {
     const product = { ...DEFAULT_PRODUCT, yield: 0.5, residualDppm: 0, shippedPerYear: 1000, escapeCost: 1 }
-    const { markers } = planOfNand({ product, knee: 1 }).result
+    const { markers } = planOfNand({ product }).result
     expect(markers.map(({ name, figures }) => [name, figures.patterns])).toEqual([
-      ['knee', 1],
       ['next millisecond', 3],
       ['least total', 3],
       ['all', 3],
@@ -181,5 +118,25 @@ describe('a plan of a NAND gate', () => {
     expect(whatIf.chainsByShiftRate).toBeNull()
     expect(whatIf.sitesByEfficiency.rows).toEqual([1, 2, 4])
     expect(whatIf.sitesByEfficiency.outcomes[1][4].perDeviceMilliseconds).toBeCloseTo(1, 12)
+  })
+
+  // By hand: sort runs 11 alone, which detects 3 of 6: T = 0.5, 0.5^0.5 pass, and as much comes to the final test,
+  // whose burst does not exist: it tests nothing and lets all pass.
+  test('splits over insertions, each with what runs there', () => {
+    const planned = { bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: {} }
+    const product = {
+      ...DEFAULT_PRODUCT,
+      yield: 0.5,
+      insertions: [
+        { ...planned, name: 'sort', patterns: 1, tester: { vectorMHz: 0.0005 } },
+        { ...planned, name: 'final', bursts: ['core'], otherMs: 7 },
+      ],
+    }
+    const [sort, final] = planOfNand({ product }).result.insertions!
+    expect(sort).toMatchObject({ patterns: 1, testCoverage: 0.5, yieldIn: 0.5, perDeviceMilliseconds: 2 })
+    expect(sort.testedPerShipped).toBeCloseTo(1 / Math.SQRT1_2, 12)
+    expect(final).toMatchObject({ patterns: 0, passFraction: 1, perDeviceMilliseconds: 7 })
+    expect(final.yieldIn).toBeCloseTo(Math.SQRT1_2, 12)
+    expect([sort.unknownBursts, final.unknownBursts]).toEqual([[], ['core']])
   })
 })

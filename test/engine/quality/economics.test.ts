@@ -111,15 +111,18 @@ describe('insertions', () => {
     }
     const priced = priceInsertions(
       [
-        { name: 'sort', tester: sortTester, yieldIn: 0.8, coverage: 0.95, programMs: 10 },
+        { name: 'sort', tester: sortTester, yieldIn: null, coverage: 0.95, programMs: 10 },
         { name: 'final', tester: finalTester, yieldIn: null, coverage: 0.5, programMs: 20 },
       ],
-      1000,
+      0.8,
       0,
     )
     expect(priced.map(({ yieldIn }) => yieldIn.toFixed(6))).toEqual(['0.800000', '0.988905'])
-    expect(priced.map(({ tested }) => tested.toFixed(2))).toEqual(['1243.05', '1005.59'])
-    expect(priced.map(({ cost }) => cost.toFixed(4))).toEqual(['0.1243', '1.2067'])
+    expect(priced.map(({ testedPerShipped }) => testedPerShipped.toFixed(5))).toEqual(['1.24305', '1.00559'])
+    expect(priced.map(({ costPerShipped }) => (1000 * costPerShipped).toFixed(4))).toEqual([
+      '0.1243',
+      '1.2067',
+    ])
     expect(priced[1].perDeviceMilliseconds).toBe(60)
   })
 
@@ -130,9 +133,9 @@ describe('insertions', () => {
         { ...step, name: 'a' },
         { ...step, name: 'b' },
       ],
-      1000,
+      1,
       0.1,
     )
-    expect(priced.map(({ tested }) => Math.round(tested))).toEqual([1100, 1100])
+    expect(priced.map(({ testedPerShipped }) => testedPerShipped)).toEqual([1.1, 1.1])
   })
 })
