@@ -53,7 +53,9 @@ export function limitWords(limit: Limit, formats: NumberFormats): string {
 }
 
 export function stopWords(stop: Stop, formats: NumberFormats): string {
-  return stop.kind === 'vectorMemory' ? 'the vector memory' : `the limit of ${limitWords(stop, formats)}`
+  if (stop.kind === 'vectorMemory') return 'the vector memory'
+  if (stop.kind === 'leftOut') return 'what the constraints leave out'
+  return `the limit of ${limitWords(stop, formats)}`
 }
 
 /** Returns a goal in words, such as "a coverage of 98.00 %". */

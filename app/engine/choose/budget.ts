@@ -14,8 +14,11 @@ export type Limit = {
 export type Goal =
   { readonly kind: 'coverage'; readonly least: number } | { readonly kind: 'dppm'; readonly most: number }
 
-/** What stops an order from going on: a limit, or the vector memory where reloads are forbidden. */
-export type Stop = Limit | { readonly kind: 'vectorMemory' }
+/**
+ * What stops an order from going on: a limit, the vector memory where reloads are forbidden, or patterns that a constraint
+ * leaves out.
+ */
+export type Stop = Limit | { readonly kind: 'vectorMemory' } | { readonly kind: 'leftOut' }
 
 /** An order, priced, and what is asked of a cut of it. */
 export type CutRequest = {
@@ -111,7 +114,8 @@ function goalColumn(goal: Goal, { detected, total }: CoverageCurve, priced: Pric
   return goal.kind === 'dppm' ? priced.dppm : detected.map((weight) => (total > 0 ? weight / total : 0))
 }
 
-function meets(goal: Goal, value: number): boolean {
+/** True where a value of the goal's kind, coverage or DPPM, meets it. */
+export function meets(goal: Goal, value: number): boolean {
   return goal.kind === 'dppm' ? value <= goal.most * (1 + SLACK) : value >= goal.least * (1 - SLACK)
 }
 

@@ -2,6 +2,7 @@ import type { FaultList } from '../faults/fault-list.ts'
 import { coverageByArea } from '../quality/area-shares.ts'
 import { sortIntoBlocks } from '../quality/block-coverage.ts'
 import { countFaults } from '../quality/count-faults.ts'
+import { dppmAt } from '../quality/defect-level.ts'
 import { bandNarrowings } from '../quality/escape-band.ts'
 import { priceInsertions } from '../quality/insertions.ts'
 import type { Product } from '../quality/product.ts'
@@ -14,7 +15,7 @@ import { burstMeasures, matchProgram, type ProgramRow } from '../tester/program.
 import type { Tester } from '../tester/tester.ts'
 import { costOfTime } from '../tester/tester-hours.ts'
 import { buildTimeModel, type PatternFacts, type ScanFacts, timeColumns } from '../tester/time-model.ts'
-import { chooseCut, type Goal, type Limit } from './budget.ts'
+import { chooseCut, type Cut, type Goal, type Limit, meets, type UnmetGoal } from './budget.ts'
 import type { ChoiceTask } from './choice-task.ts'
 import { curveOf } from './coverage-curve.ts'
 import { deliveredOrder } from './delivered-order.ts'
@@ -88,7 +89,7 @@ export function buildPlan(input: PlanInput): Plan {
   const priced = priceOrder(order.sequence, coverage, pricing)
   const mayCut = cutPlaces(order, task.rules)
   const request = { curve, priced, chosen: order.chosen, mayCut, limits, goals }
-  const cut = chooseCut(request)
+  const cut = blameLeftOut(chooseCut(request))
   const at = (k: number): PointFigures => figuresAt(k, curve, priced, pricing)
 
   const figures = at(cut.patterns)
@@ -129,6 +130,22 @@ export function buildPlan(input: PlanInput): Plan {
     priced,
     pricing,
     counts,
+  }
+
+  /** Names the patterns that are left out where with them a goal that is not met could be. */
+  function blameLeftOut(chosen: Cut): Cut {
+    if (order.runs === patterns.nPatterns || chosen.unmet.every(({ stop }) => stop !== null)) return chosen
+    const every = order.sequence
+    const best = testCoverage(detectedWeight(plainTask, every), counts)
+    const unmet = chosen.unmet.map((one): UnmetGoal => {
+      const { model, n0, residualDppm } = product
+      const reachable =
+        one.goal.kind === 'dppm'
+          ? dppmAt(best, { model, trueYield: pricing.trueYield, n0, residualDppm })
+          : detectedWeight(task, every) / total
+      return one.stop === null && meets(one.goal, reachable) ? { ...one, stop: { kind: 'leftOut' } } : one
+    })
+    return { ...chosen, unmet }
   }
 
   function markersOf(): readonly Marker[] {

@@ -51,6 +51,8 @@ function spendingUnder(stop: Stop, pricing: Pricing): Spending | null {
       const oneSiteMs = (stop.most * sites - indexMs) / touchdownMs(1, sites, multiSiteEfficiency)
       return { costs: patternMs(time), budget: oneSiteMs - restMs - overheadMs(time) }
     }
+    case 'leftOut':
+      return null
     case 'vectorMemory':
       if (tester.vectorMemory === null || tester.scanMemory !== null) return null
       return {

@@ -54,6 +54,16 @@ describe('a plan of a NAND gate', () => {
     expect(result.isReached).toBe(false)
   })
 
+  test('names the patterns left out where a goal could be reached with them', () => {
+    const goal = { kind: 'coverage', least: 1 } as const
+    const { result } = planOfNand({ goals: [goal] }, { leaveOut: [3] })
+    expect(result.cut.unmet).toEqual([{ goal, nearest: 5 / 6, stop: { kind: 'leftOut' } }])
+    const tooMuch = { kind: 'dppm', most: 0 } as const
+    expect(planOfNand({ goals: [tooMuch] }, { leaveOut: [3] }).result.cut.unmet[0].stop).toEqual({
+      kind: 'leftOut',
+    })
+  })
+
   test('quotes coverage plainly beside weights', () => {
     const { budget } = planOfNand({
       weights: Float64Array.of(1, 1, 1, 1),
