@@ -6,9 +6,8 @@ import { buildUnitMatrix, type UnitMatrix } from './unit-matrix.ts'
 
 /**
  * Returns the order that at each step takes the unit with the largest gain per cycle; ties go to the first in the file.
- * The gain of a unit is the weight of the detections that it adds, each fault counting up to `detections` times: for
- * n-detect this sum has diminishing returns where the number of faults detected n times has not. Among equal gains the
- * one that completes more weight goes first.
+ * The gain of a unit is the weight of the faults that it adds. For n-detect the detections short of the last count too,
+ * less the further a fault is from n (Gains says how much): by the last ones alone no first step would gain anything.
  * A unit that has to wait for others competes together with them. Null when `onProgress` ended it early.
  * SOURCE: Nemhauser, Wolsey & Fisher 1978, sections 4 and 5, for the greedy rule; gains kept exact by subtracting a
  * fault from all of its patterns when it counts no more.
@@ -86,15 +85,7 @@ function steepest(
   const { gain } = gains
   let best = -1
   for (let unit = 0; unit < nUnits; unit++) {
-    if (best >= 0) {
-      const difference = gain[unit] * unitCost[best] - gain[best] * unitCost[unit]
-      if (difference < 0) continue
-      if (
-        difference === 0 &&
-        !(gains.detections > 1 && isAllowed(unit) && gains.completes(unit) > gains.completes(best))
-      )
-        continue
-    }
+    if (best >= 0 && gain[unit] * unitCost[best] <= gain[best] * unitCost[unit]) continue
     if (isAllowed(unit)) best = unit
   }
   return best
