@@ -1,29 +1,18 @@
 import { GateKind } from '../circuit/circuit.ts'
 import { isGate } from '../circuit/circuit-builder.ts'
+import { buildGateTable, operationOf, type GateTable } from './gate-table.ts'
 import { placeFaults, type FaultSites } from './fault-sites.ts'
 import type { KernelTask } from './kernel-task.ts'
 import { isInternal, orderNets, type NetOrder } from './net-order.ts'
 
 /** The layout that this packer writes; a kernel built for another one is refused. */
-export const LAYOUT_VERSION = 2
+export const LAYOUT_VERSION = 3
 
 const NO_SLOT = 0xffffffff
 const HEADER_WORDS = 32
 /** Addresses below are left alone. */
 const FIRST_ADDRESS = 1024
 const LINE = 64
-
-/** Gate classes of the kernel; see the kernel's good machine. */
-const ONE_INPUT = 1
-const AND_2 = 2
-const XOR_2 = 3
-const AND_N = 4
-const XOR_N = 5
-
-const UNWATCHED = 0
-const WATCHED = 1
-const WATCHED_BY_MASK = 2
-const STEM = 4
 
 /** Planes that the kernel needs for intermediate results. */
 const SCRATCH_PLANES = 40
@@ -53,11 +42,11 @@ export type KernelLayout = {
 /** In the order of the kernel's header, after the counts. */
 const SHARED_TABLES = [
   'gates',
+  'inputs',
   'sites',
   'pins',
   'pinClasses',
   'fanouts',
-  'watched',
   'watchSlots',
   'watchRowStart',
   'watchRows',
@@ -100,6 +89,7 @@ type OwnTable = (typeof OWN_TABLES)[number] | 'header'
 /** What is written into the memory before the first block. */
 export type KernelTables = {
   readonly order: NetOrder
+  readonly gates: GateTable
   readonly sites: FaultSites
   readonly constants: readonly { readonly slot: number; readonly kind: number }[]
   /** The response rows that each watch mask gathers, where a pattern's mask says what is observed. */
@@ -127,6 +117,7 @@ function layOut<K extends string>(
 export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
   const { circuit, patterns, nClasses, detectionLimit } = task
   const order = orderNets(circuit)
+  const gates = buildGateTable(circuit, order, patterns.observed !== null)
   const sites = placeFaults(task, order)
   const nNets = order.nets.length
   const nRegions = order.regionStart.length - 1
@@ -145,18 +136,18 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
 
   const shared = layOut(FIRST_ADDRESS, {
     header: 4 * HEADER_WORDS,
-    gates: 16 * (nNets + 1),
+    gates: 4 * gates.records.length,
+    inputs: 4 * gates.inputs.length,
     sites: 16 * nNets,
     pins: 4 * nPins,
     pinClasses: 8 * nPins,
-    fanouts: 4 * nPins,
-    watched: nNets,
+    fanouts: 4 * gates.fanouts.length,
     watchSlots: patterns.observed === null ? 0 : 4 * nNets,
     watchRowStart: 4 * (watchRows.length + 1),
     watchRows: 4 * watchRows.reduce((sum, rows) => sum + rows.length, 0),
     regions: 4 * (nRegions + 1),
     taps: 16 * sites.taps.length,
-    masks: 4 * 32,
+    masks: 4 * 12 * 8,
     constants: 8 * constants.length,
     inputSlots: 4 * patterns.value.rows,
     patternValues: patterns.value.rows * rowBytes,
@@ -207,7 +198,7 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     ownBytes: own.end,
     ownStart: shared.end,
   }
-  return { layout, tables: { order, sites, constants, watchRows, unknownDrivers } }
+  return { layout, tables: { order, gates, sites, constants, watchRows, unknownDrivers } }
 }
 
 /** Bytes of memory that the task takes on that many threads. */
@@ -222,16 +213,17 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
   const { order, sites, constants, watchRows, unknownDrivers } = plan.tables
   const words = (extent: Extent): Uint32Array => new Uint32Array(memory, extent.at, extent.bytes >> 2)
   writeCircuit(plan, task, memory)
-  words(shared.regions).set(order.regionStart)
   const taps = words(shared.taps)
   sites.taps.forEach((tap, at) => {
     const row = patterns.observed === null ? NO_SLOT : tap.row
     taps.set([tap.slot, tap.classes[0], tap.classes[1], row], 4 * at)
   })
   const masks = words(shared.masks)
-  for (let inversions = 0; inversions < 4; inversions++) {
-    masks.fill(inversions & 1 ? NO_SLOT : 0, 8 * inversions, 8 * inversions + 4)
-    masks.fill(inversions & 2 ? NO_SLOT : 0, 8 * inversions + 4, 8 * inversions + 8)
+  for (let inversions = 0; inversions < 8; inversions++) {
+    for (let bit = 0; bit < 3; bit++) {
+      const at = 12 * inversions + 4 * bit
+      masks.fill((inversions >>> bit) & 1 ? NO_SLOT : 0, at, at + 4)
+    }
   }
   const constantTable = words(shared.constants)
   constants.forEach(({ slot, kind }, at) => {
@@ -267,58 +259,36 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
 
 function writeCircuit(plan: KernelPlan, task: KernelTask, memory: ArrayBufferLike): void {
   const { circuit, patterns } = task
-  const { shared, nRegions } = plan.layout
-  const { order, sites } = plan.tables
+  const { shared } = plan.layout
+  const { order, gates, sites } = plan.tables
   const words = (extent: Extent): Uint32Array => new Uint32Array(memory, extent.at, extent.bytes >> 2)
-  const gates = words(shared.gates)
+  words(shared.gates).set(gates.records)
+  words(shared.inputs).set(gates.inputs)
+  words(shared.fanouts).set(gates.fanouts)
+  words(shared.regions).set(order.regionStart)
   const siteTable = words(shared.sites)
   const pins = words(shared.pins)
   const pinClasses = words(shared.pinClasses)
-  const fanouts = words(shared.fanouts)
-  const watched = new Uint8Array(memory, shared.watched.at, shared.watched.bytes)
   const watchSlots = words(shared.watchSlots)
-  const nNets = order.nets.length
-  const fanoutEnd = new Uint32Array(nNets)
-
-  let fanoutStart = 0
-  let watchSlot = 0
-  for (let slot = 0; slot < nNets; slot++) {
-    const net = order.nets[slot]
-    gates[4 * slot + 3] = fanoutEnd[slot] = fanoutStart
-    fanoutStart += order.uses[net]
-    if (order.observed[net] === 0) watched[slot] = UNWATCHED
-    else if (patterns.observed === null) watched[slot] = WATCHED
-    else {
-      watched[slot] = WATCHED_BY_MASK
-      watchSlots[slot] = watchSlot++
-    }
-  }
-  gates[4 * nNets + 3] = fanoutStart
-  for (let region = 1; region <= nRegions; region++) watched[order.regionStart[region] - 1] |= STEM
-
+  let watches = 0
   let pin = 0
-  for (let slot = 0; slot < nNets; slot++) {
+  for (let slot = 0; slot < order.nets.length; slot++) {
     const net = order.nets[slot]
+    if (patterns.observed !== null && order.observed[net] === 1) watchSlots[slot] = watches++
     siteTable[4 * slot] = sites.netClasses[2 * slot]
     siteTable[4 * slot + 1] = sites.netClasses[2 * slot + 1]
     if (!isGate(circuit.kind[net])) continue
     const firstPin = pin
     for (let at = circuit.faninStart[net]; at < circuit.faninStart[net + 1]; at++) {
       const source = circuit.fanin[at]
-      const sourceSlot = order.slotOf[source]
-      pins[pin] = (sourceSlot << 1) | Number(isInternal(order, source))
+      pins[pin] = (order.slotOf[source] << 1) | Number(isInternal(order, source))
       pinClasses[2 * pin] = sites.pinClasses[2 * at]
       pinClasses[2 * pin + 1] = sites.pinClasses[2 * at + 1]
-      fanouts[fanoutEnd[sourceSlot]++] = slot
       pin++
     }
     const count = pin - firstPin
     siteTable[4 * slot + 2] = firstPin
-    siteTable[4 * slot + 3] = count
-    const { op, listed } = operation(circuit.kind[net], count)
-    gates[4 * slot] = op
-    gates[4 * slot + 1] = listed ? firstPin : pins[firstPin] >>> 1
-    gates[4 * slot + 2] = listed ? count : pins[pin - 1] >>> 1
+    siteTable[4 * slot + 3] = (count << 8) | operationOf(circuit.kind[net], count)
   }
 }
 
@@ -340,21 +310,6 @@ export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBuff
     return base + own[table].at
   }
   new Uint32Array(memory, base, HEADER_WORDS).set(OWN_TABLES.map(addressOf))
-}
-
-/** The kernel's code for a gate, and whether its inputs are listed in the pin table rather than in its record. */
-function operation(kind: number, inputs: number): { op: number; listed: boolean } {
-  const inverts =
-    kind === GateKind.Not || kind === GateKind.Nand || kind === GateKind.Nor || kind === GateKind.Xnor
-  const isXor = kind === GateKind.Xor || kind === GateKind.Xnor
-  const isOr = kind === GateKind.Or || kind === GateKind.Nor
-  const listed = inputs > 2
-  if (inputs === 1) return { op: (ONE_INPUT << 2) | (inverts ? 2 : 0), listed }
-  if (isXor) return { op: ((listed ? XOR_N : XOR_2) << 2) | (inverts ? 2 : 0), listed }
-  // OR is AND with inputs and output inverted.
-  const inward = isOr ? 1 : 0
-  const outward = isOr !== inverts ? 2 : 0
-  return { op: ((listed ? AND_N : AND_2) << 2) | inward | outward, listed }
 }
 
 /** The response rows that observe each observed net, in the order of the nets' slots. */

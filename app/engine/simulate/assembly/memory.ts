@@ -1,7 +1,7 @@
 /** Where the tables lie: byte addresses, read once from the headers that the packer writes. */
 
 /** Grows with every change of tables or headers, so that a driver refuses a kernel of another build. */
-const LAYOUT_VERSION: u32 = 2
+const LAYOUT_VERSION: u32 = 3
 
 export function layoutVersion(): u32 {
   return LAYOUT_VERSION
@@ -20,11 +20,11 @@ export let rowBytes: u32 = 0
 export let unknownDrivers: u32 = 0
 
 export let gates: usize = 0
+export let inputs: usize = 0
 export let sites: usize = 0
 export let pins: usize = 0
 export let pinClasses: usize = 0
 export let fanouts: usize = 0
-export let watched: usize = 0
 export let watchSlots: usize = 0
 export let watchRowStart: usize = 0
 export let watchRows: usize = 0
@@ -72,11 +72,11 @@ export function attach(shared: usize, own: usize): void {
   rowBytes = load<u32>(shared, 28)
   unknownDrivers = load<u32>(shared, 32)
   gates = load<u32>(shared, 36)
-  sites = load<u32>(shared, 40)
-  pins = load<u32>(shared, 44)
-  pinClasses = load<u32>(shared, 48)
-  fanouts = load<u32>(shared, 52)
-  watched = load<u32>(shared, 56)
+  inputs = load<u32>(shared, 40)
+  sites = load<u32>(shared, 44)
+  pins = load<u32>(shared, 48)
+  pinClasses = load<u32>(shared, 52)
+  fanouts = load<u32>(shared, 56)
   watchSlots = load<u32>(shared, 60)
   watchRowStart = load<u32>(shared, 64)
   watchRows = load<u32>(shared, 68)

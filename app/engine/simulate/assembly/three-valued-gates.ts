@@ -1,6 +1,6 @@
-import { gates, masks, nNets, pins, values } from './memory'
-import { AND_2, AND_N, SOURCE, XOR_2 } from './two-valued-gates'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE, none } from './plane'
+import { gates, inputs, nNets, values } from './memory'
+import { AND_2, AND_N, SOURCE, XOR_2, classOf } from './two-valued-gates'
+import { PLANE_BYTES, PLANE_SHIFT, WIDE } from './plane'
 
 /**
  * Three-valued gates (Kleene): a net has two planes, "known 1" and "known 0", one after the other; where both are 0 it
@@ -8,17 +8,11 @@ import { PLANE_BYTES, PLANE_SHIFT, WIDE, none } from './plane'
  */
 export const NET_SHIFT: i32 = PLANE_SHIFT + 1
 
-/** Offset of the plane that an AND reads as "known 1" of its inputs, or writes of its output. */
+/** Offset of the plane in which a net, or an inverted one, is known to be 1. */
 // @ts-ignore: decorator
 @inline
-export function truthOfInputs(op: u32): usize {
-  return <usize>(op & 1) << PLANE_SHIFT
-}
-
-// @ts-ignore: decorator
-@inline
-export function truthOfOutput(op: u32): usize {
-  return <usize>(op & 2) << (PLANE_SHIFT - 1)
+export function planeOf(inverted: u32): usize {
+  return <usize>inverted << PLANE_SHIFT
 }
 
 // @ts-ignore: decorator
@@ -30,16 +24,17 @@ export function netValue(slot: u32): usize {
 // @ts-ignore: decorator
 @inline
 function evaluateLane(record: usize, op: u32, to: usize, lane: usize): void {
-  const kind = op >> 2
+  const kind = classOf(op)
   let one: v128
   let zero: v128
   if (kind <= XOR_2) {
     const a = netValue(load<u32>(record, 4)) + lane
     const b = netValue(load<u32>(record, 8)) + lane
     if (kind <= AND_2) {
-      const truth = truthOfInputs(op)
-      one = v128.and(v128.load(a + truth), v128.load(b + truth))
-      zero = v128.or(v128.load(a + (truth ^ PLANE_BYTES)), v128.load(b + (truth ^ PLANE_BYTES)))
+      const aTrue = planeOf(op & 1)
+      const bTrue = planeOf((op >> 1) & 1)
+      one = v128.and(v128.load(a + aTrue), v128.load(b + bTrue))
+      zero = v128.or(v128.load(a + (aTrue ^ PLANE_BYTES)), v128.load(b + (bTrue ^ PLANE_BYTES)))
     } else {
       const a1 = v128.load(a)
       const a0 = v128.load(a + PLANE_BYTES)
@@ -49,16 +44,16 @@ function evaluateLane(record: usize, op: u32, to: usize, lane: usize): void {
       zero = v128.or(v128.and(a1, b1), v128.and(a0, b0))
     }
   } else {
-    let pin = pins + (<usize>load<u32>(record, 4) << 2)
-    const end = pin + (<usize>load<u32>(record, 8) << 2)
-    const truth = kind == AND_N ? truthOfInputs(op) : 0
-    const firstValue = netValue(load<u32>(pin) >> 1) + lane
-    one = v128.load(firstValue + truth)
-    zero = v128.load(firstValue + (truth ^ PLANE_BYTES))
-    for (pin += 4; pin < end; pin += 4) {
-      const value = netValue(load<u32>(pin) >> 1) + lane
-      const b1 = v128.load(value + truth)
-      const b0 = v128.load(value + (truth ^ PLANE_BYTES))
+    let input = inputs + (<usize>load<u32>(record, 4) << 2)
+    const end = input + (<usize>load<u32>(record, 8) << 2)
+    const firstEntry = load<u32>(input)
+    one = v128.load(netValue(firstEntry >> 1) + lane + planeOf(firstEntry & 1))
+    zero = v128.load(netValue(firstEntry >> 1) + lane + (planeOf(firstEntry & 1) ^ PLANE_BYTES))
+    for (input += 4; input < end; input += 4) {
+      const entry = load<u32>(input)
+      const value = netValue(entry >> 1) + lane
+      const b1 = v128.load(value + planeOf(entry & 1))
+      const b0 = v128.load(value + (planeOf(entry & 1) ^ PLANE_BYTES))
       if (kind == AND_N) {
         one = v128.and(one, b1)
         zero = v128.or(zero, b0)
@@ -69,7 +64,7 @@ function evaluateLane(record: usize, op: u32, to: usize, lane: usize): void {
       }
     }
   }
-  const out = truthOfOutput(op)
+  const out = planeOf((op >> 2) & 1)
   v128.store(to + lane + out, one)
   v128.store(to + lane + (out ^ PLANE_BYTES), zero)
 }
@@ -91,6 +86,6 @@ export function evaluateGoodThreeValued(): void {
   let record = gates
   for (let slot: u32 = 0; slot < nNets; slot++, record += 16) {
     const op = load<u32>(record)
-    if (op >> 2 != SOURCE) evaluateGate(record, op, netValue(slot))
+    if (classOf(op) != SOURCE) evaluateGate(record, op, netValue(slot))
   }
 }

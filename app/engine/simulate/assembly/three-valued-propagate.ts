@@ -1,7 +1,7 @@
-import { fanouts, gates, observability, queue, scratch, summary, undo, watched, watchMasks, watchSlots } from './memory'
+import { fanouts, gates, observability, queue, scratch, summary, undo, watchMasks, watchSlots } from './memory'
 import { PLANE_BYTES, PLANE_SHIFT } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
-import { ALWAYS_WATCHED, WATCH_BITS } from './two-valued-propagate'
+import { ALWAYS_WATCHED, watchOf } from './two-valued-propagate'
 import { spend } from './work'
 import { evaluateGate, netValue } from './three-valued-gates'
 
@@ -52,7 +52,8 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     pending--
     evaluated++
     const record = gates + (<usize>gate << 4)
-    evaluateGate(record, load<u32>(record), fresh)
+    const op = load<u32>(record)
+    evaluateGate(record, op, fresh)
     const at = netValue(gate)
     let any = i64x2.splat(0)
     for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
@@ -65,7 +66,7 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     }
     if (!v128.any_true(any)) continue
 
-    const watch = load<u8>(watched + gate) & WATCH_BITS
+    const watch = watchOf(op)
     if (watch) {
       const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
       any = i64x2.splat(0)

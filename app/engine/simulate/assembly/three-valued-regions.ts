@@ -15,16 +15,15 @@ import {
   sites,
   taps,
   valid,
-  watched,
   watchMasks,
   watchSlots,
 } from './memory'
 import { limit } from './block'
 import { NO_CLASS, countAll, countLimited, isSettled } from './counting'
-import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './two-valued-gates'
+import { AND_N, ONE_INPUT, SOURCE, XOR_2, classOf } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, clear, copy, isEmpty } from './plane'
-import { netValue, truthOfInputs } from './three-valued-gates'
-import { ALWAYS_WATCHED, WATCH_BITS } from './two-valued-propagate'
+import { netValue, planeOf } from './three-valued-gates'
+import { ALWAYS_WATCHED, watchOf } from './two-valued-propagate'
 import { spend } from './work'
 import { BOTH, DETECTIONS, FLIP, POSSIBLE, TO_X, propagateThreeValued } from './three-valued-propagate'
 
@@ -81,11 +80,12 @@ function visitOpen(group: u32, effect: usize, value: usize): void {
 }
 
 /** Writes to `to` the patterns of `seen` in which a flip at the pin flips the gate. */
-function sensitiseFlip(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
+function sensitiseFlip(op: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
   copy(to, seen)
+  const kind = classOf(op)
   if (kind == ONE_INPUT) return
   const isXor = kind == XOR_2 || kind > AND_N
-  const truth = truthOfInputs(load<u32>(record))
+  const truth = planeOf(op & 1)
   for (let other = firstPin; other < end; other += 4) {
     if (other == pin) continue
     const at = netValue(load<u32>(other) >> 1)
@@ -102,9 +102,10 @@ function sensitiseFlip(record: usize, kind: u32, pin: usize, firstPin: usize, en
  * inputs are X and none decides the output, a flip away from the deciding value turns the output to X; and an X on
  * the output turns the stem to X wherever a flip has any effect there.
  */
-function sensitiseBoth(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, effect: usize, to: usize): void {
+function sensitiseBoth(op: u32, pin: usize, firstPin: usize, end: usize, effect: usize, to: usize): void {
+  const kind = classOf(op)
   const isXor = kind == XOR_2 || kind > AND_N
-  const truth = truthOfInputs(load<u32>(record))
+  const truth = planeOf(op & 1)
   const own = netValue(load<u32>(pin) >> 1)
   for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
     let passes = i64x2.splat(-1)
@@ -139,19 +140,18 @@ function walkCounting(start: u32, stem: u32): void {
     const site = sites + (<usize>net << 4)
     visitCounting(load<u32>(site, 0), seen, netValue(net))
     visitCounting(load<u32>(site, 4), seen, netValue(net) + PLANE_BYTES)
-    const record = gates + (<usize>net << 4)
-    const kind = load<u32>(record) >> 2
-    if (kind == SOURCE) continue
+    const op = load<u32>(site, 12)
+    if (classOf(op) == SOURCE) continue
     const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
-    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    const end = firstPin + (<usize>(op >> 8) << 2)
     let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitiseFlip(record, kind, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
+        sensitiseFlip(op, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitiseFlip(record, kind, pin, firstPin, end, seen, to)
+        sensitiseFlip(op, pin, firstPin, end, seen, to)
         visitCounting(load<u32>(classes, 0), to, netValue(source >> 1))
         visitCounting(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
       }
@@ -171,19 +171,18 @@ function walkOpen(start: u32, stem: u32): void {
     const site = sites + (<usize>net << 4)
     visitOpen(load<u32>(site, 0), effect, netValue(net))
     visitOpen(load<u32>(site, 4), effect, netValue(net) + PLANE_BYTES)
-    const record = gates + (<usize>net << 4)
-    const kind = load<u32>(record) >> 2
-    if (kind == SOURCE) continue
+    const op = load<u32>(site, 12)
+    if (classOf(op) == SOURCE) continue
     const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
-    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    const end = firstPin + (<usize>(op >> 8) << 2)
     let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitiseBoth(record, kind, pin, firstPin, end, effect, effectsAt(source >> 1, start))
+        sensitiseBoth(op, pin, firstPin, end, effect, effectsAt(source >> 1, start))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitiseBoth(record, kind, pin, firstPin, end, effect, to)
+        sensitiseBoth(op, pin, firstPin, end, effect, to)
         visitOpen(load<u32>(classes, 0), to, netValue(source >> 1))
         visitOpen(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
       }
@@ -193,8 +192,8 @@ function walkOpen(start: u32, stem: u32): void {
 
 /** As propagateThreeValued, with the stem's own observation taken into account. `asked` is used up. */
 function observe(stem: u32, change: u32, ask: u32, asked: usize, reached: usize, possible: usize): void {
-  const watch = load<u8>(watched + stem) & WATCH_BITS
   const record = gates + (<usize>stem << 4)
+  const watch = watchOf(load<u32>(record))
   if (watch == 0) {
     if (load<u32>(record, 12) != load<u32>(record, 28)) {
       propagateThreeValued(stem, change, ask, asked, reached, possible)

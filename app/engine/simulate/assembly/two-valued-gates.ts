@@ -1,8 +1,14 @@
-import { gates, nNets, pins, values, masks } from './memory'
-import { PLANE_SHIFT, WIDE, none } from './plane'
+import { gates, inputs, masks, nNets, values } from './memory'
+import { PLANE_BYTES, PLANE_SHIFT, WIDE } from './plane'
 
-/** Classes of gates, as the packer numbers them; all but SOURCE are followed by their inversions in two bits. */
+/**
+ * A gate's record: 16 bytes. The first word holds its operation: inversions of the first input, of the second and of the
+ * output in bits 0 to 2, the class from bit 3, and from bit 8 how the net is observed. OR is AND with inputs and output
+ * inverted. Then come the slots of its two inputs, or the start and the number of its inputs in the table of listed ones
+ * (slot << 1 | inverted), and where its fan-outs start.
+ */
 export const SOURCE: u32 = 0
+/** Buffers and inverters: an AND whose two inputs are the same. */
 export const ONE_INPUT: u32 = 1
 export const AND_2: u32 = 2
 export const XOR_2: u32 = 3
@@ -11,34 +17,53 @@ export const XOR_N: u32 = 5
 
 // @ts-ignore: decorator
 @inline
-export function and2(a: usize, b: usize, inward: v128, outward: v128, at: usize): v128 {
-  return v128.xor(v128.and(v128.xor(v128.load(a + at), inward), v128.xor(v128.load(b + at), inward)), outward)
+export function classOf(op: u32): u32 {
+  return (op >> 3) & 7
+}
+
+/** Vectors of all 0 or all 1 for the inversions of an operation: first input, second, output. */
+// @ts-ignore: decorator
+@inline
+export function inversions(op: u32): usize {
+  return masks + <usize>(op & 7) * 48
 }
 
 // @ts-ignore: decorator
 @inline
-export function xor2(a: usize, b: usize, outward: v128, at: usize): v128 {
-  return v128.xor(v128.xor(v128.load(a + at), v128.load(b + at)), outward)
-}
-
-/** One lane of a gate with any number of inputs, its pins listed from `pin` to `end`. */
-// @ts-ignore: decorator
-@inline
-export function andN(pin: usize, end: usize, base: usize, inward: v128, outward: v128, at: usize): v128 {
-  let all = v128.xor(v128.load(base + (<usize>(load<u32>(pin) >> 1) << PLANE_SHIFT) + at), inward)
-  for (let next = pin + 4; next < end; next += 4) {
-    all = v128.and(all, v128.xor(v128.load(base + (<usize>(load<u32>(next) >> 1) << PLANE_SHIFT) + at), inward))
-  }
-  return v128.xor(all, outward)
+export function and2(a: usize, b: usize, aInverts: v128, bInverts: v128, inverts: v128, lane: usize): v128 {
+  return v128.xor(v128.and(v128.xor(v128.load(a + lane), aInverts), v128.xor(v128.load(b + lane), bInverts)), inverts)
 }
 
 // @ts-ignore: decorator
 @inline
-export function xorN(pin: usize, end: usize, base: usize, outward: v128, at: usize): v128 {
-  let odd = outward
-  for (let next = pin; next < end; next += 4) {
-    odd = v128.xor(odd, v128.load(base + (<usize>(load<u32>(next) >> 1) << PLANE_SHIFT) + at))
-  }
+export function xor2(a: usize, b: usize, inverts: v128, lane: usize): v128 {
+  return v128.xor(v128.xor(v128.load(a + lane), v128.load(b + lane)), inverts)
+}
+
+// @ts-ignore: decorator
+@inline
+function listedInput(input: usize, lane: usize): v128 {
+  const entry = load<u32>(input)
+  return v128.xor(
+    v128.load(values + (<usize>(entry >> 1) << PLANE_SHIFT) + lane),
+    i32x4.splat(-<i32>(entry & 1)),
+  )
+}
+
+/** One lane of an AND of the inputs listed from `input` to `end`. */
+// @ts-ignore: decorator
+@inline
+export function andN(input: usize, end: usize, inverts: v128, lane: usize): v128 {
+  let all = listedInput(input, lane)
+  for (let next = input + 4; next < end; next += 4) all = v128.and(all, listedInput(next, lane))
+  return v128.xor(all, inverts)
+}
+
+// @ts-ignore: decorator
+@inline
+export function xorN(input: usize, end: usize, inverts: v128, lane: usize): v128 {
+  let odd = inverts
+  for (let next = input; next < end; next += 4) odd = v128.xor(odd, listedInput(next, lane))
   return odd
 }
 
@@ -48,47 +73,47 @@ export function evaluateGoodTwoValued(): void {
   let record = gates
   let to = base
   const end = gates + (<usize>nNets << 4)
-  for (; record < end; record += 16, to += 1 << PLANE_SHIFT) {
+  for (; record < end; record += 16, to += PLANE_BYTES) {
     const op = load<u32>(record)
-    const kind = op >> 2
+    const kind = classOf(op)
     if (kind == SOURCE) continue
-    const inversions = masks + (<usize>(op & 3) << 5)
-    const inward = v128.load(inversions, 0)
-    const outward = v128.load(inversions, 16)
-    if (kind <= AND_2) {
+    const inverts = v128.load(inversions(op), 32)
+    if (kind <= XOR_2) {
       const a = base + (<usize>load<u32>(record, 4) << PLANE_SHIFT)
       const b = base + (<usize>load<u32>(record, 8) << PLANE_SHIFT)
-      v128.store(to, and2(a, b, inward, outward, 0), 0)
-      v128.store(to, and2(a, b, inward, outward, 16), 16)
-      if (WIDE) {
-        v128.store(to, and2(a, b, inward, outward, 32), 32)
-        v128.store(to, and2(a, b, inward, outward, 48), 48)
-      }
-    } else if (kind == XOR_2) {
-      const a = base + (<usize>load<u32>(record, 4) << PLANE_SHIFT)
-      const b = base + (<usize>load<u32>(record, 8) << PLANE_SHIFT)
-      v128.store(to, xor2(a, b, outward, 0), 0)
-      v128.store(to, xor2(a, b, outward, 16), 16)
-      if (WIDE) {
-        v128.store(to, xor2(a, b, outward, 32), 32)
-        v128.store(to, xor2(a, b, outward, 48), 48)
-      }
-    } else {
-      const pin = pins + (<usize>load<u32>(record, 4) << 2)
-      const end = pin + (<usize>load<u32>(record, 8) << 2)
-      if (kind == AND_N) {
-        v128.store(to, andN(pin, end, base, inward, outward, 0), 0)
-        v128.store(to, andN(pin, end, base, inward, outward, 16), 16)
+      if (kind <= AND_2) {
+        const aInverts = v128.load(inversions(op), 0)
+        const bInverts = v128.load(inversions(op), 16)
+        v128.store(to, and2(a, b, aInverts, bInverts, inverts, 0), 0)
+        v128.store(to, and2(a, b, aInverts, bInverts, inverts, 16), 16)
         if (WIDE) {
-          v128.store(to, andN(pin, end, base, inward, outward, 32), 32)
-          v128.store(to, andN(pin, end, base, inward, outward, 48), 48)
+          v128.store(to, and2(a, b, aInverts, bInverts, inverts, 32), 32)
+          v128.store(to, and2(a, b, aInverts, bInverts, inverts, 48), 48)
         }
       } else {
-        v128.store(to, xorN(pin, end, base, outward, 0), 0)
-        v128.store(to, xorN(pin, end, base, outward, 16), 16)
+        v128.store(to, xor2(a, b, inverts, 0), 0)
+        v128.store(to, xor2(a, b, inverts, 16), 16)
         if (WIDE) {
-          v128.store(to, xorN(pin, end, base, outward, 32), 32)
-          v128.store(to, xorN(pin, end, base, outward, 48), 48)
+          v128.store(to, xor2(a, b, inverts, 32), 32)
+          v128.store(to, xor2(a, b, inverts, 48), 48)
+        }
+      }
+    } else {
+      const input = inputs + (<usize>load<u32>(record, 4) << 2)
+      const end = input + (<usize>load<u32>(record, 8) << 2)
+      if (kind == AND_N) {
+        v128.store(to, andN(input, end, inverts, 0), 0)
+        v128.store(to, andN(input, end, inverts, 16), 16)
+        if (WIDE) {
+          v128.store(to, andN(input, end, inverts, 32), 32)
+          v128.store(to, andN(input, end, inverts, 48), 48)
+        }
+      } else {
+        v128.store(to, xorN(input, end, inverts, 0), 0)
+        v128.store(to, xorN(input, end, inverts, 16), 16)
+        if (WIDE) {
+          v128.store(to, xorN(input, end, inverts, 32), 32)
+          v128.store(to, xorN(input, end, inverts, 48), 48)
         }
       }
     }

@@ -2,31 +2,34 @@ import { pass } from './block'
 import {
   fanouts,
   gates,
+  inputs,
   known,
   knownPass,
-  masks,
   observability,
-  pins,
   queue,
   scratch,
   summary,
   undo,
   values,
-  watched,
   watchMasks,
   watchSlots,
 } from './memory'
-import { AND_2, AND_N, XOR_2, and2, andN, xor2, xorN } from './two-valued-gates'
+import { AND_2, AND_N, XOR_2, and2, andN, classOf, inversions, xor2, xorN } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, flip, none } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
 import { spend } from './work'
 
 const UNDO_BYTES: i32 = PLANE_BYTES + 16
 
-/** Bits of a net's entry in `watched`. */
-export const WATCH_BITS: u32 = 3
+/** How a net is observed: not at all, in every pattern, or as its mask says. */
 export const ALWAYS_WATCHED: u32 = 1
-const STEM_BIT: u32 = 4
+const STEM_BIT: u32 = 1 << 10
+
+// @ts-ignore: decorator
+@inline
+export function watchOf(op: u32): u32 {
+  return (op >> 8) & 3
+}
 
 const NOTE_BYTES: i32 = PLANE_BYTES + 16
 const MAX_NOTES: i32 = 16
@@ -102,46 +105,48 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
     evaluated++
     const record = gates + (<usize>gate << 4)
     const op = load<u32>(record)
-    const kind = op >> 2
-    const inversions = masks + (<usize>(op & 3) << 5)
-    const outward = v128.load(inversions, 16)
-    let new0: v128, new1: v128, new2: v128 = none(), new3: v128 = none()
+    const kind = classOf(op)
+    const inverts = v128.load(inversions(op), 32)
+    let new0: v128
+    let new1: v128
+    let new2: v128 = none()
+    let new3: v128 = none()
     if (kind <= XOR_2) {
       const a = base + (<usize>load<u32>(record, 4) << PLANE_SHIFT)
       const b = base + (<usize>load<u32>(record, 8) << PLANE_SHIFT)
       if (kind <= AND_2) {
-        const inward = v128.load(inversions, 0)
-        new0 = and2(a, b, inward, outward, 0)
-        new1 = and2(a, b, inward, outward, 16)
+        const aInverts = v128.load(inversions(op), 0)
+        const bInverts = v128.load(inversions(op), 16)
+        new0 = and2(a, b, aInverts, bInverts, inverts, 0)
+        new1 = and2(a, b, aInverts, bInverts, inverts, 16)
         if (WIDE) {
-          new2 = and2(a, b, inward, outward, 32)
-          new3 = and2(a, b, inward, outward, 48)
+          new2 = and2(a, b, aInverts, bInverts, inverts, 32)
+          new3 = and2(a, b, aInverts, bInverts, inverts, 48)
         }
       } else {
-        new0 = xor2(a, b, outward, 0)
-        new1 = xor2(a, b, outward, 16)
+        new0 = xor2(a, b, inverts, 0)
+        new1 = xor2(a, b, inverts, 16)
         if (WIDE) {
-          new2 = xor2(a, b, outward, 32)
-          new3 = xor2(a, b, outward, 48)
+          new2 = xor2(a, b, inverts, 32)
+          new3 = xor2(a, b, inverts, 48)
         }
       }
     } else {
-      const pin = pins + (<usize>load<u32>(record, 4) << 2)
-      const end = pin + (<usize>load<u32>(record, 8) << 2)
+      const input = inputs + (<usize>load<u32>(record, 4) << 2)
+      const end = input + (<usize>load<u32>(record, 8) << 2)
       if (kind == AND_N) {
-        const inward = v128.load(inversions, 0)
-        new0 = andN(pin, end, base, inward, outward, 0)
-        new1 = andN(pin, end, base, inward, outward, 16)
+        new0 = andN(input, end, inverts, 0)
+        new1 = andN(input, end, inverts, 16)
         if (WIDE) {
-          new2 = andN(pin, end, base, inward, outward, 32)
-          new3 = andN(pin, end, base, inward, outward, 48)
+          new2 = andN(input, end, inverts, 32)
+          new3 = andN(input, end, inverts, 48)
         }
       } else {
-        new0 = xorN(pin, end, base, outward, 0)
-        new1 = xorN(pin, end, base, outward, 16)
+        new0 = xorN(input, end, inverts, 0)
+        new1 = xorN(input, end, inverts, 16)
         if (WIDE) {
-          new2 = xorN(pin, end, base, outward, 32)
-          new3 = xorN(pin, end, base, outward, 48)
+          new2 = xorN(input, end, inverts, 32)
+          new3 = xorN(input, end, inverts, 48)
         }
       }
     }
@@ -158,8 +163,7 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
     if (WIDE) any = v128.or(any, v128.or(diff2, diff3))
     if (!v128.any_true(any)) continue
 
-    const flags = load<u8>(watched + gate)
-    const watch = flags & WATCH_BITS
+    const watch = watchOf(op)
     if (watch) {
       let seen0 = diff0, seen1 = diff1, seen2 = diff2, seen3 = diff3
       if (watch != ALWAYS_WATCHED) {
@@ -206,7 +210,7 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
         }
         break
       }
-      if (flags & STEM_BIT) {
+      if (op & STEM_BIT) {
         if (load<u32>(knownPass + (<usize>gate << 2)) == pass) {
           const knownAt = known + (<usize>gate << PLANE_SHIFT)
           reached0 = v128.or(reached0, v128.and(diff0, v128.load(seenAt, 0)))

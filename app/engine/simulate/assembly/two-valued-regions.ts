@@ -1,9 +1,7 @@
 import {
   candidates,
   effects,
-  fanouts,
   gates,
-  masks,
   nTaps,
   observability,
   pinClasses,
@@ -16,15 +14,14 @@ import {
   taps,
   valid,
   values,
-  watched,
   watchMasks,
   watchSlots,
 } from './memory'
 import { limit } from './block'
 import { NO_CLASS, countAll, countLimited, isSettled } from './counting'
-import { AND_N, ONE_INPUT, SOURCE, XOR_2 } from './two-valued-gates'
+import { AND_N, ONE_INPUT, SOURCE, XOR_2, classOf, inversions } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, isEmpty } from './plane'
-import { ALWAYS_WATCHED, WATCH_BITS, propagateFlip } from './two-valued-propagate'
+import { ALWAYS_WATCHED, propagateFlip, watchOf } from './two-valued-propagate'
 import { spend } from './work'
 
 const CANDIDATE_BYTES: i32 = PLANE_BYTES + 16
@@ -76,11 +73,11 @@ function visitOpen(group: u32, seen: usize, value: usize, stuck: u32): void {
 }
 
 /** Writes to `to` the patterns of `seen` in which the gate's output follows input `pin`. */
-function sensitise(record: usize, kind: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
+function sensitise(op: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
   copy(to, seen)
+  const kind = classOf(op)
   if (kind == ONE_INPUT || kind == XOR_2 || kind > AND_N) return
-  const inversions = masks + (<usize>(load<u32>(record) & 3) << 5)
-  const inward = v128.load(inversions, 0)
+  const inward = v128.load(inversions(op), 0)
   for (let other = firstPin; other < end; other += 4) {
     if (other == pin) continue
     const at = values + (<usize>(load<u32>(other) >> 1) << PLANE_SHIFT)
@@ -102,19 +99,18 @@ function walkCounting(start: u32, stem: u32): void {
     const site = sites + (<usize>net << 4)
     visitCounting(load<u32>(site, 0), seen, value, 0)
     visitCounting(load<u32>(site, 4), seen, value, 1)
-    const record = gates + (<usize>net << 4)
-    const kind = load<u32>(record) >> 2
-    if (kind == SOURCE) continue
+    const op = load<u32>(site, 12)
+    if (classOf(op) == SOURCE) continue
     const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
-    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    const end = firstPin + (<usize>(op >> 8) << 2)
     let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitise(record, kind, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
+        sensitise(op, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitise(record, kind, pin, firstPin, end, seen, to)
+        sensitise(op, pin, firstPin, end, seen, to)
         const at = values + (<usize>(source >> 1) << PLANE_SHIFT)
         visitCounting(load<u32>(classes, 0), to, at, 0)
         visitCounting(load<u32>(classes, 4), to, at, 1)
@@ -135,19 +131,18 @@ function walkOpen(start: u32, stem: u32): void {
     const site = sites + (<usize>net << 4)
     visitOpen(load<u32>(site, 0), seen, value, 0)
     visitOpen(load<u32>(site, 4), seen, value, 1)
-    const record = gates + (<usize>net << 4)
-    const kind = load<u32>(record) >> 2
-    if (kind == SOURCE) continue
+    const op = load<u32>(site, 12)
+    if (classOf(op) == SOURCE) continue
     const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
-    const end = firstPin + (<usize>load<u32>(site, 12) << 2)
+    const end = firstPin + (<usize>(op >> 8) << 2)
     let classes = pinClasses + (<usize>load<u32>(site, 8) << 3)
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitise(record, kind, pin, firstPin, end, seen, effects + (<usize>((source >> 1) - start) << PLANE_SHIFT))
+        sensitise(op, pin, firstPin, end, seen, effects + (<usize>((source >> 1) - start) << PLANE_SHIFT))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitise(record, kind, pin, firstPin, end, seen, to)
+        sensitise(op, pin, firstPin, end, seen, to)
         const at = values + (<usize>(source >> 1) << PLANE_SHIFT)
         visitOpen(load<u32>(classes, 0), to, at, 0)
         visitOpen(load<u32>(classes, 4), to, at, 1)
@@ -158,7 +153,7 @@ function walkOpen(start: u32, stem: u32): void {
 
 /** Writes to `to` the patterns of `asked` in which a flip of the stem is observed. `asked` is used up. */
 function observe(stem: u32, asked: usize, to: usize, allKnown: bool): void {
-  const watch = load<u8>(watched + stem) & WATCH_BITS
+  const watch = watchOf(load<u32>(gates + (<usize>stem << 4)))
   if (watch == ALWAYS_WATCHED) {
     copy(to, asked)
     return
