@@ -10,8 +10,8 @@ import { patternColumns } from './pattern-columns.ts'
 import { printable } from './printable.ts'
 import type { ReportInput } from './report-input.ts'
 
-/** A spreadsheet's own limit on rows, the head included. */
-const MOST_ROWS = 1_048_576
+/** Places of the order in the sheet of patterns: more would take a spreadsheet, and us, too long. */
+const MOST_ROWS = 20_000
 
 const formats = numberFormats('en')
 
@@ -57,9 +57,14 @@ function summarySheet(input: ReportInput): BookSheet {
         ...columns.map(([, figures]) => number(figures[key], format)),
       ]),
       [],
+      ...(plan.order.length > MOST_ROWS ? [[text(shortenedWords(plan.order.length))]] : []),
       [text(CAUTION)],
     ],
   }
+}
+
+function shortenedWords(patterns: number): string {
+  return `The sheet of patterns holds the first ${formats.count(MOST_ROWS).value} of ${formats.count(patterns).value}; all are in the CSV report.`
 }
 
 type FigureRow = { readonly key: keyof PointFigures; readonly label: string; readonly format: string }
@@ -97,7 +102,7 @@ const FIGURES: readonly FigureRow[] = [
 
 function patternSheet(input: ReportInput): BookSheet {
   const columns = patternColumns(input)
-  const shown = Math.min(input.plan.order.length, MOST_ROWS - 1)
+  const shown = Math.min(input.plan.order.length, MOST_ROWS)
   const rows = Array.from({ length: shown }, (_, place): Row =>
     columns.map(({ at, format }) => number(at(place + 1), format)),
   )

@@ -1,4 +1,4 @@
-import { agrawalSethAgrawal, dppmAt, dppmWithFloor, PARTS, williamsBrown } from '../quality/defect-level.ts'
+import { agrawalSethAgrawal, dppmWithFloor, PARTS, williamsBrown } from '../quality/defect-level.ts'
 import { type DppmBand, escapeCorners } from '../quality/escape-band.ts'
 import { passFraction } from '../quality/yield.ts'
 import type { Product } from '../quality/product.ts'
@@ -82,10 +82,13 @@ export function priceOrder(sequence: Uint32Array, testCoverage: Float64Array, pr
   const meanMilliseconds = meanTimeStopAtFirstFail(stepMs, known, trueYield, 1)
   const meanOnAllSites = meanTimeStopAtFirstFail(stepMs, known, trueYield, sites)
 
-  const assumptions = { model: product.model, trueYield, n0: product.n0, residualDppm: product.residualDppm }
   const withFloor = (share: number): number => dppmWithFloor(share, product.residualDppm)
   const band: DppmBand = escapeCorners(product, trueYield)
-  const dppm = testCoverage.map((coverage) => dppmAt(coverage, assumptions))
+  const dppmWilliamsBrown = testCoverage.map((coverage) => withFloor(williamsBrown(trueYield, coverage)))
+  const dppmAgrawalSethAgrawal = testCoverage.map((coverage) =>
+    withFloor(agrawalSethAgrawal(trueYield, coverage, product.n0)),
+  )
+  const dppm = product.model === 'williams-brown' ? dppmWilliamsBrown : dppmAgrawalSethAgrawal
   const costPerDevice = perDeviceMilliseconds.map((ms) => costOfTime(ms, tester.costPerHour))
 
   const { shippedPerYear, escapeCost } = product
@@ -110,10 +113,8 @@ export function priceOrder(sequence: Uint32Array, testCoverage: Float64Array, pr
     meanPerDeviceMilliseconds: column((k) => perDevice(k, meanOnAllSites[k])),
     meanMilliseconds,
     dppm,
-    dppmWilliamsBrown: testCoverage.map((coverage) => withFloor(williamsBrown(trueYield, coverage))),
-    dppmAgrawalSethAgrawal: testCoverage.map((coverage) =>
-      withFloor(agrawalSethAgrawal(trueYield, coverage, product.n0)),
-    ),
+    dppmWilliamsBrown,
+    dppmAgrawalSethAgrawal,
     dppmLow: testCoverage.map((coverage) => band.low(coverage)),
     dppmHigh: testCoverage.map((coverage) => band.high(coverage)),
     costPerDevice,

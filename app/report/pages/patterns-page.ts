@@ -2,7 +2,7 @@ import type { NumberFormats } from '../../contract/format-number.ts'
 import type { ReportPage } from '../report-document.ts'
 import type { ReportInput } from '../report-input.ts'
 
-const MOST_ROWS = 2000
+const MOST_ROWS = 1000
 
 /** The patterns that run, in their order, with what each adds. */
 export function patternsPage({ plan, curve, priced }: ReportInput, formats: NumberFormats): ReportPage {
@@ -23,7 +23,7 @@ export function patternsPage({ plan, curve, priced }: ReportInput, formats: Numb
   })
   const rest =
     shown < budget.patterns
-      ? ` The first ${formats.count(shown).value} of them; all are in the CSV and XLSX reports.`
+      ? ` The first ${formats.count(shown).value} of them; all are in the CSV report.`
       : ''
   return {
     blocks: [
