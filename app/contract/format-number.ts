@@ -109,7 +109,7 @@ export function numberFormats(locale: string): NumberFormats {
   }
 
   function dppmValue(parts: number): string {
-    if (parts < 0.05) return `under ${fixed(0.1, 1)}`
+    if (parts < 0.05) return `under${NO_BREAK_SPACE}${fixed(0.1, 1)}`
     return parts < 9.95 ? fixed(parts, 1) : fixed(parts, 0)
   }
 

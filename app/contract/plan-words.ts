@@ -38,13 +38,18 @@ export function shortfallsOf({ cut }: PlanResult, formats: NumberFormats): reado
   return [...broken, ...cut.unmet.map((unmet) => unmetWords(unmet, formats))]
 }
 
+/** Returns a count with its noun, such as "1 pattern" or "1,024 patterns". */
+export function counted(count: number, noun: string, formats: NumberFormats): string {
+  return `${formats.count(count).value} ${noun}${count === 1 ? '' : 's'}`
+}
+
 /** Returns a limit's figure with its unit, such as "9.50 ms". */
 export function limitWords(limit: Limit, formats: NumberFormats): string {
   switch (limit.kind) {
     case 'patterns':
-      return `${formats.count(limit.most).value} patterns`
+      return counted(limit.most, 'pattern', formats)
     case 'cycles':
-      return `${formats.count(limit.most).value} tester cycles`
+      return counted(limit.most, 'tester cycle', formats)
     case 'milliseconds':
       return textOf(formats.milliseconds(limit.most))
     case 'deviceMilliseconds':

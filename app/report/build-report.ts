@@ -1,4 +1,5 @@
 import { numberFormats, textOf } from '../contract/format-number.ts'
+import { counted } from '../contract/plan-words.ts'
 import { answerPage } from './pages/answer-page.ts'
 import { assumptionsPage } from './pages/assumptions-page.ts'
 import { lostPage } from './pages/lost-page.ts'
@@ -42,7 +43,8 @@ function ownTitle(input: ReportInput): string {
   const { plan } = input
   if (!plan.isReached) return `${productName(input)}: these patterns can’t do what is asked`
   const { patterns, milliseconds } = plan.budget
-  return `${productName(input)} can be tested with ${formats.count(patterns).value} ${patterns === 1 ? 'pattern' : 'patterns'} in ${textOf(formats.milliseconds(milliseconds))}`
+  if (patterns === 0) return `${productName(input)}: no pattern runs`
+  return `${productName(input)} can be tested with ${counted(patterns, 'pattern', formats)} in ${textOf(formats.milliseconds(milliseconds))}`
 }
 
 const MONTHS = [

@@ -120,11 +120,11 @@ function styles(paper: ReportDocument['paper']): string {
 html{font:13px/20px "Segoe UI Variable Text","Segoe UI",-apple-system,BlinkMacSystemFont,"Adwaita Sans",Inter,Cantarell,"Noto Sans","Liberation Sans",system-ui,sans-serif;font-variant-numeric:tabular-nums lining-nums;color:${c.text};background:${c.ground};-webkit-print-color-adjust:exact;print-color-adjust:exact}
 body,h1,h2,h3,p,ul,dl,dd,figure,pre{margin:0;padding:0}
 main{padding:24px 0 40px}
-.sheet{width:${width}px;max-width:100%;min-height:${height}px;margin:0 auto 24px;padding:52px 64px 40px;background:#fff;display:flex;flex-direction:column;box-shadow:0 1px 2px rgb(16 28 24/.1),0 6px 20px rgb(16 28 24/.12)}
-header,footer{display:flex;justify-content:space-between;gap:16px;font-size:12px;line-height:16px;color:${c.text3};overflow-wrap:anywhere}
+.sheet{width:${width}px;max-width:100%;min-height:${height}px;margin:0 auto 24px;padding:52px 64px 40px;background:#fff;display:flex;flex-direction:column;overflow-wrap:anywhere;box-shadow:0 1px 2px rgb(16 28 24/.1),0 6px 20px rgb(16 28 24/.12)}
+header,footer{display:flex;justify-content:space-between;gap:16px;font-size:12px;line-height:16px;color:${c.text3}}
+header span:last-child,footer span:last-child{flex:none}header span:first-child{max-width:35%}
 header{border-bottom:1px solid ${c.text};padding-bottom:8px}
 footer{margin-top:auto;border-top:1px solid ${c.line};padding-top:8px}
-footer span:last-child{white-space:nowrap}
 h1{font-size:26px;line-height:32px;font-weight:600;letter-spacing:-.3px;margin:26px 0 10px;text-wrap:balance;overflow-wrap:anywhere}
 h2.part{font-size:20px;line-height:26px;font-weight:600;margin:26px 0 8px}
 h3{font-size:14px;line-height:20px;font-weight:600;margin:18px 0 3px}

@@ -55,8 +55,8 @@ describe('a value never rounds to a promise', () => {
   })
 
   test.each([
-    [0, 'under 0.1'],
-    [0.04, 'under 0.1'],
+    [0, 'under\u00a00.1'],
+    [0.04, 'under\u00a00.1'],
     [0.05, '0.1'],
     [9.94, '9.9'],
     [9.96, '10'],

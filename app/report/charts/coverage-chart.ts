@@ -1,5 +1,5 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
-import { limitWords } from '../../contract/plan-words.ts'
+import { counted, limitWords } from '../../contract/plan-words.ts'
 import type { Limit } from '../../engine/choose/budget.ts'
 import type { MarkerName, PlanResult } from '../../engine/choose/plan-result.ts'
 import type { Chart } from '../report-document.ts'
@@ -230,7 +230,7 @@ function nameAt(
 
 function cutLine(x: number, y: number, patterns: number, formats: NumberFormats): string {
   const anchor = x < PLOT.left + 70 ? 'start' : x > PLOT.right - 60 ? 'end' : 'middle'
-  const words = `${formats.count(patterns).value} ${patterns === 1 ? 'pattern' : 'patterns'}`
+  const words = counted(patterns, 'pattern', formats)
   const ring = { stroke: PALETTE.cut, 'stroke-width': 2.2, fill: PALETTE.surface }
   return [
     line(x, PLOT.top - 2, x, PLOT.bottom + 4, { stroke: PALETTE.cut, 'stroke-width': 2 }),

@@ -1,6 +1,7 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
 import {
   answerPhrases,
+  counted,
   countedWords,
   coverageWords,
   goalWords,
@@ -133,16 +134,16 @@ function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
   } else if (goals.length === 0) {
     reasons.push('It holds every pattern of this order that detects something more.')
   }
-  if (plan.orderName !== 'as-delivered' && asDelivered.sameDetected !== null) {
+  if (plan.orderName !== 'as-delivered' && asDelivered.sameDetected !== null && budget.detected > 0) {
     const { patterns, milliseconds } = asDelivered.sameDetected
     reasons.push(
-      `As delivered, the set needs ${count(patterns)} patterns and ${textOf(formats.milliseconds(milliseconds))} to detect as much.`,
+      `As delivered, the set needs ${counted(patterns, 'pattern', formats)} and ${textOf(formats.milliseconds(milliseconds))} to detect as much.`,
     )
   }
   const bound = ceiling[budget.patterns - 1]
   if (bound !== undefined) {
     reasons.push(
-      `No choice of ${count(budget.patterns)} patterns can detect more than ${count(bound)} ${countedWords(plan)}; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
+      `No choice of ${counted(budget.patterns, 'pattern', formats)} can detect more than ${count(bound)} ${countedWords(plan)}; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
     )
   }
   if (gap !== null && gap > 0 && limits.length > 0) {
@@ -176,7 +177,7 @@ function movesTable({ plan }: ReportInput, formats: NumberFormats): Table {
       { head: '', holds: 'text' },
       { head: 'Patterns', holds: 'number' },
       { head: 'ms', holds: 'number' },
-      { head: 'Coverage, %', holds: 'number' },
+      { head: 'Coverage,\u00a0%', holds: 'number' },
       { head: 'DPPM', holds: 'number' },
     ],
     rows: rows.map(({ name, figures }) => [

@@ -1,5 +1,6 @@
 import type { LostBlock } from '../../engine/choose/lost-blocks.ts'
 import type { NumberFormats } from '../../contract/format-number.ts'
+import { counted } from '../../contract/plan-words.ts'
 import type { ReportPage, Table } from '../report-document.ts'
 import type { ReportInput } from '../report-input.ts'
 
@@ -15,7 +16,7 @@ export function lostPage({ plan, lost, states, counts }: ReportInput, formats: N
       ? 'What is lost by block was not worked out.'
       : total === 0
         ? 'The cut loses nothing: it detects all that the whole pattern set detects.'
-        : `The cut loses ${count(total)} faults that the whole pattern set detects, in ${count(sorted.filter((block) => block.lost > 0).length)} of ${count(sorted.length)} blocks.`
+        : `The cut loses ${counted(total, 'fault', formats)} that the whole pattern set detects, in ${count(sorted.filter((block) => block.lost > 0).length)} of ${counted(sorted.length, 'block', formats)}.`
   const left = sorted.length - MOST_ROWS
   return {
     blocks: [
@@ -60,7 +61,7 @@ function lostTable(blocks: readonly LostBlock[], formats: NumberFormats): Table 
     columns: [
       { head: 'Block', holds: 'text' },
       { head: 'Faults', holds: 'number' },
-      { head: 'Coverage, %', holds: 'number' },
+      { head: 'Coverage,\u00a0%', holds: 'number' },
       { head: 'Lost', holds: 'number' },
       { head: 'Brought back most cheaply by', holds: 'number' },
     ],
@@ -71,7 +72,7 @@ function lostTable(blocks: readonly LostBlock[], formats: NumberFormats): Table 
       count(lost),
       cheapest === null
         ? '–'
-        : `pattern ${count(cheapest.pattern)}: ${count(cheapest.faults)} in ${count(cheapest.cycles)} cycles`,
+        : `pattern ${count(cheapest.pattern)}: ${count(cheapest.faults)} in ${counted(cheapest.cycles, 'cycle', formats)}`,
     ]),
     marked: null,
   }

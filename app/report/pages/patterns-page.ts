@@ -1,4 +1,5 @@
 import type { NumberFormats } from '../../contract/format-number.ts'
+import { counted } from '../../contract/plan-words.ts'
 import type { ReportPage } from '../report-document.ts'
 import type { ReportInput } from '../report-input.ts'
 
@@ -30,12 +31,12 @@ export function patternsPage({ plan, curve, priced }: ReportInput, formats: Numb
       { kind: 'title', text: 'Patterns in order' },
       {
         kind: 'text',
-        text: `The ${formats.count(budget.patterns).value} patterns of the budget, numbered as in the file.${rest}`,
+        text: `The ${counted(budget.patterns, 'pattern', formats)} of the budget, numbered as in the file.${rest}`,
       },
       {
         kind: 'table',
         table: {
-          columns: ['Place', 'Pattern', 'Gain', 'Coverage, %', 'Cycles', 'ms so far', 'DPPM'].map(
+          columns: ['Place', 'Pattern', 'Gain', 'Coverage,\u00a0%', 'Cycles', 'ms so far', 'DPPM'].map(
             (head) => ({ head, holds: 'number' }) as const,
           ),
           rows,
