@@ -8,7 +8,7 @@ import {
   unitsOf,
 } from '../engine/simulate/kernel.ts'
 import { kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simulate/kernel-layout.ts'
-import { instantiateKernel } from './instantiate-kernel.ts'
+import { instantiateKernel, patternsPerBlockOf, sharedMemory } from './instantiate-kernel.ts'
 import { simulateUnits } from './simulate-units.ts'
 import {
   CLOSED,
@@ -19,8 +19,6 @@ import {
   type SimulationCheckpoint,
 } from './simulate-protocol.ts'
 
-const PAGE = 65536
-const MAX_PAGES = 65536
 const CHECKPOINT_MILLISECONDS = 1000
 /** Making checkpoints takes at most this share of a run. */
 const CHECKPOINT_SHARE = 0.03
@@ -30,7 +28,7 @@ export function serveAsCoordinator(wasmBytes: Uint8Array, helpers: readonly Mess
   const owner = parentPort
   if (owner === null) throw new Error('the coordinator of a simulation pool runs on a worker thread only')
   const module = new WebAssembly.Module(wasmBytes)
-  const patternsPerBlock = instantiateKernel(module, sharedMemory(1)).patternsPerBlock()
+  const patternsPerBlock = patternsPerBlockOf(module)
   owner.on('message', (request: RunRequest) => {
     const send = (report: RunReport): void => owner.postMessage(report)
     try {
@@ -59,7 +57,7 @@ function runTask(
   const plan = planKernel(task, patternsPerBlock)
   const { layout } = plan
   const memoryBytes = kernelBytes(layout, threads)
-  const memory = sharedMemory(Math.ceil(memoryBytes / PAGE))
+  const memory = sharedMemory(memoryBytes)
   const { buffer } = memory
   writeShared(plan, task, buffer)
   for (let thread = 0; thread < threads; thread++) writeOwn(layout, thread, buffer)
@@ -104,15 +102,6 @@ function runTask(
   const profile = gatherProfile(layout, buffer, threads)
   const matrix = gatherMatrix(layout, profile, buffer)
   send({ run, kind: 'done', profile, matrix, kernelSeconds, memoryBytes })
-}
-
-function sharedMemory(pages: number): WebAssembly.Memory {
-  if (pages > MAX_PAGES) {
-    throw new RangeError(
-      `The simulation needs ${Math.ceil((pages * PAGE) / 2 ** 20)} MB in one piece; 4096 MB can be had. Use fewer threads.`,
-    )
-  }
-  return new WebAssembly.Memory({ initial: pages, maximum: MAX_PAGES, shared: true })
 }
 
 function waitForHelpers(control: Int32Array): void {
