@@ -1,4 +1,3 @@
-import { readFileSync } from 'node:fs'
 import type { Circuit } from '../../app/engine/circuit/circuit.ts'
 import { patternWidth } from '../../app/engine/circuit/circuit.ts'
 import { buildFaultList } from '../../app/engine/faults/build-fault-list.ts'
@@ -8,6 +7,7 @@ import type { DetectionMatrix } from '../../app/engine/simulate/detection-profil
 import { emptyPlane, type PatternSet } from '../../app/engine/simulate/pattern-set.ts'
 import { simulateTwin } from '../../app/engine/simulate/twin.ts'
 import { createRandom } from '../../app/engine/source/random.ts'
+import type { Source } from '../../app/engine/source/source.ts'
 
 export type RandomRun = {
   readonly circuit: Circuit
@@ -41,12 +41,15 @@ export function randomPatterns(circuit: Circuit, nPatterns: number, seed: number
 }
 
 /** Returns which of that many random patterns detect which faults of a `.bench` file. */
-export function randomRun(path: string | URL, nPatterns: number, seed: number): RandomRun {
-  const { value, diagnostics } = readBench({ name: String(path), text: readFileSync(path, 'utf8') })
+export function randomRun(source: Source, nPatterns: number, seed: number): RandomRun {
+  const { value, diagnostics } = readBench(source)
   if (value === null) throw new Error(diagnostics[0].message)
-  const { circuit } = value
+  return runOf(value.circuit, randomPatterns(value.circuit, nPatterns, seed))
+}
+
+/** Returns which patterns detect which faults of a circuit. */
+export function runOf(circuit: Circuit, patterns: PatternSet): RandomRun {
   const faults = buildFaultList(circuit)
-  const patterns = randomPatterns(circuit, nPatterns, seed)
   const task = { circuit, faults, patterns, detectionLimit: 0, classes: null, wantMatrix: true }
   const matrix = simulateTwin(task)?.matrix
   if (!matrix) throw new Error('the simulation gave no matrix')

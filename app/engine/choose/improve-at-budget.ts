@@ -59,8 +59,9 @@ export function improveAtBudget(
       )
       .sort()
   }
-  const isOpen = (): boolean => detectedWeight(task, patternsOf(columns)) < bound
-  if (solveMip && isOpen() && problem.rowStart[problem.nRows] <= mostDetections && goOn()) {
+  const isOpen = detectedWeight(task, patternsOf(columns)) < bound
+  const isSmall = problem.nColumns > 0 && problem.rowStart[problem.nRows] <= mostDetections
+  if (solveMip && isOpen && isSmall && goOn()) {
     const exact = solveExactly(problem, columns, budget - problem.keptCost, settled.isFree, solveMip, goOn)
     columns = exact.columns
     if (settled.isWholeTask) bound = Math.min(bound, (problem.keptWeight + exact.bound) / problem.weightScale)

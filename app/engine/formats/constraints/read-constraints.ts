@@ -1,5 +1,6 @@
 import { type ChoiceRules, compileRules } from '../../choose/choice-rules.ts'
-import { CONSTRAINT_KINDS, type ConstraintKind, type Constraints } from '../../choose/constraints.ts'
+import type { ConstraintPart } from '../../choose/constraint-costs.ts'
+import type { ConstraintKind, Constraints } from '../../choose/constraints.ts'
 import {
   type Diagnostic,
   type DiagnosticCode,
@@ -12,6 +13,8 @@ import { type Keys, readJsonObject } from '../json/read-json.ts'
 export type ReadConstraints = {
   readonly constraints: Constraints
   readonly rules: ChoiceRules
+  /** The entries of the file's lists, in its order of kinds. */
+  readonly parts: readonly ConstraintPart[]
 }
 
 const PATTERN = { kind: 'number', min: 1, whole: true } as const
@@ -27,8 +30,8 @@ const KEYS = {
   first: PATTERNS,
 } as const satisfies Keys
 
-/** The most pairs that ranges in `before` may spell out. */
-const MAX_PAIRS = 1_000_000
+/** The most patterns and pairs that all ranges together may spell out. */
+const MAX_SPELLED_OUT = 5_000_000
 
 /**
  * Reads constraints for a set of nPatterns patterns: a JSON object whose lists hold pattern numbers from 1 or ranges such
@@ -46,6 +49,18 @@ export function readConstraints(source: Source, nPatterns: number): Reading<Read
       found.push({ code, severity: 'error', file: source.name, span, message, hint })
   }
 
+  let spelledOut = 0
+  const isTooMuch = (more: number, span: Span): boolean => {
+    spelledOut += more
+    if (spelledOut <= MAX_SPELLED_OUT) return false
+    report(
+      'limit',
+      span,
+      `up to here the ranges spell out more than ${MAX_SPELLED_OUT} entries`,
+      'Use fewer or shorter ranges',
+    )
+    return true
+  }
   const patternsAt = (entry: number | string, ...path: (string | number)[]): number[] => {
     const span = spanOf(...path)
     const range = typeof entry === 'number' ? [entry, entry] : rangeOf(entry)
@@ -67,64 +82,47 @@ export function readConstraints(source: Source, nPatterns: number): Reading<Read
       report('out-of-range', span, what, `Patterns are numbered from 1 to ${nPatterns}, in file order`)
       return []
     }
+    if (isTooMuch(to - from + 1, span)) return []
     return Array.from({ length: to - from + 1 }, (_, at) => from - 1 + at)
   }
-  const listAt = (list: readonly (number | string)[] = [], ...path: (string | number)[]): number[] =>
-    list.flatMap((entry, at) => patternsAt(entry, ...path, at))
-
+  const parts: ConstraintPart[] = []
+  const addTo = <T>(kind: ConstraintKind, list: T[], more: readonly T[], entry: unknown): void => {
+    parts.push({ kind, from: list.length, to: list.length + more.length, text: JSON.stringify(entry) })
+    for (const one of more) list.push(one)
+  }
+  const listOf = (kind: 'keep' | 'leaveOut' | 'first'): number[] => {
+    const list: number[] = []
+    for (const [at, entry] of (values[kind] ?? []).entries())
+      addTo(kind, list, patternsAt(entry, kind, at), entry)
+    return list
+  }
+  const pairsAt = (pair: readonly (number | string)[], at: number): [number, number][] => {
+    const first = patternsAt(pair[0], 'before', at, 0)
+    const second = patternsAt(pair[1], 'before', at, 1)
+    if (isTooMuch(first.length * second.length, spanOf('before', at))) return []
+    return first.flatMap((one) => second.map((other): [number, number] => [one, other]))
+  }
+  const keep = listOf('keep')
+  const leaveOut = listOf('leaveOut')
+  const together: number[][] = []
+  for (const [at, group] of (values.together ?? []).entries()) {
+    const patterns = group.flatMap((entry, item) => patternsAt(entry, 'together', at, item))
+    addTo('together', together, [patterns], group)
+  }
   const before: [number, number][] = []
-  const pairPath: number[] = []
-  for (const [at, [a, b]] of (values.before ?? []).entries()) {
-    const first = patternsAt(a, 'before', at, 0)
-    const second = patternsAt(b, 'before', at, 1)
-    if (before.length + first.length * second.length > MAX_PAIRS) {
-      report(
-        'limit',
-        spanOf('before', at),
-        `these ranges spell out more than ${MAX_PAIRS} pairs`,
-        'Use shorter ranges',
-      )
-      break
-    }
-    for (const one of first) {
-      for (const other of second) {
-        before.push([one, other])
-        pairPath.push(at)
-      }
-    }
-  }
-  const constraints: Constraints = {
-    keep: listAt(values.keep, 'keep'),
-    leaveOut: listAt(values.leaveOut, 'leaveOut'),
-    together: (values.together ?? []).map((group, at) => listAt(group, 'together', at)),
-    before,
-    first: listAt(values.first, 'first'),
-  }
+  for (const [at, pair] of (values.before ?? []).entries()) addTo('before', before, pairsAt(pair, at), pair)
+  const first = listOf('first')
   if (found.length > 0) return { value: null, diagnostics: found }
 
+  const constraints: Constraints = { keep, leaveOut, together, before, first }
   const { rules, contradiction } = compileRules(constraints, nPatterns)
-  if (rules !== null) return { value: { constraints, rules }, diagnostics: [] }
+  if (rules !== null) return { value: { constraints, rules, parts }, diagnostics: [] }
   const { kind, index, message, hint } = contradiction
-  const span =
-    kind === 'before' ? spanOf('before', pairPath[index]) : spanOf(kind, ...entryOf(values, kind, index))
-  report('contradiction', span, message, hint)
+  const entry = parts
+    .filter((part) => part.kind === kind)
+    .findIndex(({ from, to }) => index >= from && index < to)
+  report('contradiction', spanOf(kind, entry), message, hint)
   return { value: null, diagnostics: found }
-}
-
-/** Returns where the constraint with that index stands in the file; a range makes several constraints of one entry. */
-function entryOf(
-  values: { readonly [kind in ConstraintKind]?: readonly unknown[] },
-  kind: ConstraintKind,
-  index: number,
-): number[] {
-  if (kind === 'together' || !CONSTRAINT_KINDS.includes(kind)) return [index]
-  let passed = 0
-  for (const [at, entry] of (values[kind] ?? []).entries()) {
-    const range = typeof entry === 'string' ? rangeOf(entry) : null
-    passed += range === null ? 1 : range[1] - range[0] + 1
-    if (index < passed) return [at]
-  }
-  return []
 }
 
 function rangeOf(text: string): [number, number] | null {
