@@ -640,7 +640,7 @@ export class VerilogParser {
     this.passStrength()
     this.passDelay()
     do {
-      const place = lexer.start
+      let place = lexer.start
       let name = -1
       if (lexer.token === Token.Name) {
         name = lexer.name
@@ -651,6 +651,7 @@ export class VerilogParser {
       this.firstInner = this.module.nBits
       this.outputAt.length = 0
       this.expect(Sign.open, `"(" before the terminals of ${word}`)
+      if (name < 0) place = lexer.start
       const terminals: number[] = []
       do terminals.push(this.parseTerminal(word))
       while (this.accept(Sign.comma))
