@@ -87,6 +87,27 @@ describe('the pages of a report', () => {
   })
 })
 
+test('assumptions that are lists are written out', () => {
+  const planned = { bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: {} }
+  const product = {
+    ...DEFAULT_PRODUCT,
+    yieldRange: [0.8, 0.9],
+    areaShares: [
+      { block: 'a', share: 0.75 },
+      { block: '*', share: 0.25 },
+    ],
+    insertions: [
+      { ...planned, name: 'sort' },
+      { ...planned, name: 'final' },
+    ],
+  }
+  const [, assumptions, money] = buildReport(reportOfNand({}, { product })).pages
+  expect(JSON.stringify(assumptions)).toContain('a 0.75, * 0.25 •')
+  expect(JSON.stringify(assumptions)).toContain('0.8 to 0.9 •')
+  expect(JSON.stringify(assumptions)).toContain('sort, final •')
+  expect(JSON.stringify(money)).toContain('["sort","3","100.00"')
+})
+
 describe('an HTML report', () => {
   test('is one file without script, with nothing from elsewhere', () => {
     const html = htmlReport(buildReport(reportOfNand()))

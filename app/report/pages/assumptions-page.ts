@@ -1,5 +1,5 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
-import { PRODUCT_FIELDS } from '../../engine/quality/product.ts'
+import { type AreaShare, type PlannedInsertion, PRODUCT_FIELDS } from '../../engine/quality/product.ts'
 import type { BandInput } from '../../engine/quality/escape-band.ts'
 import type { YieldOrigin } from '../../engine/quality/yield.ts'
 import type { AssumptionField } from '../../engine/tester/assumption-field.ts'
@@ -82,8 +82,17 @@ function fieldTable<Values>(
   }
 }
 
-/** What needs no row where it is not given: where the yield comes from is said above. */
-const LEFT_OUT = new Set(['yield', 'areaMm2', 'defectsPerCm2', 'clustering', 'passFraction', 'passCoverage'])
+/** What needs no row where it is not given: where the yield comes from is said above, the others are seldom used. */
+const LEFT_OUT = new Set([
+  'yield',
+  'areaMm2',
+  'defectsPerCm2',
+  'clustering',
+  'passFraction',
+  'passCoverage',
+  'areaShares',
+  'insertions',
+])
 
 function withUnit(value: string, unit: string, currency: string): string {
   if (unit.startsWith('money')) return `${currency}${value}${unit.slice('money'.length)}`
@@ -94,15 +103,11 @@ function written(value: unknown, formats: NumberFormats): string {
   if (typeof value === 'number') return formats.plain(value, 12)
   if (typeof value === 'boolean') return value ? 'yes' : 'no'
   if (!Array.isArray(value)) return String(value)
-  return value
-    .map((item: unknown) =>
-      typeof item === 'number'
-        ? formats.plain(item)
-        : Object.values(item as object)
-            .map((part: unknown) => (typeof part === 'number' ? formats.plain(part) : String(part)))
-            .join(' '),
-    )
-    .join(typeof value[0] === 'number' ? ' to ' : ', ')
+  const parts = value.map((item: number | AreaShare | PlannedInsertion) => {
+    if (typeof item === 'number') return formats.plain(item)
+    return 'block' in item ? `${item.block} ${formats.plain(item.share)}` : item.name
+  })
+  return parts.join(typeof value[0] === 'number' ? ' to ' : ', ')
 }
 
 const BAND_WORDS: Readonly<Record<BandInput, string>> = {
