@@ -1,0 +1,10 @@
+import type { Writable } from 'node:stream'
+
+/** What the command line gets from whoever runs it. */
+export type Io = {
+  /** The URL of the script that runs, by which the installation's parts are found. */
+  readonly entryUrl: string
+  readonly stdout: Writable & { readonly isTTY?: boolean }
+  readonly stderr: Writable & { readonly isTTY?: boolean }
+  readonly env: Readonly<Record<string, string | undefined>>
+}
