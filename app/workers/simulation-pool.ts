@@ -1,4 +1,5 @@
 import { MessageChannel, Worker, type MessagePort } from 'node:worker_threads'
+import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
 import { kernelTaskOf, type KernelTask } from '../engine/simulate/kernel-task.ts'
 import type { BitPlane } from '../engine/simulate/pattern-set.ts'
 import type { SimulationResult, SimulationTask } from '../engine/simulate/simulation.ts'
@@ -94,17 +95,27 @@ export function createSimulationPool(config: SimulationPoolConfig): SimulationPo
 
 type Crew = {
   readonly coordinator: Worker
+  /** Set where a thread has failed: the error that stopped it. */
+  failure: Error | null
+  /** Called when a thread fails or all have been stopped. */
+  onFailure: (error: Error) => void
   readonly stop: () => Promise<void>
 }
 
 function startCrew(threads: number, { wasmBytes, workerUrl }: SimulationPoolConfig): Crew {
   const script = workerUrl ?? new URL('./simulate-worker.ts', import.meta.url)
+  const fail = (error: Error): void => {
+    crew.failure ??= error
+    crew.onFailure(crew.failure)
+  }
   const start = (data: SimulateWorkerData, ports: readonly MessagePort[]): Worker => {
     const worker = new Worker(script, {
       workerData: data,
       transferList: [...ports],
       name: `simulate ${data.role}`,
     })
+    worker.on('error', (error) => fail(error instanceof Error ? error : new Error(String(error))))
+    worker.on('exit', () => fail(new Error('the simulation threads have stopped')))
     worker.unref()
     return worker
   }
@@ -114,12 +125,15 @@ function startCrew(threads: number, { wasmBytes, workerUrl }: SimulationPoolConf
   const helpers = channels.map(({ port2 }) =>
     start({ role: 'helper', wasmBytes, coordinator: port2 }, [port2]),
   )
-  return {
+  const crew: Crew = {
     coordinator,
+    failure: null,
+    onFailure: () => undefined,
     async stop() {
       await Promise.all([coordinator, ...helpers].map((worker) => worker.terminate()))
     },
   }
+  return crew
 }
 
 function runOn(
@@ -140,16 +154,19 @@ function runOn(
   return new Promise((resolve, reject) => {
     const cancel = (): void => {
       Atomics.store(words, Control.Cancel, 1)
+      // Packing a large circuit takes a while and can't be interrupted; nobody has to wait for its end.
+      if (Atomics.load(words, Control.Units) > 0) return
+      const checkpoint = resumeFrom ?? { patternsDone: 0, profile: emptyProfile(task) }
+      settle(() => resolve({ state: 'cancelled', checkpoint }))
     }
     const settle = (end: () => void): void => {
       clearInterval(timer)
       signal?.removeEventListener('abort', cancel)
-      coordinator.off('message', onMessage).off('error', onError).off('exit', onExit)
+      coordinator.off('message', onMessage)
+      crew.onFailure = () => undefined
       coordinator.unref()
       end()
     }
-    const onError = (error: Error): void => settle(() => reject(error))
-    const onExit = (): void => settle(() => reject(new Error('the simulation threads have stopped')))
     const onMessage = (message: RunReport): void => {
       if (message.run !== run) return
       switch (message.kind) {
@@ -168,9 +185,11 @@ function runOn(
       }
     }
     const timer = setInterval(report, PROGRESS_MILLISECONDS)
-    if (signal?.aborted) cancel()
+    if (signal?.aborted) return cancel()
     signal?.addEventListener('abort', cancel)
-    coordinator.on('message', onMessage).on('error', onError).on('exit', onExit)
+    crew.onFailure = (error) => settle(() => reject(error))
+    if (crew.failure !== null) return crew.onFailure(crew.failure)
+    coordinator.on('message', onMessage)
     coordinator.ref()
     coordinator.postMessage({
       run,
@@ -181,6 +200,16 @@ function runOn(
       control,
     } satisfies RunRequest)
   })
+}
+
+function emptyProfile({
+  faults: { nClasses },
+  patterns: { nPatterns },
+  detectionLimit,
+}: SimulationTask): DetectionProfile {
+  const first = new Int32Array(nClasses).fill(-1)
+  const detections = new Uint32Array(nClasses)
+  return { nClasses, nPatterns, detectionLimit, first, detections, possibly: new Uint8Array(nClasses) }
 }
 
 function progressOf(

@@ -14,7 +14,7 @@ export type KernelExports = {
 
 /** Throws where the kernel was built for another layout of memory than this program packs. */
 export function checkKernel(kernel: KernelExports): void {
-  const version = kernel.layoutVersion()
+  const version = 'layoutVersion' in kernel ? kernel.layoutVersion() : 'none'
   if (version !== LAYOUT_VERSION) {
     throw new Error(
       `The simulation kernel has layout ${version}, this program packs layout ${LAYOUT_VERSION}: build it again.`,
