@@ -82,7 +82,7 @@ class LibertyParser {
 
   parse(): readonly LibertyGroup[] | null {
     const file: OpenGroup = { attributes: [], groups: [] }
-    while (this.skipToLibrary() && !this.findings.isFull && !this.isCancelled) {
+    while (!this.findings.isFull && !this.isCancelled && this.skipToLibrary()) {
       const start = this.at
       try {
         this.parseStatement(file, 0, true)
