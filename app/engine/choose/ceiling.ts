@@ -53,17 +53,22 @@ export function ceilingOf(
   const floor = greedyFloor(problem, () => onProgress(0, effort))
   if (floor === null) return null
 
-  const lowest = free.map((budget) => (budget < 0 ? 0 : dual.totalWeight * dual.scale))
+  const lowest = free.map((budget) => (budget < 0 ? 0 : Infinity))
   const proofOf = new Int32Array(budgets.length).fill(-1)
   const multipliers: Float64Array[] = []
   const keep = (lambda: Float64Array, bounds: Float64Array): void => {
     for (let at = 0; at < bounds.length; at++) {
-      if (free[at] < 0 || (bounds[at] >= lowest[at] && proofOf[at] >= 0)) continue
-      lowest[at] = Math.min(lowest[at], bounds[at])
+      if (free[at] < 0 || bounds[at] >= lowest[at]) continue
+      lowest[at] = bounds[at]
       proofOf[at] = multipliers.length
     }
     multipliers.push(lambda)
   }
+  // Without multipliers the bound is what all patterns together detect.
+  keep(
+    new Float64Array(problem.nRows),
+    free.map(() => dual.totalWeight * dual.scale),
+  )
 
   const anchors = chooseAnchors(free, floor)
   const turns = effort / anchors.length / (problem.rowStart[problem.nRows] + 1)
@@ -79,10 +84,6 @@ export function ceilingOf(
     if (!isDone) return null
     keep(dual.best.slice(), dual.boundsFor(free))
   }
-  keep(
-    new Float64Array(problem.nRows),
-    free.map((budget) => (budget < 0 ? 0 : dual.totalWeight * dual.scale)),
-  )
 
   const bounds = lowest.map((bound) => {
     const weight = problem.keptWeight + bound / dual.scale

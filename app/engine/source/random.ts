@@ -9,9 +9,8 @@ export type Random = {
 }
 
 /**
- * Returns a source of random numbers for a seed, a whole number.
- * SOURCE: xoshiro128** of Blackman & Vigna 2018, "Scrambled linear pseudorandom number generators"; its state is filled
- * by a 32-bit mixer (Weyl sequence and multiply-xorshift), our choice.
+ * Returns a source of random numbers for a seed, a whole number. The generator's state is filled by a 32-bit mixer (a
+ * Weyl sequence, then multiply and xor-shift), our choice.
  */
 export function createRandom(seed: number): Random {
   let weyl = seed >>> 0
@@ -22,11 +21,14 @@ export function createRandom(seed: number): Random {
     z = Math.imul(z ^ (z >>> 13), 0xc2b2ae35)
     return (z ^ (z >>> 16)) >>> 0
   }
-  let a = mixed()
-  let b = mixed()
-  let c = mixed()
-  let d = mixed() | 1 // never all zero
+  return randomFromState(mixed(), mixed(), mixed(), mixed() | 1) // never all zero
+}
 
+/**
+ * Returns the generator at a state of four words, not all zero.
+ * SOURCE: xoshiro128** of Blackman & Vigna 2018, "Scrambled linear pseudorandom number generators".
+ */
+export function randomFromState(a: number, b: number, c: number, d: number): Random {
   const bits = (): number => {
     const product = Math.imul(b, 5)
     const result = Math.imul((product << 7) | (product >>> 25), 9) >>> 0
