@@ -81,11 +81,7 @@ export type NetlistReport = {
   readonly lines: number
   readonly cellsUsed: readonly { readonly cell: string; readonly count: number }[]
   readonly cellsUnknown: readonly { readonly cell: string; readonly count: number }[]
-  /** Sources of X, each kind with how many and up to ten names. */
-  readonly unusable: readonly {
-    readonly kind: UnusableKind
-    readonly count: number
-    readonly examples: readonly string[]
-  }[]
+  /** Sources of X, by kind. */
+  readonly unusable: readonly UnusableSource[]
   readonly testPins: readonly TestPin[]
 }
