@@ -1,7 +1,7 @@
 import type { Goal, Limit, Stop, UnmetGoal } from '../engine/choose/budget.ts'
 import type { OrderName } from '../engine/choose/order.ts'
 import type { MarkerName, PlanResult } from '../engine/choose/plan-result.ts'
-import type { SensitivityInput } from '../engine/quality/sensitivity.ts'
+import type { RangeInput } from '../engine/quality/product.ts'
 import { type NumberFormats, textOf } from './format-number.ts'
 
 /** A piece of a sentence; the strong ones carry the figures. */
@@ -14,7 +14,7 @@ export const ORDER_WORDS: Readonly<Record<OrderName, string>> = {
   'by-hand': 'in an order set by hand',
 }
 
-export const INPUT_WORDS: Readonly<Record<SensitivityInput, string>> = {
+export const INPUT_WORDS: Readonly<Record<RangeInput, string>> = {
   yield: 'Yield',
   n0: 'Faults on a defective device',
   escapeCost: 'Cost of an escape',

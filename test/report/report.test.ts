@@ -91,7 +91,7 @@ test('assumptions that are lists are written out', () => {
   const planned = { bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: {} }
   const product = {
     ...DEFAULT_PRODUCT,
-    yieldRange: [0.8, 0.9],
+    ranges: { yield: [0.8, 0.9], sites: [2, 4] },
     areaShares: [
       { block: 'a', share: 0.75 },
       { block: '*', share: 0.25 },
@@ -103,7 +103,7 @@ test('assumptions that are lists are written out', () => {
   }
   const [, assumptions, money] = buildReport(reportOfNand({}, { product })).pages
   expect(JSON.stringify(assumptions)).toContain('a 0.75, * 0.25 •')
-  expect(JSON.stringify(assumptions)).toContain('0.8 to 0.9 •')
+  expect(JSON.stringify(assumptions)).toContain('yield 0.8 to 0.9, sites 2 to 4 •')
   expect(JSON.stringify(assumptions)).toContain('sort, final •')
   expect(JSON.stringify(money)).toContain('["sort","3","100.00"')
 })

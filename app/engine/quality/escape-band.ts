@@ -1,26 +1,6 @@
 import { agrawalSethAgrawal, dppmWithFloor, williamsBrown } from './defect-level.ts'
+import { n0Range, type Range, yieldRange } from './input-ranges.ts'
 import type { DefectModel, Product } from './product.ts'
-
-/** How far inputs are taken to be off where the user gives no range: 20 %, up and down. */
-export const ASSUMED_SPREAD = 0.2
-
-export type Range = { readonly low: number; readonly high: number }
-
-/**
- * Returns the yields to be reckoned with: the user's, else those of 20 % more and 20 % fewer defects a device. Defects
- * are moved rather than the yield itself, since a yield of 0.9 can't be 20 % higher: Y^1.2 to Y^0.8.
- * SOURCE: own derivation from the Poisson yield.
- */
-export function yieldRange({ yieldRange: given }: Product, trueYield: number): Range {
-  if (given !== null) return { low: given[0], high: given[1] }
-  return { low: trueYield ** (1 + ASSUMED_SPREAD), high: trueYield ** (1 - ASSUMED_SPREAD) }
-}
-
-/** Returns the n0 to be reckoned with: the user's, else 20 % less, not below 1, and 20 % more. */
-export function n0Range({ n0Range: given, n0 }: Product): Range {
-  if (given !== null) return { low: given[0], high: given[1] }
-  return { low: Math.max(1, n0 * (1 - ASSUMED_SPREAD)), high: n0 * (1 + ASSUMED_SPREAD) }
-}
 
 /** The lowest and the highest estimate at a test coverage, in DPPM with the floor. */
 export type DppmBand = {

@@ -1,3 +1,4 @@
+import type { Shape } from '../formats/json/read-json.ts'
 import type { Reading } from '../source/diagnostic.ts'
 import type { Source } from '../source/source.ts'
 import {
@@ -14,6 +15,13 @@ export type DefectModel = (typeof DEFECT_MODELS)[number]
 
 /** A block of the hierarchy, by the prefix of its names, and its share of the chip's area. */
 export type AreaShare = { readonly block: string; readonly share: number }
+
+/** The inputs whose uncertainty moves a plan. */
+export const RANGE_INPUTS = ['yield', 'n0', 'escapeCost', 'costPerHour', 'sites', 'shiftMHz'] as const
+export type RangeInput = (typeof RANGE_INPUTS)[number]
+
+/** Lowest and highest value to be reckoned with, for inputs about which more is known than ± 20 %. */
+export type InputRanges = { readonly [Input in RangeInput]?: readonly number[] }
 
 /** One step of test, as a product plans it: which bursts run there, on what. */
 export type PlannedInsertion = {
@@ -43,8 +51,7 @@ export type Product = {
   readonly model: DefectModel
   readonly n0: number
   readonly residualDppm: number
-  readonly yieldRange: readonly number[] | null
-  readonly n0Range: readonly number[] | null
+  readonly ranges: InputRanges | null
   readonly chains: number | null
   readonly longestChain: number | null
   readonly captureCycles: number
@@ -67,6 +74,10 @@ const YIELD = { kind: 'number', above: 0, max: 1 } as const
 const AMOUNT = { kind: 'number', min: 0, max: 1e15 } as const
 const COUNT = { kind: 'number', min: 1, max: 1e9, whole: true } as const
 const N0 = { kind: 'number', min: 1, max: 1e6 } as const
+
+function rangeOf(of: Shape): Shape {
+  return { kind: 'list', of, minItems: 2, maxItems: 2 }
+}
 
 /** Every key of a product file, in the order in which forms and reports show them. */
 export const PRODUCT_FIELDS: readonly AssumptionField<Product>[] = [
@@ -181,22 +192,27 @@ export const PRODUCT_FIELDS: readonly AssumptionField<Product>[] = [
     explanation: 'Escapes from defects that the fault model does not know; added to the model’s figure.',
   },
   {
-    key: 'yieldRange',
-    label: 'Yield, range',
+    key: 'ranges',
+    label: 'Ranges of inputs',
     unit: '',
-    shape: { kind: 'or-null', of: { kind: 'list', of: YIELD, minItems: 2, maxItems: 2 } },
+    shape: {
+      kind: 'or-null',
+      of: {
+        kind: 'object',
+        keys: {
+          yield: rangeOf(YIELD),
+          n0: rangeOf(N0),
+          escapeCost: rangeOf(AMOUNT),
+          costPerHour: rangeOf(AMOUNT),
+          sites: rangeOf(COUNT),
+          shiftMHz: rangeOf({ kind: 'number', above: 0, max: 100_000 }),
+        },
+      },
+    },
     default: null,
-    nullMeans: '20 % fewer and 20 % more defects',
-    explanation: 'Lowest and highest yield to be reckoned with, for the band and the sensitivity.',
-  },
-  {
-    key: 'n0Range',
-    label: 'Faults on a defective device, range',
-    unit: '',
-    shape: { kind: 'or-null', of: { kind: 'list', of: N0, minItems: 2, maxItems: 2 } },
-    default: null,
-    nullMeans: '± 20 %, not below 1',
-    explanation: 'Lowest and highest n0 to be reckoned with, for the band and the sensitivity.',
+    nullMeans: '± 20 % each, for the yield 20 % more and fewer defects',
+    explanation:
+      'Lowest and highest yield, n0, escapeCost, costPerHour, sites or shiftMHz to be reckoned with, for the band and the sensitivity.',
   },
   {
     key: 'chains',
@@ -383,12 +399,11 @@ export function productContradictions(product: Product): readonly Contradiction<
       hint: 'Add the pass fraction that was measured at this coverage, or remove it',
     })
   }
-  for (const key of ['yieldRange', 'n0Range'] as const) {
-    const range = product[key]
-    if (range !== null && range[0] > range[1]) {
+  for (const [input, range] of Object.entries(product.ranges ?? {})) {
+    if (range[0] > range[1]) {
       found.push({
-        key,
-        message: `"${key}" runs from ${range[0]} down to ${range[1]}`,
+        key: 'ranges',
+        message: `the range of "${input}" runs from ${range[0]} down to ${range[1]}`,
         hint: 'Write the lower value first',
       })
     }

@@ -1,9 +1,15 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
-import { type AreaShare, type PlannedInsertion, PRODUCT_FIELDS } from '../../engine/quality/product.ts'
+import {
+  type AreaShare,
+  type InputRanges,
+  type PlannedInsertion,
+  type Product,
+  PRODUCT_FIELDS,
+} from '../../engine/quality/product.ts'
 import type { BandInput } from '../../engine/quality/escape-band.ts'
 import type { YieldOrigin } from '../../engine/quality/yield.ts'
 import type { AssumptionField } from '../../engine/tester/assumption-field.ts'
-import { TESTER_FIELDS } from '../../engine/tester/tester.ts'
+import { type Tester, TESTER_FIELDS } from '../../engine/tester/tester.ts'
 import type { ReportPage, Table } from '../report-document.ts'
 import type { ReportInput } from '../report-input.ts'
 
@@ -28,13 +34,19 @@ export function assumptionsPage(input: ReportInput, formats: NumberFormats): Rep
         columns: [
           [
             { kind: 'heading', text: 'Tester' },
-            { kind: 'table', table: fieldTable(TESTER_FIELDS, tester, tester.currency, formats) },
+            {
+              kind: 'table',
+              table: fieldTable(TESTER_FIELDS, (key) => tester[key], tester.currency, formats),
+            },
             { kind: 'heading', text: 'How firm the escape rate is' },
             { kind: 'text', text: bandWords(input, formats) },
           ],
           [
             { kind: 'heading', text: 'Product' },
-            { kind: 'table', table: fieldTable(PRODUCT_FIELDS, product, tester.currency, formats) },
+            {
+              kind: 'table',
+              table: fieldTable(PRODUCT_FIELDS, (key) => product[key], tester.currency, formats),
+            },
           ],
         ],
       },
@@ -62,7 +74,7 @@ const FORMULAS = [
 
 function fieldTable<Values>(
   fields: readonly AssumptionField<Values>[],
-  values: Values,
+  valueOf: (key: keyof Values & string) => Value | null,
   currency: string,
   formats: NumberFormats,
 ): Table {
@@ -72,7 +84,7 @@ function fieldTable<Values>(
       { head: '', holds: 'number' },
     ],
     rows: fields.flatMap((field) => {
-      const value = values[field.key]
+      const value = valueOf(field.key)
       if (value === null) return LEFT_OUT.has(field.key) ? [] : [[field.label, field.nullMeans]]
       const isChanged = JSON.stringify(value) !== JSON.stringify(field.default)
       const text = withUnit(written(value, formats), field.unit, currency)
@@ -99,15 +111,26 @@ function withUnit(value: string, unit: string, currency: string): string {
   return unit === '' ? value : `${value} ${unit}`
 }
 
-function written(value: unknown, formats: NumberFormats): string {
+function written(value: Value, formats: NumberFormats): string {
   if (typeof value === 'number') return formats.plain(value, 12)
   if (typeof value === 'boolean') return value ? 'yes' : 'no'
-  if (!Array.isArray(value)) return String(value)
-  const parts = value.map((item: number | AreaShare | PlannedInsertion) => {
-    if (typeof item === 'number') return formats.plain(item)
-    return 'block' in item ? `${item.block} ${formats.plain(item.share)}` : item.name
-  })
-  return parts.join(typeof value[0] === 'number' ? ' to ' : ', ')
+  if (typeof value === 'string') return value
+  if (!isList(value)) {
+    const ranges = Object.entries(value).map(([input, [low, high]]) => {
+      return `${input} ${formats.plain(low)} to ${formats.plain(high)}`
+    })
+    return ranges.join(', ')
+  }
+  return value
+    .map((item) => ('block' in item ? `${item.block} ${formats.plain(item.share)}` : item.name))
+    .join(', ')
+}
+
+type Value = NonNullable<Tester[keyof Tester] | Product[keyof Product]>
+type List = readonly (AreaShare | PlannedInsertion)[]
+
+function isList(value: InputRanges | List): value is List {
+  return Array.isArray(value)
 }
 
 const BAND_WORDS: Readonly<Record<BandInput, string>> = {

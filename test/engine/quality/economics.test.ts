@@ -1,5 +1,6 @@
 import { describe, expect, test } from 'vitest'
-import { bandNarrowings, n0Range, yieldRange } from '../../../app/engine/quality/escape-band.ts'
+import { bandNarrowings } from '../../../app/engine/quality/escape-band.ts'
+import { n0Range, yieldRange } from '../../../app/engine/quality/input-ranges.ts'
 import { priceInsertions } from '../../../app/engine/quality/insertions.ts'
 import { DEFAULT_PRODUCT } from '../../../app/engine/quality/product.ts'
 import { sensitivityOf } from '../../../app/engine/quality/sensitivity.ts'
@@ -10,12 +11,15 @@ describe('ranges', () => {
   test('move defects, not the yield itself, by 20 %, unless the user gives them', () => {
     const { low, high } = yieldRange(DEFAULT_PRODUCT, 0.9)
     expect([low, high].map((value) => value.toFixed(5))).toEqual(['0.88123', '0.91917'])
-    expect(yieldRange({ ...DEFAULT_PRODUCT, yieldRange: [0.8, 1] }, 0.9)).toEqual({ low: 0.8, high: 1 })
+    expect(yieldRange({ ...DEFAULT_PRODUCT, ranges: { yield: [0.8, 1] } }, 0.9)).toEqual({
+      low: 0.8,
+      high: 1,
+    })
   })
 
   test('of n0 stay at 1 or more', () => {
     expect(n0Range({ ...DEFAULT_PRODUCT, n0: 1 })).toEqual({ low: 1, high: 1.2 })
-    expect(n0Range({ ...DEFAULT_PRODUCT, n0Range: [3, 9] })).toEqual({ low: 3, high: 9 })
+    expect(n0Range({ ...DEFAULT_PRODUCT, ranges: { n0: [3, 9] } })).toEqual({ low: 3, high: 9 })
   })
 })
 
@@ -59,6 +63,19 @@ describe('sensitivity', () => {
     }
     expect(rangeOf('escapeCost')).toEqual([8, 12])
     expect(rangeOf('sites')).toEqual([1, 2])
+  })
+
+  test('takes the user’s own ranges', () => {
+    const ranges = { sites: [4, 16], costPerHour: [50, 51], shiftMHz: [1, 2], escapeCost: [7, 8] }
+    const rows = sensitivityOf(
+      { tester: DEFAULT_TESTER, product: { ...DEFAULT_PRODUCT, ranges } },
+      0.9,
+      () => null,
+    )
+    const own = rows.filter(({ input }) => input in ranges)
+    expect(Object.fromEntries(own.map(({ input, low, high }) => [input, [low.value, high.value]]))).toEqual(
+      ranges,
+    )
   })
 })
 

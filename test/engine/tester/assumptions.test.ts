@@ -88,8 +88,8 @@ describe('a product file', () => {
       'contradiction at 1:18: "passCoverage" is given, "passFraction" is not / Add the pass fraction that was measured at this coverage, or remove it',
     ],
     [
-      '{"yieldRange": [0.9, 0.8]}',
-      'contradiction at 1:16: "yieldRange" runs from 0.9 down to 0.8 / Write the lower value first',
+      '{"ranges": {"yield": [0.9, 0.8]}}',
+      'contradiction at 1:12: the range of "yield" runs from 0.9 down to 0.8 / Write the lower value first',
     ],
     [
       '{"areaShares": [\n{"block": "a", "share": 0.6}, {"block": "b", "share": 0.3}]}',
@@ -102,6 +102,15 @@ describe('a product file', () => {
   ])('%s is explained at its place', (text, expected) => {
     expect(finding(readProduct, text)).toBe(expected)
   })
+})
+
+test('insertions get what they leave unsaid', () => {
+  const text =
+    '{"insertions": [{"name": "sort", "tester": {"sites": 4}}, {"name": "final", "bursts": ["core"]}]}'
+  expect(readProduct({ name: 'a.json', text }).value?.insertions).toEqual([
+    { name: 'sort', bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: { sites: 4 } },
+    { name: 'final', bursts: ['core'], patterns: null, yieldIn: null, otherMs: 0, tester: {} },
+  ])
 })
 
 describe('the table of fields', () => {
