@@ -200,10 +200,10 @@ export class Lexer {
   }
 
   /**
-   * After an error in the statement at `from`: moves to the token after the statement's ";" or block, or to the "}" of the
-   * block around it, and takes what it finds on the way for granted. False where the text ends first.
+   * After an error in the statement at `from`: moves past the statement's ";" or block, or, inside a block, up to the "}"
+   * that closes it, and takes what it finds on the way for granted. False where the text ends first.
    */
-  skipStatement(from: number): boolean {
+  skipStatement(from: number, inBlock: boolean): boolean {
     const { text, limit } = this
     let depth = 0
     let at = from
@@ -219,7 +219,7 @@ export class Lexer {
       else if (code === SEMICOLON && depth === 0) break
       else if (code === CLOSE && depth-- <= 1) break
     }
-    const closesOuter = depth < 0
+    const closesOuter = inBlock && depth < 0
     this.at = Math.min(limit, closesOuter ? at : at + 1)
     this.kind = SEMICOLON
     this.start = this.end = this.at

@@ -117,7 +117,7 @@ class BlockReader {
       read()
     } catch (reason) {
       if (!(reason instanceof BrokenStatement)) throw reason
-      if (!this.lexer.skipStatement(from)) this.lexer.kind = Token.End
+      if (!this.lexer.skipStatement(from, false)) this.lexer.kind = Token.End
     }
   }
 
@@ -185,7 +185,7 @@ class BlockReader {
         if (lexer.isKind(SEMICOLON) || lexer.isKind(Token.Annotation)) lexer.next()
         else read()
       } catch (reason) {
-        if (!(reason instanceof BrokenStatement) || !lexer.skipStatement(from)) throw reason
+        if (!(reason instanceof BrokenStatement) || !lexer.skipStatement(from, true)) throw reason
       }
     }
     lexer.next()

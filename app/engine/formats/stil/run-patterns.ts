@@ -241,7 +241,7 @@ export class PatternRunner {
         running = this.execute(statement, 0)
       } catch (reason) {
         if (!(reason instanceof BrokenStatement)) throw reason
-        if (!lexer.skipStatement(from)) break
+        if (!lexer.skipStatement(from, true)) break
       }
     }
     this.charactersDone += block.end - block.start
