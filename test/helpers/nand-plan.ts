@@ -1,4 +1,4 @@
-import { buildPlan, type Plan, type PlanInput } from '../../app/engine/choose/build-plan.ts'
+import { buildPlan, type Plan, type PlanInput, type PlanOutcome } from '../../app/engine/choose/build-plan.ts'
 import { compileRules } from '../../app/engine/choose/choice-rules.ts'
 import type { ChoiceTask } from '../../app/engine/choose/choice-task.ts'
 import { type Constraints, NO_CONSTRAINTS } from '../../app/engine/choose/constraints.ts'
@@ -38,10 +38,19 @@ export function nandChoice(constraints: Partial<Constraints> = {}): { faults: Fa
 }
 
 /** Returns the plan of that gate, steepest first, at 1 ms a vector and a yield of 0.5, with whatever is changed. */
-export function planOfNand(
-  { weights, ...changes }: Partial<PlanInput> & { weights?: Float64Array } = {},
+export function planOfNand(changes: Changes = {}, constraints: Partial<Constraints> = {}): Plan {
+  const { plan, problems } = outcomeOfNand(changes, constraints)
+  if (plan === null) throw new Error(problems[0].message)
+  return plan
+}
+
+type Changes = Partial<PlanInput> & { weights?: Float64Array }
+
+/** Returns the same with whatever stands in the way of a plan. */
+export function outcomeOfNand(
+  { weights, ...changes }: Changes,
   constraints: Partial<Constraints> = {},
-): Plan {
+): PlanOutcome {
   const { faults, task: plainTask } = nandChoice(constraints)
   const task = { ...plainTask, weights: weights ?? plainTask.weights }
   return buildPlan({

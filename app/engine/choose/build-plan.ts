@@ -10,6 +10,7 @@ import { type Assumptions, sensitivityOf } from '../quality/sensitivity.ts'
 import { type FaultCounts, faultCoverage, testCoverage } from '../quality/test-coverage.ts'
 import { chainsByShiftRate, sitesByEfficiency, steppedAround } from '../quality/what-if.ts'
 import { resolveYield } from '../quality/yield.ts'
+import type { Contradiction } from '../tester/assumption-field.ts'
 import { perDeviceMs } from '../tester/multi-site.ts'
 import { burstMeasures, matchProgram, type ProgramRow } from '../tester/program.ts'
 import type { Tester } from '../tester/tester.ts'
@@ -26,6 +27,7 @@ import { kneeOf } from './knee.ts'
 import type { CoverageCurve, Order } from './order.ts'
 import type { Marker, MarkerName, MovedOutcome, PlanResult, TimeOutcome } from './plan-result.ts'
 import { figuresAt, type PointFigures } from './point-figures.ts'
+import { planProblems } from './plan-problems.ts'
 import { type PricedOrder, type Pricing, priceOrder } from './price.ts'
 import { leastTotal, nextMillisecondBuysLess } from './stopping-rules.ts'
 
@@ -70,8 +72,19 @@ const WORTH_OF_MILLISECOND = 0.0005
 const EFFICIENCIES = [0.8, 0.9, 0.95, 0.98, 1]
 const RATE_FACTORS = [0.5, 1, 1.5, 2]
 
+/** A plan, or what in the product does not fit netlist and pattern set, with no plan. */
+export type PlanOutcome =
+  | { readonly plan: Plan; readonly problems: readonly [] }
+  | { readonly plan: null; readonly problems: readonly Contradiction<Product>[] }
+
 /** Prices an order, finds the cut that limits and goals ask for, and works out what hangs on it. */
-export function buildPlan(input: PlanInput): Plan {
+export function buildPlan(input: PlanInput): PlanOutcome {
+  const { product, faults, patterns, scan } = input
+  const problems = planProblems(product, faults, patterns, scan)
+  return problems.length > 0 ? { plan: null, problems } : { plan: planOf(input), problems: [] }
+}
+
+function planOf(input: PlanInput): Plan {
   const { faults, task, order, patterns, tester, product, limits, goals, total } = input
   const worthOfMillisecond = input.worthOfMillisecond ?? WORTH_OF_MILLISECOND
   const counts = countFaults(faults, input.untestable)
@@ -203,9 +216,6 @@ export function buildPlan(input: PlanInput): Plan {
           patterns: sequence.length,
           coverage: faultCoverage(detected, counts),
           testCoverage: testCoverage(detected, counts),
-          unknownBursts: (planned.bursts ?? []).filter((name) =>
-            patterns.bursts.every((burst) => burst.name !== name),
-          ),
         },
         step: {
           name: planned.name,

@@ -66,8 +66,6 @@ export type InsertionResult = PricedInsertion & {
   readonly patterns: number
   readonly coverage: number
   readonly testCoverage: number
-  /** Names that the product gives and the pattern set does not have. */
-  readonly unknownBursts: readonly string[]
 }
 
 export type MarkerName = 'goal' | 'limit' | 'knee' | 'next millisecond' | 'least total' | 'all'

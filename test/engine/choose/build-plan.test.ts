@@ -1,6 +1,7 @@
 import { describe, expect, test } from 'vitest'
-import { DEFAULT_PRODUCT } from '../../../app/engine/quality/product.ts'
-import { planOfNand } from '../../helpers/nand-plan.ts'
+import { DEFAULT_PRODUCT, type Product } from '../../../app/engine/quality/product.ts'
+import type { PlanInput } from '../../../app/engine/choose/build-plan.ts'
+import { outcomeOfNand, planOfNand } from '../../helpers/nand-plan.ts'
 
 // Common practice, no source: a NAND has 6 faults; {01, 11, 10} detects all, {11, 01} 5 of 6.
 describe('a plan of a NAND gate', () => {
@@ -131,7 +132,7 @@ describe('a plan of a NAND gate', () => {
   })
 
   // By hand: sort runs 11 alone, which detects 3 of 6: T = 0.5, 0.5^0.5 pass, and as much comes to the final test,
-  // whose burst does not exist: it tests nothing and lets all pass.
+  // which runs all three and lets 0.5^0.5 of that pass again.
   test('splits over insertions, each with what runs there', () => {
     const planned = { bursts: null, patterns: null, yieldIn: null, otherMs: 0, tester: {} }
     const product = {
@@ -139,14 +140,53 @@ describe('a plan of a NAND gate', () => {
       yield: 0.5,
       insertions: [
         { ...planned, name: 'sort', patterns: 1, tester: { vectorMHz: 0.0005 } },
-        { ...planned, name: 'final', bursts: ['core'], otherMs: 7 },
+        { ...planned, name: 'final', bursts: ['all'], otherMs: 7 },
       ],
     }
     const [sort, final] = planOfNand({ product }).result.insertions!
     expect(sort).toMatchObject({ patterns: 1, testCoverage: 0.5, yieldIn: 0.5, perDeviceMilliseconds: 2 })
-    expect(sort.testedPerShipped).toBeCloseTo(1 / Math.SQRT1_2, 12)
-    expect(final).toMatchObject({ patterns: 0, passFraction: 1, perDeviceMilliseconds: 7 })
+    expect(sort.testedPerShipped).toBeCloseTo(2, 12)
+    expect(final).toMatchObject({ patterns: 3, testCoverage: 1, perDeviceMilliseconds: 10 })
     expect(final.yieldIn).toBeCloseTo(Math.SQRT1_2, 12)
-    expect([sort.unknownBursts, final.unknownBursts]).toEqual([[], ['core']])
+    expect(final.testedPerShipped).toBeCloseTo(Math.SQRT2, 12)
+  })
+})
+
+describe('no plan is made', () => {
+  const problems = (product: Partial<Product>, changes: Partial<PlanInput> = {}): string[] =>
+    outcomeOfNand({ ...changes, product: { ...DEFAULT_PRODUCT, ...product } }).problems.map(
+      ({ key, message }) => `${key}: ${message}`,
+    )
+
+  test('where blocks with a share have no faults, or faults no block', () => {
+    const areaShares = [
+      { block: 'a', share: 0.75 },
+      { block: 'core/alu', share: 0.25 },
+    ]
+    expect(problems({ areaShares })).toEqual([
+      'areaShares: no fault of the netlist lies in block "core/alu", so its share of the area has no coverage',
+      'areaShares: 4 faults lie in none of the blocks',
+    ])
+  })
+
+  test('where an insertion runs a burst that does not exist', () => {
+    const insertion = { bursts: ['pads'], patterns: null, yieldIn: null, otherMs: 0, tester: {} }
+    expect(problems({ insertions: [{ ...insertion, name: 'sort' }] })).toEqual([
+      'insertions: insertion "sort" runs burst "pads", which the pattern set does not have',
+    ])
+  })
+
+  test('where the chains cannot hold the flip-flops, unless the patterns give their own cycles', () => {
+    const scan = { flipFlops: 10, tracedChains: null, tracedLongest: null }
+    expect(problems({ chains: 11 }, { scan })).toEqual([
+      "chains: 11 chains are more than the netlist's 10 scanned flip-flops",
+    ])
+    expect(problems({ longestChain: 11 }, { scan })).toHaveLength(1)
+    expect(problems({ chains: 2, longestChain: 4 }, { scan })).toEqual([
+      'longestChain: 2 chains of at most 4 bits do not hold 10 flip-flops',
+    ])
+    const bursts = [{ name: 'all', first: 0, count: 4 }]
+    const patterns = { nPatterns: 4, bursts, cycles: Uint32Array.of(3, 3, 3, 3) }
+    expect(problems({ chains: 11 }, { scan, patterns })).toEqual([])
   })
 })
