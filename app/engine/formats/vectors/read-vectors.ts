@@ -215,7 +215,7 @@ class VectorsReader {
         : isEnd(code)
           ? 'the end of the line'
           : `"${this.text[at]}"`
-    this.report('unknown-character', at, at + 1, `${expectation}, found ${found}`)
+    this.report('unknown-character', at, Math.min(at + 1, this.text.length), `${expectation}, found ${found}`)
     return false
   }
 
