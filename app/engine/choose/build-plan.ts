@@ -79,8 +79,7 @@ export type PlanOutcome =
 
 /** Prices an order, finds the cut that limits and goals ask for, and works out what hangs on it. */
 export function buildPlan(input: PlanInput): PlanOutcome {
-  const { product, faults, patterns, scan } = input
-  const problems = planProblems(product, faults, patterns, scan)
+  const problems = planProblems(input.product, input.faults, input.patterns)
   return problems.length > 0 ? { plan: null, problems } : { plan: planOf(input), problems: [] }
 }
 

@@ -2,7 +2,7 @@ import { OTHER_BLOCKS, sortIntoBlocks } from '../quality/block-coverage.ts'
 import type { Product } from '../quality/product.ts'
 import type { FaultList } from '../faults/fault-list.ts'
 import type { Contradiction } from '../tester/assumption-field.ts'
-import type { PatternFacts, ScanFacts } from '../tester/time-model.ts'
+import type { PatternFacts } from '../tester/time-model.ts'
 
 /**
  * Returns what in a product does not fit the netlist and the pattern set that it is to be planned for, key by key; figures
@@ -12,13 +12,8 @@ export function planProblems(
   product: Product,
   faults: FaultList,
   patterns: PatternFacts,
-  scan: ScanFacts,
 ): readonly Contradiction<Product>[] {
-  return [
-    ...blockProblems(product, faults),
-    ...burstProblems(product, patterns),
-    ...chainProblems(product, patterns, scan),
-  ]
+  return [...blockProblems(product, faults), ...burstProblems(product, patterns)]
 }
 
 function blockProblems({ areaShares }: Product, faults: FaultList): readonly Contradiction<Product>[] {
@@ -53,37 +48,4 @@ function burstProblems({ insertions }: Product, { bursts }: PatternFacts): reado
         hint: `Its bursts: ${known.join(', ')}`,
       })),
   )
-}
-
-/** Where patterns give their own cycles, chains say nothing: scan data may be expanded on chip. */
-function chainProblems(
-  { chains, longestChain }: Product,
-  { cycles }: PatternFacts,
-  { flipFlops }: ScanFacts,
-): readonly Contradiction<Product>[] {
-  const isModelled = cycles === null || cycles.includes(0)
-  if (flipFlops === 0 || !isModelled) return []
-  const found: Contradiction<Product>[] = []
-  if (chains !== null && chains > flipFlops) {
-    found.push({
-      key: 'chains',
-      message: `${chains} chains are more than the netlist's ${flipFlops} scanned flip-flops`,
-      hint: 'Where scan data are expanded on chip, give the tester cycles of each pattern instead',
-    })
-  }
-  if (longestChain !== null && longestChain > flipFlops) {
-    found.push({
-      key: 'longestChain',
-      message: `a chain of ${longestChain} bits is longer than the netlist's ${flipFlops} scanned flip-flops`,
-      hint: 'Give the longest chain in bits, or null to work it out',
-    })
-  }
-  if (chains !== null && longestChain !== null && chains * longestChain < flipFlops) {
-    found.push({
-      key: 'longestChain',
-      message: `${chains} chains of at most ${longestChain} bits do not hold ${flipFlops} flip-flops`,
-      hint: `The longest has ${Math.ceil(flipFlops / chains)} bits or more`,
-    })
-  }
-  return found
 }

@@ -1,6 +1,5 @@
 import { describe, expect, test } from 'vitest'
 import { DEFAULT_PRODUCT, type Product } from '../../../app/engine/quality/product.ts'
-import type { PlanInput } from '../../../app/engine/choose/build-plan.ts'
 import { outcomeOfNand, planOfNand } from '../../helpers/nand-plan.ts'
 
 // Common practice, no source: a NAND has 6 faults; {01, 11, 10} detects all, {11, 01} 5 of 6.
@@ -153,8 +152,8 @@ describe('a plan of a NAND gate', () => {
 })
 
 describe('no plan is made', () => {
-  const problems = (product: Partial<Product>, changes: Partial<PlanInput> = {}): string[] =>
-    outcomeOfNand({ ...changes, product: { ...DEFAULT_PRODUCT, ...product } }).problems.map(
+  const problems = (product: Partial<Product>): string[] =>
+    outcomeOfNand({ product: { ...DEFAULT_PRODUCT, ...product } }).problems.map(
       ({ key, message }) => `${key}: ${message}`,
     )
 
@@ -174,19 +173,5 @@ describe('no plan is made', () => {
     expect(problems({ insertions: [{ ...insertion, name: 'sort' }] })).toEqual([
       'insertions: insertion "sort" runs burst "pads", which the pattern set does not have',
     ])
-  })
-
-  test('where the chains cannot hold the flip-flops, unless the patterns give their own cycles', () => {
-    const scan = { flipFlops: 10, tracedChains: null, tracedLongest: null }
-    expect(problems({ chains: 11 }, { scan })).toEqual([
-      "chains: 11 chains are more than the netlist's 10 scanned flip-flops",
-    ])
-    expect(problems({ longestChain: 11 }, { scan })).toHaveLength(1)
-    expect(problems({ chains: 2, longestChain: 4 }, { scan })).toEqual([
-      'longestChain: 2 chains of at most 4 bits do not hold 10 flip-flops',
-    ])
-    const bursts = [{ name: 'all', first: 0, count: 4 }]
-    const patterns = { nPatterns: 4, bursts, cycles: Uint32Array.of(3, 3, 3, 3) }
-    expect(problems({ chains: 11 }, { scan, patterns })).toEqual([])
   })
 })
