@@ -48,6 +48,7 @@ export class CellAssembler {
   private readonly pinByChain = new IntList(4096)
   /** Rows of the pin table from here on are lines of gates that stand beside cells. */
   private cellPinRows = 0
+  private readonly clockGateOutputs = new Set<number>()
   private scan: ScanView | null = null
   private readonly shared: Assembler
 
@@ -161,15 +162,18 @@ export class CellAssembler {
   addWrittenGates(): void {
     const { flat, graph } = this.shared
     this.cellPinRows = this.pinKind.length
-    const add = (net: number): void => {
-      const isFlipFlop = graph.kind.data[net] === GateKind.FlipFlop
-      for (let k = 0; k < graph.count(net); k++) {
-        this.pushPin(isFlipFlop ? LineKind.FlipFlopData : LineKind.GateInput, graph.input(net, k), net, k)
-      }
+    for (const written of flat.gateNet.view()) {
+      const net = this.shared.rootOf(written)
+      for (let k = 0; k < graph.count(net); k++) this.pushPin(LineKind.GateInput, graph.input(net, k), net, k)
       this.pushPin(LineKind.Stem, net, -1, 0)
     }
-    for (const net of flat.gateNet.view()) add(this.shared.rootOf(net))
-    for (let at = 1; at < flat.flipFlops.length; at += 5) add(this.shared.rootOf(flat.flipFlops.data[at]))
+    for (let at = 0; at < flat.flipFlops.length; at += 5) {
+      const net = this.shared.rootOf(flat.flipFlops.data[at + 1])
+      const isScanned = graph.kind.data[net] === GateKind.FlipFlop
+      const data = this.shared.rootOf(flat.flipFlops.data[at + 2])
+      this.pushPin(isScanned ? LineKind.FlipFlopData : LineKind.Outside, data, net, 0)
+      this.pushPin(LineKind.Stem, net, -1, 0)
+    }
   }
 
   /** Moves the faults of a cell's pin to where its value is used after all. */
@@ -222,6 +226,7 @@ export class CellAssembler {
       } else if (shared.claim(net, shared.flat.cellScope.data[row], shared.flat.cellPlace.data[row])) {
         shared.graph.drive(net, GateKind.Unknown)
         source.sources.push(net)
+        if (kind === 'clock gate') this.clockGateOutputs.add(net)
       }
     })
   }
@@ -305,6 +310,10 @@ export class CellAssembler {
       outputs.nInner === 1 &&
       isRepeater(outputs.gates[0])
     )
+  }
+
+  isClockGateOutput(net: number): boolean {
+    return this.clockGateOutputs.has(net)
   }
 
   /** Warns about something that concerns the whole netlist, at the top module's name. */

@@ -1,6 +1,6 @@
 import type { LibraryCell } from '../../circuit/cell-library.ts'
 import { CircuitBuilder, isGate } from '../../circuit/circuit-builder.ts'
-import { GateKind, type Circuit } from '../../circuit/circuit.ts'
+import { GateKind, LineKind, type Circuit, type LineTable } from '../../circuit/circuit.ts'
 import { NetGraph } from '../../circuit/net-graph.ts'
 import type { FlipFlopClock, Netlist, TestPin } from '../../circuit/netlist.ts'
 import { spreadConstants, traceBack } from '../../circuit/scan-constants.ts'
@@ -452,16 +452,21 @@ export class Assembler {
   }
 
   /** Builds the circuit, cutting loops with X until none is left. */
-  private finishCircuit(builder: CircuitBuilder, pins: Circuit['pins']): Circuit {
+  private finishCircuit(builder: CircuitBuilder, pins: LineTable | null): Circuit {
     for (;;) {
       const result = builder.finish(this.options.top, pins)
-      if (!Array.isArray(result)) return result as Circuit
+      if (!Array.isArray(result)) {
+        const circuit = result as Circuit
+        if (pins !== null) leaveOutCutGates(pins, circuit)
+        return circuit
+      }
       for (const fault of result) {
         if (fault.kind !== 'combinational-loop') throw new RangeError('a net without a driver')
         const net = fault.nets[0] as number
         this.reportLoop(fault.nets as readonly number[], builder.names)
         const row = this.unusable.add('cut loop', builder.names[net])
         row.circuitSources.push(net)
+        row.unobserved.push(...this.graph.inputs(this.netOf.indexOf(net)))
         builder.cut(net)
       }
     }
@@ -567,5 +572,16 @@ export class Assembler {
     return Array.from(counts, ([name, count]) => ({ cell: this.flat.names.text(name), count })).sort(
       (a, b) => b.count - a.count,
     )
+  }
+}
+
+/** Faults on a gate that a cut loop has lost its inputs of, and on nets of X, are outside. */
+function leaveOutCutGates(pins: LineTable, circuit: Circuit): void {
+  for (let row = 0; row < pins.n; row++) {
+    const place = pins.sink[row] >= 0 ? pins.sink[row] : pins.net[row]
+    if (circuit.kind[place] !== GateKind.Unknown) continue
+    pins.kind[row] = LineKind.Outside
+    pins.sink[row] = -1
+    pins.pin[row] = 0
   }
 }

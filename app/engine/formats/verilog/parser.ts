@@ -10,7 +10,7 @@ import { Sign, Token, VerilogLexer } from './lexer.ts'
 import type { NameTable } from './name-table.ts'
 import { ConstantBit, Operation, ParsedModule, PORT_FLAGS, SignalFlag } from './parsed-module.ts'
 
-const MAX_WIDTH = 1 << 20
+const MAX_WIDTH = 1 << 16
 const MAX_BITS = 1 << 28
 const MAX_NESTING = 400
 const PROGRESS_STEP = 4_000_000

@@ -47,7 +47,7 @@ function read(sources: readonly Source[], options: VerilogOptions, findings: Fin
   const names = new NameTable()
   internKeywords(names)
   const modules = parseAll(sources, names, findings, options.onProgress)
-  if (modules === null || findings.hasErrors) return null
+  if (modules === null || modules.size === 0 || findings.hasErrors) return null
   const top = chooseTop(sources, modules, options.top, names, findings)
   if (top === null) return null
   const cells = (options.libraries ?? []).flatMap((library) => library.cells)

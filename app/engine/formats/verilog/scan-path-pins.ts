@@ -1,5 +1,6 @@
 import type { Assembler } from './assemble.ts'
 import type { CellAssembler, SequentialRow } from './assemble-cells.ts'
+import type { IntList } from '../../circuit/int-list.ts'
 import { visitVariables } from '../../circuit/cell-function.ts'
 
 /**
@@ -31,6 +32,17 @@ export function markScanPath(
   }
   for (const list of [flat.gateInputs, flat.boxNets])
     for (const net of list.view()) loads[shared.rootOf(net)]++
+  const addLoads = (rows: IntList, stride: number, columns: readonly number[]): void => {
+    for (let at = 0; at < rows.length; at += stride) {
+      for (const column of columns) loads[shared.rootOf(rows.data[at + column])]++
+    }
+  }
+  addLoads(flat.flipFlops, 5, [0, 2])
+  addLoads(flat.threeState, 6, [1, 2])
+  for (let at = 0; at < flat.connects.length; at += 4) {
+    const from = shared.rootOf(flat.connects.data[at + 1])
+    if (from !== shared.rootOf(flat.connects.data[at])) loads[from]++
+  }
   for (const list of [flat.outputs, flat.inouts]) for (const net of list.view()) loads[shared.rootOf(net)]++
 
   const pending: number[] = []

@@ -77,7 +77,7 @@ class ScanAssembler {
     this.warnUnscanned(sequential.length - scanned.length, scanned.length - onChain.size)
     markScanPath(this.shared, this.cells, scanned, new Set(traced.map((chain) => chain.scanOut)))
     return {
-      chains: traced.map((chain) => this.describe(chain, firstFlipFlop)),
+      chains: this.describeAll(traced, firstFlipFlop),
       testPins: [...this.pins.values()],
     }
   }
@@ -122,6 +122,7 @@ class ScanAssembler {
       const [{ next }] = states
       const invertsScanIn = shiftInversion(next, scan.scanEnable, scan.shiftValue, scan.scanIn)
       if (enable !== scan.shiftValue || invertsScanIn === null) continue
+      if (!this.isClockedInShift(row, constants)) continue
       rows.push(row)
       shiftCells.push({ state: row.states[0], scanIn: row.pins[scan.scanIn], invertsScanIn })
     }
@@ -138,6 +139,14 @@ class ScanAssembler {
         unloadInverted: chain.unloadInverted,
       }
     })
+  }
+
+  /** A flip-flop shifts if its clock comes from an input, or through a clock gate, which is taken to be open in shift. */
+  private isClockedInShift(row: SequentialRow, constants: Int8Array): boolean {
+    const clock = this.traceClock(row, row.plan.cell.states[0], constants)
+    if (clock.port >= 0 || this.cells.isClockGateOutput(clock.origin)) return true
+    this.cells.warnAt(row.row, 'does not shift: its clock comes from logic, not from an input')
+    return false
   }
 
   private warnBreak(found: ChainBreak, rows: readonly SequentialRow[]): void {
@@ -187,11 +196,12 @@ class ScanAssembler {
     const { clock } = state
     const inner = clock.kind === 'not' ? clock.of : clock
     if (inner.kind !== 'variable' || inner.index >= row.pins.length) {
-      return { port: -1, isFalling: false, isCertain: false }
+      return { port: -1, origin: -1, isFalling: false, isCertain: false }
     }
     const origin = traceBack(this.shared.graph, constants, row.pins[inner.index])
     const isFalling = (clock.kind === 'not') !== origin.inverted
-    return { port: this.isInput.has(origin.net) ? origin.net : -1, isFalling, isCertain: false }
+    const port = this.isInput.has(origin.net) ? origin.net : -1
+    return { port, origin: origin.net, isFalling, isCertain: false }
   }
 
   private placeUnscanned({ row, plan, pins, states }: SequentialRow): void {
@@ -308,23 +318,38 @@ class ScanAssembler {
     )
   }
 
-  private describe(chain: TracedRows, firstFlipFlop: ReadonlyMap<number, number>): ScanChain {
-    const scanIn = this.shared.netName(chain.scanIn)
-    return {
-      name: scanIn,
-      scanIn,
-      scanOut: this.shared.netName(chain.scanOut),
-      cells: chain.rows.map(({ row }, at) => ({
-        flipFlop: firstFlipFlop.get(row) ?? 0,
-        instance: this.shared.flat.cellText(row),
-        loadInverted: chain.loadInverted[at],
-        unloadInverted: chain.unloadInverted[at],
-      })),
-    }
+  /** The chains with their names, which are those of their scan-ins; a number tells chains of one scan-in apart. */
+  private describeAll(
+    traced: readonly TracedRows[],
+    firstFlipFlop: ReadonlyMap<number, number>,
+  ): ScanChain[] {
+    const sharing = new Map<number, number>()
+    return traced.map((chain) => {
+      const number = (sharing.get(chain.scanIn) ?? 0) + 1
+      sharing.set(chain.scanIn, number)
+      const scanIn = this.shared.netName(chain.scanIn)
+      if (number === 2) {
+        this.cells.warnTop(
+          `scan-in ${quoted(scanIn)} feeds several chains: their flip-flops are not loaded independently`,
+        )
+      }
+      return {
+        name: number === 1 ? scanIn : `${scanIn} ${number}`,
+        scanIn,
+        scanOut: this.shared.netName(chain.scanOut),
+        cells: chain.rows.map(({ row }, at) => ({
+          flipFlop: firstFlipFlop.get(row) ?? 0,
+          instance: this.shared.flat.cellText(row),
+          loadInverted: chain.loadInverted[at],
+          unloadInverted: chain.unloadInverted[at],
+        })),
+      }
+    })
   }
 }
 
-type FoundClock = { port: number; isFalling: boolean; isCertain: boolean }
+/** `origin` is the net at which the trace from the clock pin ends, `port` the same where it is an input, else −1. */
+type FoundClock = { port: number; origin: number; isFalling: boolean; isCertain: boolean }
 
 type TracedRows = {
   scanIn: number
