@@ -6,13 +6,16 @@ const node = (name: string, include: string[], testTimeout = 20_000) => ({
   test: { name, include: include.map((pattern) => `test/${pattern}`), environment: 'node', testTimeout },
 })
 
+const e2e = node('e2e', ['e2e/**/*.test.ts'], 180_000)
+
 export default defineConfig({
   root: new URL('..', import.meta.url).pathname,
   plugins: [vue()],
   test: {
     pool: 'forks',
     maxWorkers: 2,
-    reporters: process.env['CI'] ? [['default', { summary: false }]] : ['default'],
+    reporters: process.env['CI'] ? [['default', { summary: false }], 'json'] : ['default'],
+    outputFile: { json: 'out/test-results.json' },
     projects: [
       node('engine', ['engine/**/*.test.ts', 'contract/**/*.test.ts', 'report/**/*.test.ts']),
       node('db', ['db/**/*.test.ts']),
@@ -26,7 +29,8 @@ export default defineConfig({
         extends: true,
         test: { name: 'renderer', include: ['test/renderer/**/*.test.ts'], environment: 'happy-dom' },
       },
-      node('e2e', ['e2e/**/*.test.ts'], 180_000),
+      // By itself, after all others: it looks at how quickly the window answers.
+      { ...e2e, test: { ...e2e.test, maxWorkers: 1, sequence: { groupOrder: 1 } } },
     ],
   },
 })
