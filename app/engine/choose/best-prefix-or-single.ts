@@ -1,11 +1,11 @@
 import type { ChoiceRules } from './choice-rules.ts'
 import type { ChoiceTask } from './choice-task.ts'
 import { cutPlaces } from './cut-places.ts'
-import { UnitSequence } from './delivered-order.ts'
 import { detectedWeight } from './detected-weight.ts'
 import { Gains } from './gains.ts'
 import type { Order } from './order.ts'
 import { buildUnitMatrix } from './unit-matrix.ts'
+import { UnitSequence } from './unit-sequence.ts'
 
 export type BudgetChoice = {
   /** In the order in which they run. */

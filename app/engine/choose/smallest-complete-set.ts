@@ -1,10 +1,10 @@
 import { boundCover, type CoverBound } from './cover-bound.ts'
 import type { ChoiceProgress, ChoiceTask } from './choice-task.ts'
-import { UnitSequence } from './delivered-order.ts'
 import { buildDualProblem, type DualProblem } from './dual-problem.ts'
 import { MipRows, type MipSolver } from './mip.ts'
 import { reduceCover } from './reduce-cover.ts'
 import { steepestFirst } from './steepest-first.ts'
+import { UnitSequence } from './unit-sequence.ts'
 
 export type SmallestSet = {
   /** In file order. */

@@ -1,8 +1,8 @@
 import type { ChoiceProgress, ChoiceTask } from './choice-task.ts'
-import { UnitSequence } from './delivered-order.ts'
 import type { Order, OrderName } from './order.ts'
 import { Gains } from './gains.ts'
 import { buildUnitMatrix, type UnitMatrix } from './unit-matrix.ts'
+import { UnitSequence } from './unit-sequence.ts'
 
 /**
  * Returns the order that at each step takes the unit with the largest gain per cycle; ties go to the first in the file.

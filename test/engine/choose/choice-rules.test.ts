@@ -2,7 +2,7 @@ import { describe, expect, test } from 'vitest'
 import { compileRules } from '../../../app/engine/choose/choice-rules.ts'
 import { type Constraints, NO_CONSTRAINTS } from '../../../app/engine/choose/constraints.ts'
 import { cutPlaces } from '../../../app/engine/choose/cut-places.ts'
-import { deliveredOrder } from '../../../app/engine/choose/delivered-order.ts'
+import { deliveredOrder, handOrder } from '../../../app/engine/choose/delivered-order.ts'
 
 /** Patterns in these tests are numbered from 1, as people write them. */
 function compile(nPatterns: number, changes: Partial<Constraints>) {
@@ -114,4 +114,12 @@ test('a cut lies between groups and after what is kept', () => {
   if (rules === null) throw new Error('the constraints contradict')
   // 2 | 1 | 3 4 | 5 | and 6 is left out
   expect([...cutPlaces(deliveredOrder(rules), rules)]).toEqual([0, 1, 1, 0, 1, 1, 0])
+})
+
+test('an order by hand gives way only to constraints', () => {
+  const { rules } = compile(6, { keep: [2], together: [[3, 4]], leaveOut: [6], before: [[1, 5]] })
+  if (rules === null) throw new Error('the constraints contradict')
+  const order = handOrder(rules, [5, 4, 3].map((one) => one - 1))
+  expect([...order.sequence].map((pattern) => pattern + 1)).toEqual([2, 1, 5, 3, 4, 6])
+  expect(order).toMatchObject({ name: 'by-hand', chosen: 5, runs: 5 })
 })
