@@ -1,14 +1,15 @@
 /** The part of WebAssembly's interface that the simulation threads use; neither ES nor Node's types declare it. */
 declare namespace WebAssembly {
-  class Module {
-    constructor(bytes: Uint8Array)
+  interface Module {
+    readonly [Symbol.toStringTag]: string
   }
-  class Memory {
-    constructor(descriptor: { initial: number; maximum: number; shared: true })
+  interface Memory {
     readonly buffer: SharedArrayBuffer
   }
-  class Instance {
-    constructor(module: Module, imports: { env: { memory: Memory } })
+  interface Instance {
     readonly exports: Record<string, unknown>
   }
+  const Module: new (bytes: Uint8Array) => Module
+  const Memory: new (descriptor: { initial: number; maximum: number; shared: true }) => Memory
+  const Instance: new (module: Module, imports: { env: { memory: Memory } }) => Instance
 }
