@@ -95,13 +95,14 @@ function planOf(input: PlanInput): Plan {
   const coverageOf = coveragesForQuality(input, plainTask, counts)
   const coverage = coverageOf(order, plainCurve)
 
-  const deliveredCoverage = testCoverage(plainCurve.detected[patterns.nPatterns], counts)
+  const deliveredCoverage = testCoverage(detectedWeight(plainTask, order.sequence), counts)
   const pricingFor = pricingOf(input, deliveredCoverage)
   const pricing = pricingFor({ tester, product })
   const priced = priceOrder(order.sequence, coverage, pricing)
   const mayCut = cutPlaces(order, task.rules)
   const request = { curve, priced, chosen: order.chosen, mayCut, limits, goals }
   const cut = blameLeftOut(chooseCut(request))
+  const atLimits = chooseCut({ ...request, goals: [] })
   const at = (k: number): PointFigures => figuresAt(k, curve, priced, pricing)
 
   const figures = at(cut.patterns)
@@ -129,6 +130,7 @@ function planOf(input: PlanInput): Plan {
       ...(input.smallest === null ? {} : { smallest: input.smallest }),
       isReached: cut.broken === null && cut.unmet.length === 0,
       cut,
+      limitStop: atLimits.stop,
       markers: markersOf(),
       worthOfMillisecond,
       asDelivered: asDelivered(),
@@ -147,14 +149,12 @@ function planOf(input: PlanInput): Plan {
   /** Names the patterns that are left out where with them a goal that is not met could be. */
   function blameLeftOut(chosen: Cut): Cut {
     if (order.runs === patterns.nPatterns || chosen.unmet.every(({ stop }) => stop !== null)) return chosen
-    const every = order.sequence
-    const best = testCoverage(detectedWeight(plainTask, every), counts)
     const unmet = chosen.unmet.map((one): UnmetGoal => {
       const { model, n0, residualDppm } = product
       const reachable =
         one.goal.kind === 'dppm'
-          ? dppmAt(best, { model, trueYield: pricing.trueYield, n0, residualDppm })
-          : detectedWeight(task, every) / total
+          ? dppmAt(deliveredCoverage, { model, trueYield: pricing.trueYield, n0, residualDppm })
+          : detectedWeight(task, order.sequence) / total
       return one.stop === null && meets(one.goal, reachable) ? { ...one, stop: { kind: 'leftOut' } } : one
     })
     return { ...chosen, unmet }
@@ -162,8 +162,8 @@ function planOf(input: PlanInput): Plan {
 
   function markersOf(): readonly Marker[] {
     const places: [MarkerName, number | null][] = [
-      ['goal', goals.length > 0 ? chooseCut(request).patterns : null],
-      ['limit', limits.length > 0 ? chooseCut({ ...request, goals: [] }).patterns : null],
+      ['goal', goals.length > 0 ? cut.patterns : null],
+      ['limit', atLimits.stop === null ? null : atLimits.patterns],
       ['knee', kneeOf(curve)],
       [
         'next millisecond',

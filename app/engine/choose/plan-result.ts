@@ -3,7 +3,7 @@ import type { PricedInsertion } from '../quality/insertions.ts'
 import type { SensitivityRow } from '../quality/sensitivity.ts'
 import type { WhatIfGrid } from '../quality/what-if.ts'
 import type { YieldOrigin } from '../quality/yield.ts'
-import type { Cut, Goal, Limit } from './budget.ts'
+import type { Cut, Goal, Limit, Stop } from './budget.ts'
 import type { OrderName } from './order.ts'
 import type { PointFigures } from './point-figures.ts'
 
@@ -31,6 +31,8 @@ export type PlanResult = {
   /** True where all goals are met and no limit is broken. */
   readonly isReached: boolean
   readonly cut: Cut
+  /** What ends the order where no goal does; null where every pattern with a gain fits. The marker 'limit' stands there. */
+  readonly limitStop: Stop | null
   /** Points worth knowing on the same order, in ascending order of patterns. */
   readonly markers: readonly Marker[]
   /** The coverage, 0..1, that a millisecond must buy for the marker 'next millisecond'. */

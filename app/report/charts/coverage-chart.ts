@@ -1,7 +1,7 @@
 import { type NumberFormats, textOf } from '../../contract/format-number.ts'
-import { counted, limitWords } from '../../contract/plan-words.ts'
-import type { Limit } from '../../engine/choose/budget.ts'
-import type { MarkerName, PlanResult } from '../../engine/choose/plan-result.ts'
+import { counted, stopWords } from '../../contract/plan-words.ts'
+import type { Stop } from '../../engine/choose/budget.ts'
+import type { PlanResult } from '../../engine/choose/plan-result.ts'
 import type { Chart } from '../report-document.ts'
 import { PALETTE } from './palette.ts'
 import { linearScale, type Scale, thinned, ticksOf } from './scale.ts'
@@ -23,8 +23,7 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
   const ceiling = plan.ceiling.length > 0 ? [share(plan.ceiling[0] ?? 0), ...plan.ceiling.map(share)] : []
   const goal = plan.goals.find(({ kind }) => kind === 'coverage')
   const goalCoverage = goal?.kind === 'coverage' ? goal.least : null
-  const [limit] = plan.limits
-  const limitAt = limitPlace(plan)
+  const limitAt = plan.markers.find(({ name }) => name === 'limit')?.figures.patterns ?? null
 
   const last = lastShown(plan)
   const { low, high } = rangeShown(plan, Math.max(...curve, ...ceiling), goalCoverage)
@@ -48,8 +47,9 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
     const edge = within(thinned(ceiling, 0, last, pixels))
     parts.push(element('g', inPlot, hatching(edge, PLOT), path(edge, CEILING)))
   }
-  if (limitAt !== null && limit !== undefined)
-    parts.push(limitLine(limit, x(Math.min(limitAt, last)), formats))
+  if (limitAt !== null && plan.limitStop !== null) {
+    parts.push(limitLine(plan.limitStop, x(Math.min(limitAt, last)), formats))
+  }
   if (goalCoverage !== null) parts.push(goalLine(y(goalCoverage), goalCoverage, formats))
   parts.push(
     element('g', inPlot, path(within(thinned(delivered, 0, last, pixels)), DELIVERED)),
@@ -76,14 +76,6 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
     label: `Coverage against patterns applied; the cut is at ${budget.patterns} patterns and ${textOf(formats.coverage(budget.coverage))}`,
     markup: parts.join(''),
   }
-}
-
-/** Where the limits end the order; null where they let all of it run. */
-export function limitPlace({ markers }: PlanResult): number | null {
-  const placeOf = (wanted: MarkerName): number | null =>
-    markers.find(({ name }) => name === wanted)?.figures.patterns ?? null
-  const place = placeOf('limit')
-  return place === placeOf('all') ? null : place
 }
 
 const CHOSEN = { stroke: PALETTE.series1, 'stroke-width': 2.2 }
@@ -187,11 +179,16 @@ function decimalsOf(value: number): number {
       : 2
 }
 
-function limitLine(limit: Limit, place: number, formats: NumberFormats): string {
+function limitLine(stop: Stop, place: number, formats: NumberFormats): string {
   const anchor = place > PLOT.right - 120 ? 'end' : 'start'
   return (
     line(place, PLOT.top, place, PLOT.bottom, LIMIT) +
-    label(place + (anchor === 'end' ? -5 : 5), PLOT.top + 13, `limit ${limitWords(limit, formats)}`, anchor)
+    label(
+      place + (anchor === 'end' ? -5 : 5),
+      PLOT.top + 13,
+      stopWords(stop, formats).replace('the limit of', 'limit'),
+      anchor,
+    )
   )
 }
 

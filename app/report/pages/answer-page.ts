@@ -5,12 +5,12 @@ import {
   countedWords,
   coverageWords,
   goalWords,
-  limitWords,
   MARKER_WORDS,
   shortfallsOf,
+  stopWords,
 } from '../../contract/plan-words.ts'
 import type { PointFigures } from '../../engine/choose/point-figures.ts'
-import { coverageChart, limitPlace } from '../charts/coverage-chart.ts'
+import { coverageChart } from '../charts/coverage-chart.ts'
 import type { Block, LabelledFigure, ReportPage, Table } from '../report-document.ts'
 import type { ReportInput } from '../report-input.ts'
 
@@ -47,7 +47,7 @@ export function answerPage(input: ReportInput, title: string, formats: NumberFor
 }
 
 function chartCaption({ plan, counts, faultBase }: ReportInput, formats: NumberFormats): string {
-  const hasLimit = limitPlace(plan) !== null
+  const hasLimit = plan.limitStop !== null
   const hasGoal = plan.goals.some(({ kind }) => kind === 'coverage')
   const inside = [hasLimit ? 'inside the limit' : '', hasGoal ? 'above the goal' : ''].filter(Boolean)
   return [
@@ -66,12 +66,12 @@ function fiveFigures({ plan, pricing }: ReportInput, formats: NumberFormats): re
   const coverageGoal = goals.find((goal) => goal.kind === 'coverage')
   const dppmGoal = goals.find((goal) => goal.kind === 'dppm')
   const band = `${formats.dppm(budget.dppmLow).value} to ${formats.dppm(budget.dppmHigh).value}`
-  const guarded = `${textOf(formats.milliseconds(budget.guardedMilliseconds))} with guard band`
+  const guarded = `${formats.milliseconds(budget.guardedMilliseconds).value} with ${formats.plain(pricing.product.guardBand * 100)} % in hand`
   return [
     {
       label: 'Time on one site',
       figure: formats.milliseconds(budget.milliseconds),
-      note: limit === undefined ? guarded : `limit ${formats.milliseconds(limit.most).value}`,
+      note: limit === undefined ? guarded : `limit ${formats.milliseconds(limit.most).value}, ${guarded}`,
     },
     {
       label: 'Fault coverage',
@@ -126,11 +126,10 @@ function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
   const count = (value: number): string => formats.count(value).value
   const reasons: string[] = []
   const [goal] = goals
-  const [limit] = limits
   if (goal !== undefined && plan.isReached) {
     reasons.push(`It is the fewest patterns of this order that reach ${goalWords(goal, formats)}.`)
-  } else if (limit !== undefined && plan.cut.stop !== null) {
-    reasons.push(`It is as much of this order as fits ${limitWords(limit, formats)}.`)
+  } else if (plan.cut.stop !== null) {
+    reasons.push(`It is as much of this order as ${stopWords(plan.cut.stop, formats)} lets run.`)
   } else if (goals.length === 0) {
     reasons.push('It holds every pattern of this order that detects something more.')
   }
@@ -166,7 +165,7 @@ function movesTable({ plan }: ReportInput, formats: NumberFormats): Table {
     if (rows.every((row) => row.figures.patterns !== figures.patterns)) {
       const isWorth = name === 'next millisecond'
       const words = isWorth
-        ? `Next ms buys under ${textOf(formats.coverage(plan.worthOfMillisecond))}`
+        ? `Next ms buys < ${textOf(formats.coverage(plan.worthOfMillisecond))}`
         : MARKER_WORDS[name]
       rows.push({ name: words, figures, isBudget: false })
     }
