@@ -286,4 +286,20 @@ describe.skipIf(!hasData)('mapped netlists', () => {
       { name: 'CK', role: 'clock', value: 0, from: 'library' },
     ])
   })
+
+  // SOURCE: the ScanCells lists of the STIL files that were made for these netlists.
+  test.each([
+    ['s27_scan.v', 's27_scan.stil'],
+    ['s15850_scan1.v', 's15850_scan1_171.stil'],
+    ['s13207_scan10.v', 's13207_scan10.stil'],
+  ])('the chains of %s stand in the order that %s lists', (netlist, stil) => {
+    const libraries = [readLibrary('scan_gates.lib')]
+    const { text } = readData(`stil/${stil}`)
+    const listed = [...text.matchAll(/ScanChain[^}]*ScanCells ([^;]*);/g)].map(
+      ([, cells]) =>
+      cells.trim().split(/\s+/).map((cell) => cell.replaceAll('"', '').replace(/^(s13207|CUT)\./, '').replace(/\.SI$/, '')), // prettier-ignore
+    )
+    const { chains } = read(`mapped/${netlist}`, { libraries })
+    expect(chains.map((chain) => chain.cells.map((cell) => cell.instance))).toEqual(listed)
+  })
 })
