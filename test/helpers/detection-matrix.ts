@@ -46,7 +46,7 @@ export function syntheticMatrix(nRows: number, nPatterns: number, seed: number):
   for (let row = 0; row < nRows; row++) {
     const chance = Math.exp(random.fraction() * Math.log(nPatterns / 2)) / nPatterns
     const skip = Math.log1p(-chance)
-    let pattern = random.below(nPatterns)
+    const pattern = random.below(nPatterns)
     // Steps between detections are geometric; the first pattern is drawn freely so that no row stays empty.
     for (
       let at = pattern;

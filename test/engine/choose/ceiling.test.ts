@@ -96,7 +96,7 @@ describe('the proof of a ceiling', () => {
     ['faults that count alike', {}, 1],
     ['costs', { costs }, 10],
     ['two detections', { detections: 2 }, 1],
-    ['constraints', { rules: rules ?? undefined, costs }, 10],
+    ['constraints', rules === null ? {} : { rules, costs }, 10],
   ]
   test.each(cases)('with %s gives the bound in whole numbers', (_, changes, unit) => {
     const task = freeTask(matrix, changes)
