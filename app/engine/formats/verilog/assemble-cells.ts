@@ -303,13 +303,20 @@ export class CellAssembler {
 
   /** True where the cell only passes its one input on. */
   isRepeater(row: number): boolean {
+    return isRepeater(this.onlyGate(row))
+  }
+
+  /** True where the cell only gives a constant. */
+  isTie(row: number): boolean {
+    const kind = this.onlyGate(row)
+    return kind === GateKind.Const0 || kind === GateKind.Const1
+  }
+
+  /** The kind of a combinational cell's gate where it has just one, of at most one input; else −1. */
+  private onlyGate(row: number): number {
     const { outputs, cell } = this.planAt(row)
-    return (
-      cell.kind === 'combinational' &&
-      outputs.gates[2] === 1 &&
-      outputs.nInner === 1 &&
-      isRepeater(outputs.gates[0])
-    )
+    const isSingle = cell.kind === 'combinational' && outputs.nInner === 1 && outputs.gates[2] <= 1
+    return isSingle ? outputs.gates[0] : -1
   }
 
   isClockGateOutput(net: number): boolean {

@@ -6,7 +6,7 @@ import { visitVariables } from '../../circuit/cell-function.ts'
 /**
  * Marks the pins that the chain test exercises: scan-in, scan enable, clock, clear and preset pins of scanned flip-flops, and
  * the pins of whatever leads nowhere else: buffers and inverters of the clock tree, of scan enable, of the path from one
- * flip-flop to the next and to the scan output, and flip-flop outputs that only such a path takes.
+ * flip-flop to the next and to the scan output, and outputs of flip-flops and tie cells that only such a path takes.
  */
 export function markScanPath(
   shared: Assembler,
@@ -68,7 +68,7 @@ export function markScanPath(
           addScanLoad(netOfPin(pin))
         }
       }
-    } else if (cell.kind === 'flip-flop') {
+    } else if (cell.kind === 'flip-flop' || cells.isTie(row)) {
       for (const pin of outputPins) if (netOfPin(pin) === net) cells.markByChain(row, pin)
     }
   }
