@@ -1,7 +1,3 @@
-import type { FaultList } from '../faults/fault-list.ts'
-import { coverageByArea } from '../quality/area-shares.ts'
-import { sortIntoBlocks } from '../quality/block-coverage.ts'
-import { countFaults } from '../quality/count-faults.ts'
 import { dppmAt } from '../quality/defect-level.ts'
 import { bandNarrowings } from '../quality/escape-band.ts'
 import { priceInsertions } from '../quality/insertions.ts'
@@ -12,12 +8,9 @@ import { chainsByShiftRate, sitesByEfficiency, steppedAround } from '../quality/
 import { resolveYield } from '../quality/yield.ts'
 import type { Contradiction } from '../tester/assumption-field.ts'
 import { perDeviceMs } from '../tester/multi-site.ts'
-import { burstMeasures, matchProgram, type ProgramRow } from '../tester/program.ts'
-import type { Tester } from '../tester/tester.ts'
 import { costOfTime } from '../tester/tester-hours.ts'
-import { buildTimeModel, type PatternFacts, type ScanFacts, timeColumns } from '../tester/time-model.ts'
+import { timeColumns } from '../tester/time-model.ts'
 import { chooseCut, type Cut, type Goal, type Limit, meets, type UnmetGoal } from './budget.ts'
-import type { ChoiceTask } from './choice-task.ts'
 import { curveOf } from './coverage-curve.ts'
 import { deliveredOrder } from './delivered-order.ts'
 import { detectedWeight } from './detected-weight.ts'
@@ -27,27 +20,16 @@ import { kneeOf } from './knee.ts'
 import type { CoverageCurve, Order } from './order.ts'
 import type { Marker, MarkerName, MovedOutcome, PlanResult, TimeOutcome } from './plan-result.ts'
 import { figuresAt, type PointFigures } from './point-figures.ts'
+import { type PlanBasis, planPricing } from './plan-pricing.ts'
 import { planProblems } from './plan-problems.ts'
 import { type PricedOrder, type Pricing, priceOrder } from './price.ts'
 import { leastTotal, nextMillisecondBuysLess } from './stopping-rules.ts'
 
 /** Everything that a plan is made from. */
-export type PlanInput = {
-  readonly faults: FaultList
-  /** Length faults.nClasses: 1 where the class is proven untestable with free inputs. Null: nothing was proven. */
-  readonly untestable: Uint8Array | null
-  /** The choice that the order was made for: its matrix, weights, constraints and number of detections. */
-  readonly task: ChoiceTask
+export type PlanInput = PlanBasis & {
   /** The weight of all faults of the base, by which coverage is divided. */
   readonly total: number
   readonly order: Order
-  readonly patterns: PatternFacts
-  /** The name of the pattern file, by which a row of the program list may mean it. */
-  readonly patternFile: string
-  readonly scan: ScanFacts
-  readonly tester: Tester
-  readonly product: Product
-  readonly program: readonly ProgramRow[]
   readonly limits: readonly Limit[]
   readonly goals: readonly Goal[]
   /** bounds[k − 1]: no k of the patterns detect more. Null where none was worked out. */
@@ -84,20 +66,14 @@ export function buildPlan(input: PlanInput): PlanOutcome {
 }
 
 function planOf(input: PlanInput): Plan {
-  const { faults, task, order, patterns, tester, product, limits, goals, total } = input
+  const { task, order, patterns, tester, product, limits, goals, total } = input
   const worthOfMillisecond = input.worthOfMillisecond ?? WORTH_OF_MILLISECOND
-  const counts = countFaults(faults, input.untestable)
-  const plainTask = { ...task, weights: classSizes(input), detections: 1 }
-  const isWeighted = task.weights.some((weight, row) => weight !== plainTask.weights[row])
+  const { counts, pricing, pricingFor, plainTask, isWeighted, deliveredCoverage, coverageOf } =
+    planPricing(input)
   const isPlain = task.detections === 1 && !isWeighted
   const curve = curveOf(task, order, total)
   const plainCurve = isPlain ? curve : curveOf(plainTask, order, counts.all)
-  const coverageOf = coveragesForQuality(input, plainTask, counts)
   const coverage = coverageOf(order, plainCurve)
-
-  const deliveredCoverage = testCoverage(detectedWeight(plainTask, order.sequence), counts)
-  const pricingFor = pricingOf(input, deliveredCoverage)
-  const pricing = pricingFor({ tester, product })
   const priced = priceOrder(order.sequence, coverage, pricing)
   const mayCut = cutPlaces(order, task.rules)
   const request = { curve, priced, chosen: order.chosen, mayCut, limits, goals }
@@ -272,61 +248,5 @@ function planOf(input: PlanInput): Plan {
         : null,
       sitesByEfficiency: sitesByEfficiency(now, steppedAround(tester.sites), EFFICIENCIES, evaluate),
     }
-  }
-}
-
-function classSizes({ faults, task }: PlanInput): Float64Array {
-  return Float64Array.from(task.matrix.classOfRow, (one) => faults.classSize[one])
-}
-
-/** Returns a function from a tester and a product to what prices stand on; measured corrections stay as they are. */
-function pricingOf(
-  { patterns, patternFile, scan, tester, product, program }: PlanInput,
-  deliveredCoverage: number,
-): (assumptions: Assumptions) => Pricing {
-  const facts = matchProgram(program, patterns, patternFile)
-  const uncorrected = { ...product, timeCorrection: 1, chainTest: false }
-  const computed = buildTimeModel(tester, uncorrected, patterns, scan)
-  const general = { setupMs: product.setupMs, correction: product.timeCorrection }
-  const measures = burstMeasures(facts, patterns, computed, general)
-  return (moved) => ({
-    ...moved,
-    time: buildTimeModel(moved.tester, moved.product, patterns, scan, measures),
-    trueYield: resolveYield(moved.product, deliveredCoverage).value,
-    restMs: moved.product.otherMs + facts.fixedMs,
-  })
-}
-
-/**
- * Returns a function from an order, with its curve of plain faults, to the test coverage of each prefix that escapes are
- * reckoned from: over all faults, or by area where the product gives shares.
- */
-function coveragesForQuality(
-  { faults, untestable, product }: PlanInput,
-  plainTask: ChoiceTask,
-  counts: FaultCounts,
-): (order: Order, plainCurve: CoverageCurve) => Float64Array {
-  if (product.areaShares === null) {
-    return (_, { detected }) => detected.map((count) => testCoverage(count, counts))
-  }
-  const shares = product.areaShares.map(({ share }) => share)
-  const { blockOf, classWeights } = sortIntoBlocks(faults, product.areaShares)
-  const blockCounts = shares.map((_, block) =>
-    countFaults(faults, untestable, (fault) => blockOf[fault] === block),
-  )
-  return (order) => {
-    const curves = classWeights.map((weights) => {
-      const task = {
-        ...plainTask,
-        weights: Float64Array.from(plainTask.matrix.classOfRow, (one) => weights[one]),
-      }
-      return curveOf(task, order, 0).detected
-    })
-    return Float64Array.from(curves[0], (_, k) =>
-      coverageByArea(
-        shares,
-        curves.map((detected, block) => testCoverage(detected[k], blockCounts[block])),
-      ),
-    )
   }
 }
