@@ -1,6 +1,7 @@
 import { CircuitBuilder } from '../../app/engine/circuit/circuit-builder.ts'
 import { GateKind, type Circuit } from '../../app/engine/circuit/circuit.ts'
 import type { Netlist } from '../../app/engine/circuit/netlist.ts'
+import { createRandom } from '../../app/engine/source/random.ts'
 
 /** The size of a made-up scan design: nothing in it follows a real one. */
 export type ScanDesign = {
@@ -59,15 +60,11 @@ export function* generateStil(
   seed: number,
 ): Generator<string, void, undefined> {
   const { inputs, outputs, chains, chainLength } = design
-  let state = seed >>> 0 || 1
+  const random = createRandom(seed)
   const bits = (length: number, zero: string, one: string): string => {
     let text = ''
     for (let at = 0; at < length; at += 30) {
-      // Marsaglia's xorshift, 2003.
-      state ^= state << 13
-      state ^= state >>> 17
-      state ^= state << 5
-      const run = (state & 0x3fffffff)
+      const run = (random.bits() >>> 2)
         .toString(2)
         .padStart(30, '0')
         .slice(0, Math.min(30, length - at))

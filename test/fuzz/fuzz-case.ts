@@ -1,10 +1,11 @@
 import type { Reading } from '../../app/engine/source/diagnostic.ts'
+import { createRandom } from '../../app/engine/source/random.ts'
 import type { FuzzedReader } from './fuzzed-readers.ts'
-import { mutate, seededBelow } from './mutate.ts'
+import { mutate } from './mutate.ts'
 
 /** The text of one case: the same for the same reader, seed and number. */
 export function caseText(reader: FuzzedReader, seed: number, number: number): string {
-  const below = seededBelow(Math.imul(seed, 0x9e3779b1) ^ number)
+  const { below } = createRandom(Math.imul(seed, 0x9e3779b1) ^ number)
   return mutate(reader.seeds[below(reader.seeds.length)], reader.seeds, below)
 }
 
@@ -29,7 +30,7 @@ function checkReading({ value, diagnostics }: Reading<unknown>, length: number):
   for (const { code, file, message, span } of diagnostics) {
     const isPlace = Number.isInteger(span.start) && Number.isInteger(span.end)
     if (file !== 'fuzzed') return `${code}: a diagnostic of another file: ${file}`
-    if (message === '' || /undefined|NaN|\[object/.test(message))
+    if (message === '' || /\bundefined\b|\bNaN\b|\[object /.test(message))
       return `${code}: a broken message: ${message}`
     if (!isPlace || span.start < 0 || span.end < span.start || span.end > length) {
       return `${code}: a diagnostic without a place in the text: ${span.start} to ${span.end} of ${length}`

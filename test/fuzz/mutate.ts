@@ -1,14 +1,3 @@
-/** A generator of numbers below n, the same for the same seed: mulberry32, a published 32-bit mix. */
-export function seededBelow(seed: number): (n: number) => number {
-  let state = seed >>> 0
-  return (n) => {
-    state = (state + 0x6d2b79f5) >>> 0
-    let mixed = Math.imul(state ^ (state >>> 15), state | 1)
-    mixed ^= mixed + Math.imul(mixed ^ (mixed >>> 7), mixed | 61)
-    return ((mixed ^ (mixed >>> 14)) >>> 0) % n
-  }
-}
-
 const ODD_SIGNS = [
   '\0',
   '\ufeff',

@@ -1,7 +1,5 @@
 import {
-  PATTERNS_PER_BLOCK,
   WORDS_PER_BLOCK,
-  emptyPlane,
   type BitPlane,
   type PatternBurst,
   type PatternSet,
@@ -15,8 +13,10 @@ import {
   PULSE,
   type CompiledTable,
 } from './compile-table.ts'
+import { GrowingPlane, wordInBlock } from './growing-plane.ts'
 import type { PinMap } from './match-netlist.ts'
 import type { PatternRunner } from './run-patterns.ts'
+import { firstCompare, writeLoad, writeUnload, type PassedData, type PatternColumn } from './scan-data.ts'
 
 /** Why a pattern counts for time and not for coverage. */
 export type TimeOnlyReason =
@@ -47,42 +47,10 @@ export type AssemblyCounts = {
   pulsedInCapture: Uint8Array
 }
 
+const NO_DATA: PassedData = { text: '', from: 0, stride: 1, count: 0 }
+
 /** Bits of all planes together that a set may have, a gigabyte. */
 const MAX_PLANE_WORDS = 1 << 28
-
-/** One plane while patterns are still coming: a piece of rows × WORDS_PER_BLOCK words for each block of patterns. */
-class GrowingPlane {
-  private readonly rows: number
-  private readonly blocks: Uint32Array[] = []
-
-  constructor(rows: number) {
-    this.rows = rows
-  }
-
-  block(pattern: number): Uint32Array {
-    const at = Math.floor(pattern / PATTERNS_PER_BLOCK)
-    while (this.blocks.length <= at) this.blocks.push(new Uint32Array(this.rows * WORDS_PER_BLOCK))
-    return this.blocks[at]
-  }
-
-  finish(nPatterns: number): BitPlane {
-    const plane = emptyPlane(this.rows, nPatterns)
-    this.blocks.forEach((block, at) => {
-      if (at * PATTERNS_PER_BLOCK >= Math.max(1, nPatterns)) return
-      for (let row = 0; row < this.rows; row++) {
-        const from = row * WORDS_PER_BLOCK
-        plane.words.set(
-          block.subarray(from, from + WORDS_PER_BLOCK),
-          row * plane.wordsPerRow + at * WORDS_PER_BLOCK,
-        )
-      }
-    })
-    return plane
-  }
-}
-
-/** Data of a chain as the last shift left them, decoded once it is known how many pulses followed. */
-type PendingLoad = { text: string; from: number; stride: number; left: number; table: CompiledTable | null }
 
 /**
  * Turns the cycles and shifts of a run into patterns. A pattern starts with a load, which is also the unload of the
@@ -124,7 +92,8 @@ export class PatternAssembler {
   private reason: TimeOnlyReason | null = null
   private frame: Uint8Array | null = null
   private readonly levels: Uint8Array
-  private readonly load: PendingLoad[]
+  /** Scan-in data of the last shift, decoded once it is known how many pulses followed. */
+  private load: { readonly data: PassedData; readonly table: CompiledTable }[] = []
   private loadPending = false
   private shiftsBefore = 0
   private shiftsAfter = 0
@@ -148,7 +117,6 @@ export class PatternAssembler {
     this.expected = new GrowingPlane(this.nOutputs + pins.nFlipFlops)
     this.care = new GrowingPlane(this.nOutputs + pins.nFlipFlops)
     this.levels = new Uint8Array(this.nInputs)
-    this.load = pins.chains.map(() => ({ text: '', from: 0, stride: 1, left: 0, table: null }))
     this.shiftState = new Uint8Array(nSignals)
     this.flipFlopClocks = new Set(pins.clockOf?.filter((signal) => signal >= 0))
     this.clockLevel = new Uint8Array(pins.clocks.length)
@@ -256,19 +224,13 @@ export class PatternAssembler {
     this.shiftsBefore = 0
     this.shiftsAfter = 0
     this.loadPending = true
-    this.pins.chains.forEach((chain, at) => {
-      const load = this.load[at]
-      const { scanInSignal } = chain
-      const passed = scanInSignal >= 0 && shifted.includes(scanInSignal)
-      load.left = passed ? Math.max(0, run.argumentLeft[scanInSignal]) : 0
-      load.table = run.table
-      if (load.left === 0) return
-      load.text = run.argumentText[scanInSignal]
-      load.from = run.argumentFrom[scanInSignal]
-      load.stride = run.argumentStride[scanInSignal]
-      if (chain.length !== null && load.left !== chain.length) {
-        this.counts.wrongLengths.set(chain.name, { found: load.left, expected: chain.length })
+    this.load = this.pins.chains.map(({ name, scanInSignal, length: wanted }) => {
+      const isPassed = scanInSignal >= 0 && shifted.includes(scanInSignal)
+      const data = isPassed ? run.passed(scanInSignal) : NO_DATA
+      if (data.count > 0 && wanted !== null && data.count !== wanted) {
+        this.counts.wrongLengths.set(name, { found: data.count, expected: wanted })
       }
+      return { data, table: run.table }
     })
     this.shiftState.set(run.state)
     this.noteShift(run, shifted)
@@ -349,8 +311,8 @@ export class PatternAssembler {
       const seen = this.counts.timeOnly.get(this.reason)
       if (seen === undefined) this.counts.timeOnly.set(this.reason, { count: 1, first: pattern })
       else seen.count++
-      this.clearRows(this.care, this.nOutputs + this.pins.nFlipFlops, pattern)
-      this.clearRows(this.expected, this.nOutputs + this.pins.nFlipFlops, pattern)
+      this.care.clear(pattern)
+      this.expected.clear(pattern)
     }
     this.captures = 0
     this.sawBoundary = true
@@ -359,21 +321,13 @@ export class PatternAssembler {
   private discard(): void {
     const pattern = this.nPatterns - 1
     this.loadPending = false
-    const rows = this.nInputs + this.pins.nFlipFlops
-    this.clearRows(this.value, rows, pattern)
-    this.clearRows(this.known, rows, pattern)
+    this.value.clear(pattern)
+    this.known.clear(pattern)
     this.nPatterns--
   }
 
   private timeOnlyFor(reason: TimeOnlyReason): void {
     this.reason ??= reason
-  }
-
-  private clearRows(plane: GrowingPlane, rows: number, pattern: number, first = 0): void {
-    const block = plane.block(pattern)
-    const clear = ~(1 << (pattern & 31))
-    const word = wordOf(pattern)
-    for (let row = first; row < rows; row++) block[row * WORDS_PER_BLOCK + word] &= clear
   }
 
   /** Fills `pulsing` with the clocks that leave their rest level in this cycle; true where any does. */
@@ -429,7 +383,7 @@ export class PatternAssembler {
     const expected = this.expected.block(pattern)
     const care = this.care.block(pattern)
     const bit = 1 << (pattern & 31)
-    const word = wordOf(pattern)
+    const word = wordInBlock(pattern)
     const { outputSignal } = this.pins
     const { table, state } = run
     for (let row = 0; row < outputSignal.length; row++) {
@@ -463,7 +417,9 @@ export class PatternAssembler {
         const compare = table.flags[table.row[chain.scanOutSignal] * CHARACTERS + code] & COMPARE_MASK
         if (compare === Compare.None) continue
         used++
-        if (compare !== Compare.Other) this.expectCell(chain, chain.flipFlop.length - 1, compare, pattern)
+        const data = { text: String.fromCharCode(code), from: 0, stride: 1, count: 1 }
+        const column = this.column(this.expected, this.care, this.nOutputs, pattern)
+        this.countUnused(writeUnload(chain, data, table, 0, column, this.holds()))
       }
     }
     this.counts.unusedExpects.afterCapture += run.compares - used
@@ -489,8 +445,8 @@ export class PatternAssembler {
     else if (!this.sameFrame()) {
       const pattern = this.nPatterns - 1
       this.counts.unusedExpects.otherInputs += this.countCares(pattern)
-      this.clearRows(this.care, this.nOutputs, pattern)
-      this.clearRows(this.expected, this.nOutputs, pattern)
+      this.care.clear(pattern, this.nOutputs)
+      this.expected.clear(pattern, this.nOutputs)
       this.keepFrame(run)
     }
   }
@@ -513,7 +469,7 @@ export class PatternAssembler {
 
   private countCares(pattern: number): number {
     const block = this.care.block(pattern)
-    const word = wordOf(pattern)
+    const word = wordInBlock(pattern)
     let count = 0
     for (let row = 0; row < this.nOutputs; row++) {
       count += (block[row * WORDS_PER_BLOCK + word] >>> (pattern & 31)) & 1
@@ -587,7 +543,7 @@ export class PatternAssembler {
     const value = this.value.block(pattern)
     const known = this.known.block(pattern)
     const bit = 1 << (pattern & 31)
-    const word = wordOf(pattern)
+    const word = wordInBlock(pattern)
     for (let row = 0; row < this.nInputs; row++) {
       const at = row * WORDS_PER_BLOCK + word
       const level = this.levels[row]
@@ -605,63 +561,50 @@ export class PatternAssembler {
     if (!this.loadPending) return
     this.loadPending = false
     const pattern = this.nPatterns - 1
-    const value = this.value.block(pattern)
-    const known = this.known.block(pattern)
-    const bit = 1 << (pattern & 31)
-    const word = wordOf(pattern)
-    this.pins.chains.forEach((chain, at) => {
-      const { text, from, stride, left, table } = this.load[at]
-      const { flipFlop, loadInverted, scanInSignal } = chain
-      if (left === 0 || table === null || scanInSignal < 0) return
-      const row = table.row[scanInSignal] * CHARACTERS
-      const firstCell = left - 1 + this.shiftsAfter
-      for (let index = Math.max(0, firstCell - flipFlop.length + 1); index < left; index++) {
-        const code = text.charCodeAt(from + index * stride)
-        const level = code < CHARACTERS ? table.flags[row + code] & DRIVE_MASK : Drive.Unknown
-        if (level !== Drive.Low && level !== Drive.High) continue
-        const cell = firstCell - index
-        const target = (this.nInputs + flipFlop[cell]) * WORDS_PER_BLOCK + word
-        known[target] |= bit
-        if ((level === Drive.High) !== (loadInverted[cell] === 1)) value[target] |= bit
-      }
+    const column = this.column(this.value, this.known, this.nInputs, pattern)
+    this.load.forEach(({ data, table }, at) => {
+      if (data.count > 0) writeLoad(this.pins.chains[at], data, table, this.shiftsAfter, column)
     })
   }
 
   /** Writes what this shift expects at the scan-outs to the pattern that it unloads. */
   private unload(run: PatternRunner): void {
     if (this.reason !== null) return
-    const pattern = this.nPatterns - 1
+    const column = this.column(this.expected, this.care, this.nOutputs, this.nPatterns - 1)
     const { table } = run
     for (const chain of this.pins.chains) {
       const signal = chain.scanOutSignal
-      if (signal < 0 || run.argumentLeft[signal] <= 0) continue
-      const { flipFlop } = chain
-      const text = run.argumentText[signal]
-      const from = run.argumentFrom[signal]
-      const stride = run.argumentStride[signal]
-      const left = run.argumentLeft[signal]
-      const row = table.row[signal] * CHARACTERS
-      let lastCell = -1
-      for (let index = 0; index < left; index++) {
-        const code = text.charCodeAt(from + index * stride)
-        if (code >= CHARACTERS) continue
-        const compare = table.flags[row + code] & COMPARE_MASK
-        if (compare === Compare.None) continue
-        if (compare === Compare.Other) {
-          this.counts.unusedExpects.threeState++
-          continue
-        }
-        if (lastCell < 0) {
-          const { strobe } = table.shapes[table.shape[row + code]]
-          const shifts = this.shiftsBefore + (strobe >= this.lastEdge(run) ? 1 : 0)
-          lastCell = flipFlop.length - 1 - shifts
-          if (lastCell < 0) break
-        }
-        const cell = lastCell - index
-        if (cell < 0) break
-        this.expectCell(chain, cell, compare, pattern)
-      }
+      if (signal < 0 || chain.flipFlop.length === 0) continue
+      const data = run.passed(signal)
+      const code = firstCompare(data, table, signal)
+      if (code < 0) continue
+      const { strobe } = table.shapes[table.shape[table.row[signal] * CHARACTERS + code]]
+      const shifts = this.shiftsBefore + (strobe >= this.lastEdge(run) ? 1 : 0)
+      this.countUnused(writeUnload(chain, data, table, shifts, column, this.holds()))
     }
+  }
+
+  private column(ones: GrowingPlane, known: GrowingPlane, firstRow: number, pattern: number): PatternColumn {
+    const word = wordInBlock(pattern)
+    return {
+      ones: ones.block(pattern),
+      known: known.block(pattern),
+      firstRow,
+      word,
+      bit: 1 << (pattern & 31),
+    }
+  }
+
+  /** Tells flip-flops whose clock rested in a capture of some clocks; null where all clocks captured. */
+  private holds(): ((flipFlop: number) => boolean) | null {
+    const { captured } = this
+    const { clockOf } = this.pins
+    return captured === null || clockOf === null ? null : (flipFlop) => !captured.has(clockOf[flipFlop])
+  }
+
+  private countUnused({ others, held }: { others: number; held: number }): void {
+    this.counts.unusedExpects.threeState += others
+    this.counts.heldUnloads += held
   }
 
   private lastEdge(run: PatternRunner): number {
@@ -671,18 +614,6 @@ export class PatternAssembler {
       if (edge > latest) latest = edge
     }
     return latest === -Infinity ? NaN : latest
-  }
-
-  private expectCell(chain: PinMap['chains'][number], cell: number, compare: number, pattern: number): void {
-    if (this.captured !== null && !this.captured.has(this.pins.clockOf?.[chain.flipFlop[cell]] ?? -1)) {
-      this.counts.heldUnloads++
-      return
-    }
-    const at = (this.nOutputs + chain.flipFlop[cell]) * WORDS_PER_BLOCK + wordOf(pattern)
-    const bit = 1 << (pattern & 31)
-    this.care.block(pattern)[at] |= bit
-    if ((compare === Compare.High) !== (chain.unloadInverted[cell] === 1))
-      this.expected.block(pattern)[at] |= bit
   }
 
   private noteShift(run: PatternRunner, shifted: readonly number[]): void {
@@ -708,10 +639,6 @@ export class PatternAssembler {
       seen[signal] |= level === Drive.Low ? 1 : level === Drive.High ? 2 : 4
     }
   }
-}
-
-function wordOf(pattern: number): number {
-  return (pattern & (PATTERNS_PER_BLOCK - 1)) >>> 5
 }
 
 function edgeOf(run: PatternRunner, signal: number): number {

@@ -1,7 +1,7 @@
 import { quoted } from '../../source/finding-list.ts'
 import type { Span } from '../../source/source.ts'
 import { expandData } from './expand-data.ts'
-import type { Lexer} from './lexer.ts';
+import type { Lexer } from './lexer.ts'
 import { Token } from './lexer.ts'
 import { readName, type SignalNames } from './signal-names.ts'
 import type { Assignment, Statement } from './statement.ts'

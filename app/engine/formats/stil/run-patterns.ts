@@ -13,6 +13,7 @@ import {
 } from './compile-table.ts'
 import { Lexer } from './lexer.ts'
 import { StatementReader } from './read-statements.ts'
+import type { PassedData } from './scan-data.ts'
 import type { SignalNames } from './signal-names.ts'
 import type { Assignment, Statement } from './statement.ts'
 import { BrokenStatement, ReadingStopped, type StilFindings } from './stil-findings.ts'
@@ -58,10 +59,10 @@ export class PatternRunner {
   compares = 0
   pulses = 0
   /** Data passed for each signal: characters at text, from, from + stride …, that many; −1 where none were passed. */
-  readonly argumentText: string[]
-  readonly argumentFrom: Int32Array
-  readonly argumentStride: Int32Array
-  readonly argumentLeft: Int32Array
+  private readonly argumentText: string[]
+  private readonly argumentFrom: Int32Array
+  private readonly argumentStride: Int32Array
+  private readonly argumentLeft: Int32Array
   readonly counts: RunCounts = {
     cycles: 0,
     seconds: 0,
@@ -144,6 +145,16 @@ export class PatternRunner {
     this.assembler.beginBurst(blocks[0]?.name ?? '')
     for (const block of blocks) this.runPattern(block)
     this.assembler.endBurst()
+  }
+
+  /** What is left of the data passed for a signal. */
+  passed(signal: number): PassedData {
+    return {
+      text: this.argumentText[signal],
+      from: this.argumentFrom[signal],
+      stride: this.argumentStride[signal],
+      count: Math.max(0, this.argumentLeft[signal]),
+    }
   }
 
   private chooseTiming(name: string, place: Place): void {
