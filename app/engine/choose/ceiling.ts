@@ -22,7 +22,7 @@ export type CeilingOptions = {
   readonly onProgress?: ChoiceProgress
 }
 
-const USUAL_EFFORT = 4e9
+const USUAL_EFFORT = 3e9
 
 /** Up to so many budgets each get multipliers of their own; of more, those at least an eighth apart do. */
 const MANY_BUDGETS = 100
@@ -36,7 +36,7 @@ export function patternBudgets(nPatterns: number): Float64Array {
 /**
  * Returns an upper bound on what any choice within each budget detects, or null when `onProgress` ended it early.
  * Multipliers are optimised at some of the budgets, from the smallest up; each set bounds every budget, and the least
- * bound counts. Weights are whole numbers where they can be, and then bounds are rounded down.
+ * bound counts, rounded down to what weights can add up to.
  * A budget that the kept patterns alone break gets what they detect, so that the bounds lie above every order.
  * SOURCE: Lagrangian dual of the linear relaxation of maximum coverage (LagrangianDual says how).
  */
@@ -85,10 +85,10 @@ export function ceilingOf(
     keep(dual.best.slice(), dual.boundsFor(free))
   }
 
-  const bounds = lowest.map((bound) => {
-    const weight = problem.keptWeight + bound / dual.scale
-    return problem.weightScale === 1 ? Math.floor(weight) : weight / problem.weightScale
-  })
+  // Scaled weights are whole, and so is what any choice detects of them.
+  const bounds = lowest.map(
+    (bound) => Math.floor(problem.keptWeight + bound / dual.scale) / problem.weightScale,
+  )
   return { budgets, bounds, proofOf, multipliers, scale: dual.scale, problem }
 }
 

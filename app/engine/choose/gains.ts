@@ -1,4 +1,5 @@
 import type { ChoiceProgress } from './choice-task.ts'
+import { type BitColumns, transposeBits } from './transpose-bits.ts'
 import type { UnitMatrix } from './unit-matrix.ts'
 
 /**
@@ -13,42 +14,29 @@ const STEP = [64, 43, 28, 19, 13, 8, 6, 4, 3, 2]
 /** The gain of every unit given what has been taken, exact in whole numbers. */
 export class Gains {
   readonly gain: Float64Array
-  readonly detections: number
   readonly #units: UnitMatrix
+  readonly #columns: BitColumns
   /** #step[m]: what a detection is worth to a row that still lacks m. */
   readonly #step: Float64Array
-  /** How often each row still counts. */
+  /** How many detections each row still lacks. */
   readonly #missing: Uint8Array
-  /** Rows that still count, in the first #nOpen places. */
+  /** A bit for each row that lacks any. */
   readonly #open: Uint32Array
-  #nOpen: number
 
   constructor(units: UnitMatrix, detections: number) {
+    const { nRows, nUnits, words, rowAt, levelStart } = units
     this.#units = units
-    this.detections = detections
-    this.gain = new Float64Array(units.nUnits)
+    this.gain = new Float64Array(nUnits)
     this.#step = Float64Array.of(0, ...STEP.slice(0, detections))
     if (detections === 1) this.#step[1] = 1
-    this.#missing = new Uint8Array(units.nRows).fill(detections)
-    this.#open = Uint32Array.from(this.#missing.keys())
-    this.#nOpen = units.nRows
-    if (detections > 1) this.#closeWhatCannotCount()
-  }
-
-  /** Closes rows that not even all units together detect often enough. */
-  #closeWhatCannotCount(): void {
-    const { words, rowAt, levelStart } = this.#units
-    let left = 0
-    for (let row = 0; row < this.#nOpen; row++) {
-      let times = 0
-      const end = rowAt[row] + levelStart[levelStart.length - 1]
-      for (let at = rowAt[row]; at < end && times < this.detections; at++) {
-        for (let rest = words[at]; rest !== 0; rest &= rest - 1) times++
-      }
-      if (times >= this.detections) this.#open[left++] = row
-      else this.#missing[row] = 0
+    this.#columns = transposeBits(words, rowAt, levelStart[levelStart.length - 1])
+    this.#missing = new Uint8Array(nRows)
+    this.#open = new Uint32Array(this.#columns.wordsPerColumn)
+    for (let row = 0; row < nRows; row++) {
+      if (detections > 1 && this.#detectionsOfAll(row, detections) < detections) continue
+      this.#missing[row] = detections
+      this.#open[row >>> 5] |= 1 << (row & 31)
     }
-    this.#nOpen = left
   }
 
   /** Adds up the gains before anything is taken; false when ended early. */
@@ -63,38 +51,36 @@ export class Gains {
 
   /** Counts what a unit detects, and changes the gain of all others by what that leaves for them. */
   take(unit: number): void {
-    let left = 0
-    for (let at = 0; at < this.#nOpen; at++) {
-      const row = this.#open[at]
+    for (const row of this.#openRowsOf(unit)) {
       const before = this.#missing[row]
       const after = Math.max(0, before - this.#detectionsOf(row, unit))
-      if (after < before) {
-        this.#move(row, before, after)
-        this.#missing[row] = after
-      }
-      if (after > 0) this.#open[left++] = row
+      this.#move(row, before, after)
+      this.#missing[row] = after
+      if (after === 0) this.#open[row >>> 5] &= ~(1 << (row & 31))
     }
-    this.#nOpen = left
   }
 
   /** Returns, for each unit, the weight (whole) of the rows that it alone would complete. */
   completions(): Float64Array {
     const sums = new Float64Array(this.#units.nUnits)
-    for (let at = 0; at < this.#nOpen; at++) {
-      const row = this.#open[at]
-      this.#addTo(sums, row, this.#missing[row] - 1, this.#units.weight[row])
+    for (let row = 0; row < this.#units.nRows; row++) {
+      const missing = this.#missing[row]
+      if (missing > 0) this.#addTo(sums, row, missing - 1, this.#units.weight[row])
     }
     return sums
   }
 
   /** Returns the gain of several units together. */
   ofAll(list: readonly number[]): number {
+    const times = new Map<number, number>()
+    for (const unit of list) {
+      for (const row of this.#openRowsOf(unit)) {
+        times.set(row, (times.get(row) ?? 0) + this.#detectionsOf(row, unit))
+      }
+    }
     let sum = 0
-    for (let at = 0; at < this.#nOpen; at++) {
-      const row = this.#open[at]
+    for (const [row, count] of times) {
       const missing = this.#missing[row]
-      let count = 0
-      for (const unit of list) count += this.#detectionsOf(row, unit)
       for (let lacks = missing; lacks > 0 && lacks > missing - count; lacks--) {
         sum += this.#units.weight[row] * this.#step[lacks]
       }
@@ -102,13 +88,42 @@ export class Gains {
     return sum
   }
 
+  /** Lists the rows that a unit detects and that still lack detections. */
+  #openRowsOf(unit: number): number[] {
+    const { words, wordsPerColumn } = this.#columns
+    const { bits, bitStart } = this.#units
+    const from = bits[bitStart[unit]] * wordsPerColumn
+    const rows: number[] = []
+    for (let word = 0; word < wordsPerColumn; word++) {
+      for (let rest = words[from + word] & this.#open[word]; rest !== 0; rest &= rest - 1) {
+        rows.push(32 * word + 31 - Math.clz32(rest & -rest))
+      }
+    }
+    return rows
+  }
+
+  /** Returns how often a unit that detects the row does so, as far as it counts. */
   #detectionsOf(row: number, unit: number): number {
     const { words, rowAt, bitStart, bits } = this.#units
-    const end = bitStart[unit + 1]
-    let level = bitStart[unit]
-    while (level < end && ((words[rowAt[row] + (bits[level] >>> 5)] >>> (bits[level] & 31)) & 1) === 1)
+    let level = bitStart[unit] + 1
+    while (
+      level < bitStart[unit + 1] &&
+      ((words[rowAt[row] + (bits[level] >>> 5)] >>> (bits[level] & 31)) & 1) === 1
+    ) {
       level++
+    }
     return level - bitStart[unit]
+  }
+
+  /** Returns how often all units together detect a row, counted up to `most`. */
+  #detectionsOfAll(row: number, most: number): number {
+    const { words, rowAt, levelStart } = this.#units
+    const end = rowAt[row] + levelStart[levelStart.length - 1]
+    let times = 0
+    for (let at = rowAt[row]; at < end && times < most; at++) {
+      for (let rest = words[at]; rest !== 0; rest &= rest - 1) times++
+    }
+    return times
   }
 
   /** Changes the gains by what a row gives when the number of detections that it lacks changes. */

@@ -96,6 +96,11 @@ describe('the proof of a ceiling', () => {
     ['faults that count alike', {}, 1],
     ['costs', { costs }, 10],
     ['two detections', { detections: 2 }, 1],
+    [
+      'weights that are not whole',
+      { weights: Float64Array.from({ length: 300 }, (_, row) => (row % 7) / 3) },
+      1,
+    ],
     ['constraints', rules === null ? {} : { rules, costs }, 10],
   ]
   test.each(cases)('with %s gives the bound in whole numbers', (_, changes, unit) => {
