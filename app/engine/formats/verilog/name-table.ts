@@ -10,8 +10,8 @@ export class NameTable {
   private source = new Uint32Array(1024)
   private start = new Uint32Array(1024)
   private length = new Uint32Array(1024)
-  private hashes = new Int32Array(1024)
-  private slots = new Int32Array(4096).fill(EMPTY)
+  /** Open addressing: id and hash of each slot side by side, so that a miss costs one look into memory. */
+  private slots = emptySlots(4096)
 
   get size(): number {
     return this.count
@@ -22,27 +22,27 @@ export class NameTable {
     return this.texts.push(text) - 1
   }
 
-  /** The id of text[start, end), whose hash is `hashName` of it. */
+  /** The id of text[start, end), whose hash is that of `hashStep` over its characters. */
   intern(source: number, start: number, end: number, hash: number): number {
-    const { hashes, length } = this
+    const { slots, length } = this
     const text = this.texts[source]
-    const mask = this.slots.length - 1
+    const mask = slots.length - 2
     const size = end - start
-    let slot = (hash ^ (hash >>> 15)) & mask
+    let slot = firstSlot(hash, mask)
     for (;;) {
-      const id = this.slots[slot]
+      const id = slots[slot]
       if (id === EMPTY) break
-      if (hashes[id] === hash && length[id] === size && this.isEqual(id, text, start, size)) return id
-      slot = (slot + 1) & mask
+      if (slots[slot + 1] === hash && length[id] === size && this.isEqual(id, text, start, size)) return id
+      slot = (slot + 2) & mask
     }
     if (this.count === this.start.length) this.grow()
     const id = this.count++
     this.source[id] = source
     this.start[id] = start
     this.length[id] = size
-    this.hashes[id] = hash
-    this.slots[slot] = id
-    if (this.count * 2 > this.slots.length) this.rehash()
+    slots[slot] = id
+    slots[slot + 1] = hash
+    if (this.count * 4 > slots.length) this.rehash()
     return id
   }
 
@@ -69,32 +69,38 @@ export class NameTable {
   }
 
   private grow(): void {
-    const capacity = this.start.length * 2
-    const source = new Uint32Array(capacity)
-    source.set(this.source)
-    this.source = source
-    const start = new Uint32Array(capacity)
-    start.set(this.start)
-    this.start = start
-    const length = new Uint32Array(capacity)
-    length.set(this.length)
-    this.length = length
-    const hashes = new Int32Array(capacity)
-    hashes.set(this.hashes)
-    this.hashes = hashes
+    const larger = (column: Uint32Array): Uint32Array<ArrayBuffer> => {
+      const grown = new Uint32Array(column.length * 2)
+      grown.set(column)
+      return grown
+    }
+    this.source = larger(this.source)
+    this.start = larger(this.start)
+    this.length = larger(this.length)
   }
 
   private rehash(): void {
-    const slots = new Int32Array(this.slots.length * 2).fill(EMPTY)
-    const mask = slots.length - 1
-    for (let id = 0; id < this.count; id++) {
-      const hash = this.hashes[id]
-      let slot = (hash ^ (hash >>> 15)) & mask
-      while (slots[slot] !== EMPTY) slot = (slot + 1) & mask
-      slots[slot] = id
+    const old = this.slots
+    const slots = emptySlots(old.length)
+    const mask = slots.length - 2
+    for (let at = 0; at < old.length; at += 2) {
+      if (old[at] === EMPTY) continue
+      let slot = firstSlot(old[at + 1], mask)
+      while (slots[slot] !== EMPTY) slot = (slot + 2) & mask
+      slots[slot] = old[at]
+      slots[slot + 1] = old[at + 1]
     }
     this.slots = slots
   }
+}
+
+function emptySlots(count: number): Int32Array<ArrayBuffer> {
+  return new Int32Array(2 * count).fill(EMPTY)
+}
+
+/** Where the search for a hash begins: an even place within the mask. */
+function firstSlot(hash: number, mask: number): number {
+  return ((hash ^ (hash >>> 15)) << 1) & mask
 }
 
 /** One character's step of the hash that `intern` expects; start from 0. */
