@@ -1,5 +1,6 @@
 import { numberFormats, textOf } from '../contract/format-number.ts'
 import { counted } from '../contract/plan-words.ts'
+import { DEFAULT_PRODUCT } from '../engine/quality/product.ts'
 import { answerPage } from './pages/answer-page.ts'
 import { assumptionsPage } from './pages/assumptions-page.ts'
 import { lostPage } from './pages/lost-page.ts'
@@ -36,7 +37,7 @@ export function buildReport(input: ReportInput): ReportDocument {
 
 /** The product's name, or the circuit's where the product has none of its own. */
 function productName({ pricing, circuit }: ReportInput): string {
-  return pricing.product.name === 'Product' ? circuit.name : pricing.product.name
+  return pricing.product.name === DEFAULT_PRODUCT.name ? circuit.name : pricing.product.name
 }
 
 function ownTitle(input: ReportInput): string {

@@ -57,6 +57,15 @@ describe('the pages of a report', () => {
     )
   })
 
+  test('speak of what a limit stops only where it stops the cut', () => {
+    const loose = Float64Array.of(4, 6, 6, 6)
+    const stopped = reportOfNand({}, { limits: [{ kind: 'patterns', most: 2 }], ceiling: loose })
+    expect(wordsOf(buildReport(stopped).pages[0])).toContain('no choice could add more than 1 faults')
+    const goal = { kind: 'coverage', least: 0.8 } as const
+    const ended = reportOfNand({}, { goals: [goal], ceiling: loose })
+    expect(wordsOf(buildReport(ended).pages[0])).not.toContain('no choice could add')
+  })
+
   test('name every input, so that the figures can be had again', () => {
     const [, , , , reproduce] = buildReport(reportOfNand()).pages
     for (const fact of ['nand.bench', '01234567 89abcdef', 'steepest first', 'version 1.2.3']) {

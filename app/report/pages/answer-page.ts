@@ -122,7 +122,7 @@ function memoryFigure(
 }
 
 function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
-  const { budget, limits, goals, asDelivered, ceiling, gap } = plan
+  const { budget, goals, asDelivered, ceiling, gap } = plan
   const count = (value: number): string => formats.count(value).value
   const reasons: string[] = []
   const [goal] = goals
@@ -145,7 +145,7 @@ function whyWords({ plan }: ReportInput, formats: NumberFormats): string {
       `No choice of ${counted(budget.patterns, 'pattern', formats)} can detect more than ${count(bound)} ${countedWords(plan)}; this one detects ${count(budget.detected)}${withinWords(bound, budget.detected, formats)}.`,
     )
   }
-  if (gap !== null && gap > 0 && limits.length > 0) {
+  if (gap !== null && gap > 0 && plan.cut.stop !== null) {
     reasons.push(`Under the same limit no choice could add more than ${count(gap)} ${countedWords(plan)}.`)
   }
   return reasons.join(' ')
