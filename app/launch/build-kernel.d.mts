@@ -1,2 +1,2 @@
-/** Compiles the simulation kernel; throws with the compiler's words where it can't. */
-export function buildKernel(options?: { width?: 256 | 512; output?: string }): Promise<void>
+/** Compiles the simulation kernel to that file; throws with the compiler's words where it can't. */
+export function buildKernel(output?: string): Promise<void>

@@ -5,17 +5,11 @@ import asc from 'assemblyscript/asc'
 
 const root = join(dirname(fileURLToPath(import.meta.url)), '../..')
 
-/** Patterns that the kernel simulates at once; 256 or 512. */
-const BLOCK_WIDTH = 512
-
 /** The most memory that a kernel may be given, in pages of 64 KiB: all that 32-bit addresses reach. */
 const MAX_PAGES = 65536
 
 /** Compiles the simulation kernel to out/kernel/kernel.wasm; throws with the compiler's words where it can't. */
-export async function buildKernel({
-  width = BLOCK_WIDTH,
-  output = join(root, 'out/kernel/kernel.wasm'),
-} = {}) {
+export async function buildKernel(output = join(root, 'out/kernel/kernel.wasm')) {
   const files = new Map()
   const { error, stderr } = await asc.main(
     [
@@ -38,8 +32,6 @@ export async function buildKernel({
       '1',
       '--maximumMemory',
       String(MAX_PAGES),
-      '--use',
-      `LANES=${width / 128}`,
     ],
     {
       readFile: (name, baseDir) => readFile(join(baseDir, name), 'utf8').catch(() => null),

@@ -7,7 +7,7 @@ import { buildKernel } from '../../app/launch/build-kernel.mjs'
 export async function freshKernel(): Promise<Uint8Array> {
   const folder = mkdtempSync(join(tmpdir(), 'tallycut-kernel-'))
   const output = join(folder, 'kernel.wasm')
-  await buildKernel({ output })
+  await buildKernel(output)
   const bytes = readFileSync(output)
   rmSync(folder, { recursive: true })
   return bytes

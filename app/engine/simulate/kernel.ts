@@ -29,7 +29,7 @@ const BUDGET = 100_000
  * Where dropping pays most the first block is simulated in ranges of few patterns first, so that faults that most
  * patterns detect are gone when many patterns at once have to be propagated.
  */
-const FIRST_RANGES = [64]
+const FIRST_RANGES = [128]
 
 /** Parts into which the first block's regions are split, so that several threads share its work. */
 const PARTS = 16

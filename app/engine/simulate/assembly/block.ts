@@ -18,7 +18,7 @@ import {
   watchRowStart,
   watchRows,
 } from './memory'
-import { PLANE_BYTES, PLANE_SHIFT, clear, copy, none } from './plane'
+import { PLANE_BYTES, PLANE_SHIFT, add, clear, copy, none, Wide } from './plane'
 import { evaluateGoodTwoValued } from './two-valued-gates'
 import { evaluateGoodThreeValued } from './three-valued-gates'
 
@@ -33,6 +33,8 @@ export let rangeStart: u32 = 0
 export let pass: u32 = 0
 /** True where the block has an X. */
 export let threeValued: bool = false
+/** True where the range in use lies within the first 128 patterns of the block. */
+export let narrow: bool = false
 
 let column: usize = 0
 
@@ -53,6 +55,7 @@ export function loadBlock(block: u32, detectionLimit: u32): void {
 export function usePatterns(from: u32, to: u32): void {
   rangeStart = blockStart + from
   pass++
+  narrow = to <= 128
   for (let word: u32 = 0; word < <u32>PLANE_BYTES >> 3; word++) {
     const start = <i32>from - <i32>(word << 6)
     const end = <i32>to - <i32>(word << 6)
@@ -92,7 +95,7 @@ function loadInputs(): void {
     const slot = load<u32>(inputSlots + (<usize>at << 2))
     if (slot == NO_SLOT) continue
     if (!threeValued) {
-      copy(values + (<usize>slot << PLANE_SHIFT), row)
+      copy<Wide>(values + (<usize>slot << PLANE_SHIFT), row)
       continue
     }
     const to = values + (<usize>slot << (PLANE_SHIFT + 1))
@@ -108,16 +111,14 @@ function loadInputs(): void {
 /** Loads what each response row observes in this block, and gathers it for nets that several rows observe. */
 function loadMasks(): void {
   let row = patternObserved + column
-  for (let at: u32 = 0; at < nResponseRows; at++, row += rowBytes) copy(rowMasks + (<usize>at << PLANE_SHIFT), row)
+  for (let at: u32 = 0; at < nResponseRows; at++, row += rowBytes) copy<Wide>(rowMasks + (<usize>at << PLANE_SHIFT), row)
   for (let watch: u32 = 0; watch < nWatches; watch++) {
     const to = watchMasks + (<usize>watch << PLANE_SHIFT)
-    clear(to)
+    clear<Wide>(to)
     const end = load<u32>(watchRowStart + (<usize>watch << 2), 4)
     for (let at = load<u32>(watchRowStart + (<usize>watch << 2)); at < end; at++) {
       const mask = rowMasks + (<usize>load<u32>(watchRows + (<usize>at << 2)) << PLANE_SHIFT)
-      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-        v128.store(to + lane, v128.or(v128.load(to + lane), v128.load(mask + lane)))
-      }
+      add<Wide>(to, mask)
     }
   }
 }

@@ -1,11 +1,30 @@
 /**
- * A plane is one bit for each pattern of a block, LANES vectors of 128 patterns. LANES is given to the compiler (2 or 4);
- * branches on WIDE vanish from the built kernel.
+ * A plane is one bit for each of the 512 patterns of a block: four vectors of 128. What works on planes comes in two
+ * widths, chosen by a type parameter: Wide takes the whole plane, Narrow the first vector alone, for the few patterns with
+ * which dropping begins.
  */
-// @ts-ignore: introduced by the build
-export const WIDE: bool = LANES == 4
-export const PLANE_SHIFT: i32 = WIDE ? 6 : 5
+export const PLANE_SHIFT: i32 = 6
 export const PLANE_BYTES: i32 = 1 << PLANE_SHIFT
+
+export type Narrow = u8
+export type Wide = u32
+
+/** Bytes of a plane that are worked on in this width; a constant in the built kernel. */
+// @ts-ignore: decorator
+@inline
+export function bytesOf<W>(): i32 {
+  return isWide<W>() ? PLANE_BYTES : 16
+}
+
+// @ts-ignore: decorator
+@inline
+export function isWide<W>(): bool {
+  return sizeof<W>() == sizeof<Wide>()
+}
+
+export function patternsPerBlock(): u32 {
+  return <u32>PLANE_BYTES << 3
+}
 
 // @ts-ignore: decorator
 @inline
@@ -15,16 +34,10 @@ export function none(): v128 {
 
 // @ts-ignore: decorator
 @inline
-export function lane(plane: usize, at: usize): v128 {
-  return v128.load(plane + at)
-}
-
-// @ts-ignore: decorator
-@inline
-export function clear(plane: usize): void {
+export function clear<W>(plane: usize): void {
   v128.store(plane, none(), 0)
-  v128.store(plane, none(), 16)
-  if (WIDE) {
+  if (isWide<W>()) {
+    v128.store(plane, none(), 16)
     v128.store(plane, none(), 32)
     v128.store(plane, none(), 48)
   }
@@ -32,21 +45,44 @@ export function clear(plane: usize): void {
 
 // @ts-ignore: decorator
 @inline
-export function copy(to: usize, from: usize): void {
+export function copy<W>(to: usize, from: usize): void {
   v128.store(to, v128.load(from, 0), 0)
-  v128.store(to, v128.load(from, 16), 16)
-  if (WIDE) {
+  if (isWide<W>()) {
+    v128.store(to, v128.load(from, 16), 16)
     v128.store(to, v128.load(from, 32), 32)
     v128.store(to, v128.load(from, 48), 48)
   }
 }
 
+/** Takes from the plane what is not in `by`, or, inverted, what is. */
 // @ts-ignore: decorator
 @inline
-export function flip(plane: usize, by: usize): void {
+export function keep<W>(plane: usize, by: usize, inverts: v128): void {
+  v128.store(plane, v128.and(v128.load(plane, 0), v128.xor(v128.load(by, 0), inverts)), 0)
+  if (isWide<W>()) {
+    v128.store(plane, v128.and(v128.load(plane, 16), v128.xor(v128.load(by, 16), inverts)), 16)
+    v128.store(plane, v128.and(v128.load(plane, 32), v128.xor(v128.load(by, 32), inverts)), 32)
+    v128.store(plane, v128.and(v128.load(plane, 48), v128.xor(v128.load(by, 48), inverts)), 48)
+  }
+}
+
+// @ts-ignore: decorator
+@inline
+export function add<W>(plane: usize, by: usize): void {
+  v128.store(plane, v128.or(v128.load(plane, 0), v128.load(by, 0)), 0)
+  if (isWide<W>()) {
+    v128.store(plane, v128.or(v128.load(plane, 16), v128.load(by, 16)), 16)
+    v128.store(plane, v128.or(v128.load(plane, 32), v128.load(by, 32)), 32)
+    v128.store(plane, v128.or(v128.load(plane, 48), v128.load(by, 48)), 48)
+  }
+}
+
+// @ts-ignore: decorator
+@inline
+export function flip<W>(plane: usize, by: usize): void {
   v128.store(plane, v128.xor(v128.load(plane, 0), v128.load(by, 0)), 0)
-  v128.store(plane, v128.xor(v128.load(plane, 16), v128.load(by, 16)), 16)
-  if (WIDE) {
+  if (isWide<W>()) {
+    v128.store(plane, v128.xor(v128.load(plane, 16), v128.load(by, 16)), 16)
     v128.store(plane, v128.xor(v128.load(plane, 32), v128.load(by, 32)), 32)
     v128.store(plane, v128.xor(v128.load(plane, 48), v128.load(by, 48)), 48)
   }
@@ -54,9 +90,11 @@ export function flip(plane: usize, by: usize): void {
 
 // @ts-ignore: decorator
 @inline
-export function isEmpty(plane: usize): bool {
-  let sum = v128.or(v128.load(plane, 0), v128.load(plane, 16))
-  if (WIDE) sum = v128.or(sum, v128.or(v128.load(plane, 32), v128.load(plane, 48)))
+export function isEmpty<W>(plane: usize): bool {
+  let sum = v128.load(plane, 0)
+  if (isWide<W>()) {
+    sum = v128.or(v128.or(sum, v128.load(plane, 16)), v128.or(v128.load(plane, 32), v128.load(plane, 48)))
+  }
   return !v128.any_true(sum)
 }
 
@@ -67,9 +105,9 @@ function ones(plane: usize, at: usize): u64 {
 }
 
 /** How many patterns of the plane are 1. */
-export function count(plane: usize): u32 {
-  let sum = ones(plane, 0) + ones(plane, 16)
-  if (WIDE) sum += ones(plane, 32) + ones(plane, 48)
+export function count<W>(plane: usize): u32 {
+  let sum = ones(plane, 0)
+  if (isWide<W>()) sum += ones(plane, 16) + ones(plane, 32) + ones(plane, 48)
   return <u32>sum
 }
 
@@ -78,8 +116,4 @@ export function firstOf(plane: usize): u32 {
   let at: u32 = 0
   while (load<u64>(plane + (at << 3)) == 0) at++
   return (at << 6) + <u32>ctz(load<u64>(plane + (at << 3)))
-}
-
-export function patternsPerBlock(): u32 {
-  return <u32>PLANE_BYTES << 3
 }

@@ -1,12 +1,14 @@
-import { queue, summary } from './memory'
+import { fanouts, queue, summary } from './memory'
 
 /** Pending gates as a bit set of two levels: a bit a gate, and a bit for each word of 64 gates that has any. */
 
+/** Adds the fan-outs of the gate with that record; returns how many were not pending yet. */
 // @ts-ignore: decorator
 @inline
-export function pushFanouts(from: usize, to: usize, bits: usize, words: usize): i32 {
+export function pushFanouts(record: usize, bits: usize, words: usize): i32 {
+  const end = fanouts + (<usize>load<u32>(record, 28) << 2)
   let added = 0
-  for (let at = from; at < to; at += 4) {
+  for (let at = fanouts + (<usize>load<u32>(record, 12) << 2); at < end; at += 4) {
     const gate = load<u32>(at)
     const word = bits + (<usize>(gate >> 6) << 3)
     const before = load<u64>(word)

@@ -1,6 +1,6 @@
 import { gates, inputs, nNets, values } from './memory'
 import { AND_2, AND_N, SOURCE, XOR_2, classOf } from './two-valued-gates'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE } from './plane'
+import { PLANE_BYTES, PLANE_SHIFT, isWide, Wide } from './plane'
 
 /**
  * Three-valued gates (Kleene): a net has two planes, "known 1" and "known 0", one after the other; where both are 0 it
@@ -72,10 +72,10 @@ function evaluateLane(record: usize, op: u32, to: usize, lane: usize): void {
 /** Writes both planes of a gate's output, computed from its inputs, to `to`. */
 // @ts-ignore: decorator
 @inline
-export function evaluateGate(record: usize, op: u32, to: usize): void {
+export function evaluateGate<W>(record: usize, op: u32, to: usize): void {
   evaluateLane(record, op, to, 0)
-  evaluateLane(record, op, to, 16)
-  if (WIDE) {
+  if (isWide<W>()) {
+    evaluateLane(record, op, to, 16)
     evaluateLane(record, op, to, 32)
     evaluateLane(record, op, to, 48)
   }
@@ -86,6 +86,6 @@ export function evaluateGoodThreeValued(): void {
   let record = gates
   for (let slot: u32 = 0; slot < nNets; slot++, record += 16) {
     const op = load<u32>(record)
-    if (classOf(op) != SOURCE) evaluateGate(record, op, netValue(slot))
+    if (classOf(op) != SOURCE) evaluateGate<Wide>(record, op, netValue(slot))
   }
 }

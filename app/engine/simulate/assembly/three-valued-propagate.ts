@@ -1,5 +1,5 @@
-import { fanouts, gates, observability, queue, scratch, summary, undo, watchMasks, watchSlots } from './memory'
-import { PLANE_BYTES, PLANE_SHIFT } from './plane'
+import { gates, observability, queue, scratch, summary, undo, watchMasks, watchSlots } from './memory'
+import { PLANE_BYTES, PLANE_SHIFT, bytesOf, copy, flip } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
 import { ALWAYS_WATCHED, watchOf } from './two-valued-propagate'
 import { spend } from './work'
@@ -22,18 +22,18 @@ export const POSSIBLE: u32 = 2
  * known in the good machine and X in the faulty one. A pattern is followed until what is asked of it is known; `live` is
  * used up.
  */
-export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usize, reached: usize, possible: usize): void {
+export function propagateThreeValued<W>(stem: u32, change: u32, ask: u32, live: usize, reached: usize, possible: usize): void {
   const bits = queue
   const words = summary
   const fresh = scratch + 8 * PLANE_BYTES
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
     v128.store(reached + lane, i64x2.splat(0))
     v128.store(possible + lane, i64x2.splat(0))
   }
   let log = undo
   const stemValue = netValue(stem)
   store<u32>(log + 2 * PLANE_BYTES, stem)
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
     const one = v128.load(stemValue + lane)
     const zero = v128.load(stemValue + lane + PLANE_BYTES)
     v128.store(log + lane, one)
@@ -44,7 +44,7 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
   }
   log += UNDO_BYTES
   const stemRecord = gates + (<usize>stem << 4)
-  let pending = pushFanouts(fanouts + (<usize>load<u32>(stemRecord, 12) << 2), fanouts + (<usize>load<u32>(stemRecord, 28) << 2), bits, words)
+  let pending = pushFanouts(stemRecord, bits, words)
   let gate = stem
   let evaluated: u32 = 1
   while (pending > 0) {
@@ -53,10 +53,10 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     evaluated++
     const record = gates + (<usize>gate << 4)
     const op = load<u32>(record)
-    evaluateGate(record, op, fresh)
+    evaluateGate<W>(record, op, fresh)
     const at = netValue(gate)
     let any = i64x2.splat(0)
-    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
       const alive = v128.load(live + lane)
       const one = v128.and(v128.xor(v128.load(fresh + lane), v128.load(at + lane)), alive)
       const zero = v128.and(v128.xor(v128.load(fresh + lane + PLANE_BYTES), v128.load(at + lane + PLANE_BYTES)), alive)
@@ -70,7 +70,7 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     if (watch) {
       const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
       any = i64x2.splat(0)
-      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
         const one = v128.load(at + lane)
         const zero = v128.load(at + lane + PLANE_BYTES)
         const diffOne = v128.load(fresh + lane)
@@ -92,27 +92,27 @@ export function propagateThreeValued(stem: u32, change: u32, ask: u32, live: usi
     }
     if (pending == 0 && ask == DETECTIONS) {
       const known = observability + (<usize>gate << PLANE_SHIFT)
-      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+      for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
         const flipped = v128.and(v128.load(fresh + lane), v128.load(fresh + lane + PLANE_BYTES))
         v128.store(reached + lane, v128.or(v128.load(reached + lane), v128.and(flipped, v128.load(known + lane))))
       }
       break
     }
     store<u32>(log + 2 * PLANE_BYTES, gate)
-    for (let lane = 0; lane < 2 * PLANE_BYTES; lane += 16) {
-      const good = v128.load(at + lane)
-      v128.store(log + lane, good)
-      v128.store(at + lane, v128.xor(good, v128.load(fresh + lane)))
-    }
+    copy<W>(log, at)
+    copy<W>(log + PLANE_BYTES, at + PLANE_BYTES)
+    flip<W>(at, fresh)
+    flip<W>(at + PLANE_BYTES, fresh + PLANE_BYTES)
     log += UNDO_BYTES
-    pending += pushFanouts(fanouts + (<usize>load<u32>(record, 12) << 2), fanouts + (<usize>load<u32>(record, 28) << 2), bits, words)
+    pending += pushFanouts(record, bits, words)
   }
   if (pending > 0) emptyQueue(gate, pending)
 
   while (log > undo) {
     log -= UNDO_BYTES
     const at = netValue(load<u32>(log + 2 * PLANE_BYTES))
-    for (let lane = 0; lane < 2 * PLANE_BYTES; lane += 16) v128.store(at + lane, v128.load(log + lane))
+    copy<W>(at, log)
+    copy<W>(at + PLANE_BYTES, log + PLANE_BYTES)
   }
   spend(evaluated)
 }

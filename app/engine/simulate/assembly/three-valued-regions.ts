@@ -18,10 +18,10 @@ import {
   watchMasks,
   watchSlots,
 } from './memory'
-import { limit } from './block'
+import { limit, narrow } from './block'
 import { NO_CLASS, countAll, countLimited, isSettled } from './counting'
 import { AND_N, ONE_INPUT, SOURCE, XOR_2, classOf } from './two-valued-gates'
-import { PLANE_BYTES, PLANE_SHIFT, clear, copy, isEmpty } from './plane'
+import { PLANE_BYTES, PLANE_SHIFT, add, bytesOf, clear, copy, isEmpty, keep, none, Narrow, Wide } from './plane'
 import { netValue, planeOf } from './three-valued-gates'
 import { ALWAYS_WATCHED, watchOf } from './two-valued-propagate'
 import { spend } from './work'
@@ -60,13 +60,13 @@ function visitCounting(group: u32, seen: usize, value: usize): void {
 }
 
 /** Keeps a class whose result is still open, with the patterns in which it flips its stem or turns it to X. */
-function visitOpen(group: u32, effect: usize, value: usize): void {
+function visitOpen<W>(group: u32, effect: usize, value: usize): void {
   if (group == NO_CLASS) return
   if (limit == 0 ? !isOpen(group) : isSettled(group)) return
   allSettled = false
   const to = lastCandidate
   let any = i64x2.splat(0)
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
     const active = v128.load(value + lane)
     const flips = v128.and(v128.load(effect + lane), active)
     const loses = v128.and(v128.load(effect + lane + PLANE_BYTES), active)
@@ -80,8 +80,8 @@ function visitOpen(group: u32, effect: usize, value: usize): void {
 }
 
 /** Writes to `to` the patterns of `seen` in which a flip at the pin flips the gate. */
-function sensitiseFlip(op: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
-  copy(to, seen)
+function sensitiseFlip<W>(op: u32, pin: usize, firstPin: usize, end: usize, seen: usize, to: usize): void {
+  copy<W>(to, seen)
   const kind = classOf(op)
   if (kind == ONE_INPUT) return
   const isXor = kind == XOR_2 || kind > AND_N
@@ -89,7 +89,7 @@ function sensitiseFlip(op: u32, pin: usize, firstPin: usize, end: usize, seen: u
   for (let other = firstPin; other < end; other += 4) {
     if (other == pin) continue
     const at = netValue(load<u32>(other) >> 1)
-    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+    for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
       let passes = v128.load(at + lane + truth)
       if (isXor) passes = v128.or(passes, v128.load(at + lane + (truth ^ PLANE_BYTES)))
       v128.store(to + lane, v128.and(v128.load(to + lane), passes))
@@ -102,12 +102,12 @@ function sensitiseFlip(op: u32, pin: usize, firstPin: usize, end: usize, seen: u
  * inputs are X and none decides the output, a flip away from the deciding value turns the output to X; and an X on
  * the output turns the stem to X wherever a flip has any effect there.
  */
-function sensitiseBoth(op: u32, pin: usize, firstPin: usize, end: usize, effect: usize, to: usize): void {
+function sensitiseBoth<W>(op: u32, pin: usize, firstPin: usize, end: usize, effect: usize, to: usize): void {
   const kind = classOf(op)
   const isXor = kind == XOR_2 || kind > AND_N
   const truth = planeOf(op & 1)
   const own = netValue(load<u32>(pin) >> 1)
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
     let passes = i64x2.splat(-1)
     let undecided = i64x2.splat(-1)
     if (kind != ONE_INPUT) {
@@ -148,10 +148,10 @@ function walkCounting(start: u32, stem: u32): void {
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitiseFlip(op, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
+        sensitiseFlip<Wide>(op, pin, firstPin, end, seen, observability + (<usize>(source >> 1) << PLANE_SHIFT))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitiseFlip(op, pin, firstPin, end, seen, to)
+        sensitiseFlip<Wide>(op, pin, firstPin, end, seen, to)
         visitCounting(load<u32>(classes, 0), to, netValue(source >> 1))
         visitCounting(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
       }
@@ -160,17 +160,17 @@ function walkCounting(start: u32, stem: u32): void {
 }
 
 /** Walks a region from its stem backwards and gathers the classes whose results are open. */
-function walkOpen(start: u32, stem: u32): void {
-  copy(effectsAt(stem, start), valid)
-  clear(effectsAt(stem, start) + PLANE_BYTES)
+function walkOpen<W>(start: u32, stem: u32): void {
+  copy<W>(effectsAt(stem, start), valid)
+  clear<W>(effectsAt(stem, start) + PLANE_BYTES)
   lastCandidate = candidates
   allSettled = true
   for (let net = stem + 1; net > start; ) {
     net--
     const effect = effectsAt(net, start)
     const site = sites + (<usize>net << 4)
-    visitOpen(load<u32>(site, 0), effect, netValue(net))
-    visitOpen(load<u32>(site, 4), effect, netValue(net) + PLANE_BYTES)
+    visitOpen<W>(load<u32>(site, 0), effect, netValue(net))
+    visitOpen<W>(load<u32>(site, 4), effect, netValue(net) + PLANE_BYTES)
     const op = load<u32>(site, 12)
     if (classOf(op) == SOURCE) continue
     const firstPin = pins + (<usize>load<u32>(site, 8) << 2)
@@ -179,87 +179,81 @@ function walkOpen(start: u32, stem: u32): void {
     for (let pin = firstPin; pin < end; pin += 4, classes += 8) {
       const source = load<u32>(pin)
       if (source & 1) {
-        sensitiseBoth(op, pin, firstPin, end, effect, effectsAt(source >> 1, start))
+        sensitiseBoth<W>(op, pin, firstPin, end, effect, effectsAt(source >> 1, start))
       } else if ((load<u32>(classes, 0) & load<u32>(classes, 4)) != NO_CLASS) {
         const to = scratch + PLANE_BYTES
-        sensitiseBoth(op, pin, firstPin, end, effect, to)
-        visitOpen(load<u32>(classes, 0), to, netValue(source >> 1))
-        visitOpen(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
+        sensitiseBoth<W>(op, pin, firstPin, end, effect, to)
+        visitOpen<W>(load<u32>(classes, 0), to, netValue(source >> 1))
+        visitOpen<W>(load<u32>(classes, 4), to, netValue(source >> 1) + PLANE_BYTES)
       }
     }
   }
 }
 
 /** As propagateThreeValued, with the stem's own observation taken into account. `asked` is used up. */
-function observe(stem: u32, change: u32, ask: u32, asked: usize, reached: usize, possible: usize): void {
+function observe<W>(stem: u32, change: u32, ask: u32, asked: usize, reached: usize, possible: usize): void {
   const record = gates + (<usize>stem << 4)
   const watch = watchOf(load<u32>(record))
   if (watch == 0) {
     if (load<u32>(record, 12) != load<u32>(record, 28)) {
-      propagateThreeValued(stem, change, ask, asked, reached, possible)
+      propagateThreeValued<W>(stem, change, ask, asked, reached, possible)
     } else {
-      clear(reached)
-      clear(possible)
+      clear<W>(reached)
+      clear<W>(possible)
     }
     return
   }
   const direct = scratch + 10 * PLANE_BYTES
   const mask = watch != ALWAYS_WATCHED ? watchMasks + (<usize>load<u32>(watchSlots + (<usize>stem << 2)) << PLANE_SHIFT) : valid
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-    v128.store(direct + lane, v128.and(v128.load(asked + lane), v128.load(mask + lane)))
-    v128.store(asked + lane, v128.andnot(v128.load(asked + lane), v128.load(mask + lane)))
-  }
-  if (watch == ALWAYS_WATCHED || isEmpty(asked)) {
-    clear(reached)
-    clear(possible)
-  } else propagateThreeValued(stem, change, ask, asked, reached, possible)
+  copy<W>(direct, asked)
+  keep<W>(direct, mask, none())
+  keep<W>(asked, mask, i64x2.splat(-1))
+  if (watch == ALWAYS_WATCHED || isEmpty<W>(asked)) {
+    clear<W>(reached)
+    clear<W>(possible)
+  } else propagateThreeValued<W>(stem, change, ask, asked, reached, possible)
   const to = change == FLIP ? reached : possible
-  for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-    v128.store(to + lane, v128.or(v128.load(to + lane), v128.load(direct + lane)))
-  }
+  add<W>(to, direct)
 }
 
 /** Propagates what the gathered classes do to their stem and writes down what comes of it. */
-function settleOpen(stem: u32): void {
+function settleOpen<W>(stem: u32): void {
   if (lastCandidate == candidates) return
-  const asked = scratch + 3 * PLANE_BYTES
-  const reached = scratch + 4 * PLANE_BYTES
-  const flipPossible = scratch + 5 * PLANE_BYTES
-  const lossPossible = scratch + 6 * PLANE_BYTES
-  const unused = scratch + 7 * PLANE_BYTES
-  const ask = limit == 0 ? POSSIBLE : BOTH
-  clear(asked)
-  clear(unused)
+  const flips = scratch + 3 * PLANE_BYTES
+  const losses = scratch + 4 * PLANE_BYTES
+  const reached = scratch + 5 * PLANE_BYTES
+  const flipPossible = scratch + 6 * PLANE_BYTES
+  const lossPossible = scratch + 7 * PLANE_BYTES
+  clear<W>(flips)
+  clear<W>(losses)
   for (let at = candidates; at < lastCandidate; at += CANDIDATE_BYTES) {
-    const mayBePossible = load<u8>(possibly + load<u32>(at + 2 * PLANE_BYTES)) == 0
-    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-      v128.store(asked + lane, v128.or(v128.load(asked + lane), v128.load(at + lane)))
-      if (mayBePossible) {
-        v128.store(unused + lane, v128.or(v128.load(unused + lane), v128.load(at + lane + PLANE_BYTES)))
-      }
-    }
+    add<W>(flips, at)
+    if (load<u8>(possibly + load<u32>(at + 2 * PLANE_BYTES)) == 0) add<W>(losses, at + PLANE_BYTES)
   }
-  const losses = scratch + 12 * PLANE_BYTES
-  copy(losses, unused)
-  if (isEmpty(asked)) {
-    clear(reached)
-    clear(flipPossible)
-  } else observe(stem, FLIP, ask, asked, reached, flipPossible)
-  if (isEmpty(losses)) clear(lossPossible)
-  else observe(stem, TO_X, POSSIBLE, losses, unused, lossPossible)
+  if (isEmpty<W>(losses)) clear<W>(lossPossible)
+  else observe<W>(stem, TO_X, POSSIBLE, losses, reached, lossPossible)
+  if (isEmpty<W>(flips)) {
+    clear<W>(reached)
+    clear<W>(flipPossible)
+  } else observe<W>(stem, FLIP, limit == 0 ? POSSIBLE : BOTH, flips, reached, flipPossible)
 
   for (let at = candidates; at < lastCandidate; at += CANDIDATE_BYTES) {
     const group = load<u32>(at + 2 * PLANE_BYTES)
-    let maybe = i64x2.splat(0)
-    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-      const flips = v128.load(at + lane)
-      maybe = v128.or(maybe, v128.and(flips, v128.load(flipPossible + lane)))
+    let maybe = none()
+    for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
+      maybe = v128.or(maybe, v128.and(v128.load(at + lane), v128.load(flipPossible + lane)))
       maybe = v128.or(maybe, v128.and(v128.load(at + lane + PLANE_BYTES), v128.load(lossPossible + lane)))
-      v128.store(at + lane, v128.and(flips, v128.load(reached + lane)))
     }
     if (v128.any_true(maybe)) store<u8>(possibly + group, 1)
-    if (limit != 0 && !isEmpty(at)) countLimited(group, at)
+    keep<W>(at, reached, none())
+    if (limit != 0 && !isEmpty<W>(at)) countLimited<W>(group, at)
   }
+}
+
+function simulateOpen<W>(region: u32, start: u32, stem: u32): void {
+  walkOpen<W>(start, stem)
+  if (allSettled) store<u8>(settled + region, 1)
+  else settleOpen<W>(stem)
 }
 
 /** Simulates the faults of one region. */
@@ -269,14 +263,14 @@ export function simulateRegionThreeValued(region: u32): void {
   spend(1)
   if (limit == 0) {
     const asked = scratch + 3 * PLANE_BYTES
-    copy(asked, valid)
-    observe(stem, FLIP, DETECTIONS, asked, observability + (<usize>stem << PLANE_SHIFT), scratch + 7 * PLANE_BYTES)
+    const seen = observability + (<usize>stem << PLANE_SHIFT)
+    copy<Wide>(asked, valid)
+    observe<Wide>(stem, FLIP, DETECTIONS, asked, seen, scratch + 7 * PLANE_BYTES)
     walkCounting(start, stem)
   }
   if (load<u8>(settled + region)) return
-  walkOpen(start, stem)
-  if (allSettled) store<u8>(settled + region, 1)
-  else settleOpen(stem)
+  if (narrow) simulateOpen<Narrow>(region, start, stem)
+  else simulateOpen<Wide>(region, start, stem)
 }
 
 export function simulateTapsThreeValued(): void {
@@ -284,22 +278,15 @@ export function simulateTapsThreeValued(): void {
   const seen = scratch + PLANE_BYTES
   for (let tap = taps; tap < end; tap += 16) {
     const row = load<u32>(tap, 12)
-    copy(seen, valid)
-    if (row != NO_CLASS) {
-      const mask = rowMasks + (<usize>row << PLANE_SHIFT)
-      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-        v128.store(seen + lane, v128.and(v128.load(seen + lane), v128.load(mask + lane)))
-      }
-    }
+    copy<Wide>(seen, valid)
+    if (row != NO_CLASS) keep<Wide>(seen, rowMasks + (<usize>row << PLANE_SHIFT), none())
     for (let stuck: u32 = 0; stuck < 2; stuck++) {
       const group = load<u32>(tap + (stuck << 2), 4)
       if (group == NO_CLASS || (limit != 0 && isSettled(group))) continue
-      const active = netValue(load<u32>(tap, 0)) + (<usize>stuck << PLANE_SHIFT)
-      for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-        v128.store(scratch + lane, v128.and(v128.load(seen + lane), v128.load(active + lane)))
-      }
+      copy<Wide>(scratch, netValue(load<u32>(tap, 0)) + (<usize>stuck << PLANE_SHIFT))
+      keep<Wide>(scratch, seen, none())
       if (limit == 0) countAll(group, scratch)
-      else if (!isEmpty(scratch)) countLimited(group, scratch)
+      else if (!isEmpty<Wide>(scratch)) countLimited<Wide>(group, scratch)
     }
   }
 }

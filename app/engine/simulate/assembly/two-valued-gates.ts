@@ -1,5 +1,5 @@
 import { gates, inputs, masks, nNets, values } from './memory'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE } from './plane'
+import { PLANE_BYTES, PLANE_SHIFT } from './plane'
 
 /**
  * A gate's record: 16 bytes. The first word holds its operation: inversions of the first input, of the second and of the
@@ -86,17 +86,13 @@ export function evaluateGoodTwoValued(): void {
         const bInverts = v128.load(inversions(op), 16)
         v128.store(to, and2(a, b, aInverts, bInverts, inverts, 0), 0)
         v128.store(to, and2(a, b, aInverts, bInverts, inverts, 16), 16)
-        if (WIDE) {
-          v128.store(to, and2(a, b, aInverts, bInverts, inverts, 32), 32)
-          v128.store(to, and2(a, b, aInverts, bInverts, inverts, 48), 48)
-        }
+        v128.store(to, and2(a, b, aInverts, bInverts, inverts, 32), 32)
+        v128.store(to, and2(a, b, aInverts, bInverts, inverts, 48), 48)
       } else {
         v128.store(to, xor2(a, b, inverts, 0), 0)
         v128.store(to, xor2(a, b, inverts, 16), 16)
-        if (WIDE) {
-          v128.store(to, xor2(a, b, inverts, 32), 32)
-          v128.store(to, xor2(a, b, inverts, 48), 48)
-        }
+        v128.store(to, xor2(a, b, inverts, 32), 32)
+        v128.store(to, xor2(a, b, inverts, 48), 48)
       }
     } else {
       const input = inputs + (<usize>load<u32>(record, 4) << 2)
@@ -104,17 +100,13 @@ export function evaluateGoodTwoValued(): void {
       if (kind == AND_N) {
         v128.store(to, andN(input, end, inverts, 0), 0)
         v128.store(to, andN(input, end, inverts, 16), 16)
-        if (WIDE) {
-          v128.store(to, andN(input, end, inverts, 32), 32)
-          v128.store(to, andN(input, end, inverts, 48), 48)
-        }
+        v128.store(to, andN(input, end, inverts, 32), 32)
+        v128.store(to, andN(input, end, inverts, 48), 48)
       } else {
         v128.store(to, xorN(input, end, inverts, 0), 0)
         v128.store(to, xorN(input, end, inverts, 16), 16)
-        if (WIDE) {
-          v128.store(to, xorN(input, end, inverts, 32), 32)
-          v128.store(to, xorN(input, end, inverts, 48), 48)
-        }
+        v128.store(to, xorN(input, end, inverts, 32), 32)
+        v128.store(to, xorN(input, end, inverts, 48), 48)
       }
     }
   }

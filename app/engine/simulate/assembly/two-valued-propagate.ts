@@ -15,11 +15,12 @@ import {
   watchSlots,
 } from './memory'
 import { AND_2, AND_N, XOR_2, and2, andN, classOf, inversions, xor2, xorN } from './two-valued-gates'
-import { PLANE_BYTES, PLANE_SHIFT, WIDE, clear, copy, flip, none } from './plane'
+import { PLANE_BYTES, PLANE_SHIFT, add, bytesOf, clear, copy, flip, isEmpty, isWide, keep, none } from './plane'
 import { emptyQueue, pushFanouts, takeNext } from './queue'
 import { spend } from './work'
 
-const UNDO_BYTES: i32 = PLANE_BYTES + 16
+const ENTRY_BYTES: i32 = PLANE_BYTES + 16
+const MAX_NOTES: i32 = 16
 
 /** How a net is observed: not at all, in every pattern, or as its mask says. */
 export const ALWAYS_WATCHED: u32 = 1
@@ -31,74 +32,96 @@ export function watchOf(op: u32): u32 {
   return (op >> 8) & 3
 }
 
-const NOTE_BYTES: i32 = PLANE_BYTES + 16
-const MAX_NOTES: i32 = 16
-/** Where notes on lines that alone carried an effect are kept: past the planes that callers use. */
+/** Where the change of the gate at hand stands while it is looked at more closely. */
+// @ts-ignore: decorator
+@inline
+function change(): usize {
+  return scratch + 14 * PLANE_BYTES
+}
+
+/** Where notes on nets that alone carried an effect are kept: past the planes that callers use. */
 // @ts-ignore: decorator
 @inline
 function notes(): usize {
   return scratch + 16 * PLANE_BYTES
 }
 
-/** Notes that the net alone carries the effect in the patterns of the plane; returns the place of the next note. */
-function note(at: usize, net: u32, plane0: v128, plane1: v128, plane2: v128, plane3: v128): usize {
-  if (at >= notes() + MAX_NOTES * NOTE_BYTES) return at
+/** Notes that the net alone carries the effect, in the patterns of the plane; returns the place of the next note. */
+function note<W>(at: usize, net: u32, plane: usize): usize {
+  if (at >= notes() + MAX_NOTES * ENTRY_BYTES) return at
   store<u32>(at + PLANE_BYTES, net)
-  v128.store(at, plane0, 0)
-  v128.store(at, plane1, 16)
-  if (WIDE) {
-    v128.store(at, plane2, 32)
-    v128.store(at, plane3, 48)
-  }
-  return at + NOTE_BYTES
+  copy<W>(at, plane)
+  return at + ENTRY_BYTES
 }
 
 /** Adds what is now known of the noted nets: an effect there was observed in the patterns of `reached`, and in no others. */
-function keepNotes(end: usize, reached: usize): void {
-  for (let at = notes(); at < end; at += NOTE_BYTES) {
+function keepNotes<W>(end: usize, reached: usize): void {
+  for (let at = notes(); at < end; at += ENTRY_BYTES) {
     const net = load<u32>(at + PLANE_BYTES)
     const knownAt = known + (<usize>net << PLANE_SHIFT)
     const seenAt = observability + (<usize>net << PLANE_SHIFT)
     const stamp = knownPass + (<usize>net << 2)
     if (load<u32>(stamp) != pass) {
       store<u32>(stamp, pass)
-      clear(knownAt)
-      clear(seenAt)
+      clear<W>(knownAt)
+      clear<W>(seenAt)
     }
-    for (let lane = 0; lane < PLANE_BYTES; lane += 16) {
-      const asked = v128.load(at + lane)
-      v128.store(knownAt + lane, v128.or(v128.load(knownAt + lane), asked))
-      v128.store(seenAt + lane, v128.or(v128.load(seenAt + lane), v128.and(asked, v128.load(reached + lane))))
-    }
+    add<W>(knownAt, at)
+    keep<W>(at, reached, none())
+    add<W>(seenAt, at)
+  }
+}
+
+/** Takes the patterns in which the change is seen at the gate itself out of the change and of `live`, into `reached`. */
+function seeAt<W>(gate: u32, watch: u32, live: usize, reached: usize): void {
+  const plane = change()
+  const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
+    const changed = v128.load(plane + lane)
+    const seen = watch == ALWAYS_WATCHED ? changed : v128.and(changed, v128.load(mask + lane))
+    v128.store(reached + lane, v128.or(v128.load(reached + lane), seen))
+    v128.store(live + lane, v128.andnot(v128.load(live + lane), seen))
+    v128.store(plane + lane, v128.andnot(changed, seen))
+  }
+}
+
+/** Adds to `reached` where the change of the gate is known to be observed, and takes out of it where anything is known. */
+function lookUp<W>(gate: u32, allKnown: bool, reached: usize): void {
+  const seenAt = observability + (<usize>gate << PLANE_SHIFT)
+  if (!allKnown && load<u32>(knownPass + (<usize>gate << 2)) != pass) return
+  const plane = change()
+  const knownAt = known + (<usize>gate << PLANE_SHIFT)
+  for (let lane = 0; lane < bytesOf<W>(); lane += 16) {
+    const changed = v128.load(plane + lane)
+    v128.store(reached + lane, v128.or(v128.load(reached + lane), v128.and(changed, v128.load(seenAt + lane))))
+    v128.store(plane + lane, allKnown ? none() : v128.andnot(changed, v128.load(knownAt + lane)))
   }
 }
 
 /**
- * Finds in which patterns of the plane `live` a flip of the stem is observed, and writes them to `reached`. Where one net
- * alone carries the effect, its observability is looked up: that of any later net where `allKnown`, else that of stems
- * as far as it has been found out in this pass.
+ * Finds in which patterns of the plane `live` a flip of the stem is observed, and writes them to `reached`; `live` is used
+ * up. Where one net alone carries the effect, its observability is looked up: that of any later net where `allKnown`,
+ * else that of stems as far as it has been found out in this pass.
  */
-export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: bool): void {
+export function propagateFlip<W>(stem: u32, live: usize, reached: usize, allKnown: bool): void {
   const base = values
   const bits = queue
   const words = summary
-  let live0 = v128.load(live, 0)
-  let live1 = v128.load(live, 16)
-  let live2 = WIDE ? v128.load(live, 32) : none()
-  let live3 = WIDE ? v128.load(live, 48) : none()
-  let reached0 = none()
-  let reached1 = none()
-  let reached2 = none()
-  let reached3 = none()
+  const plane = change()
+  let noted = notes()
+  if (!allKnown) noted = note<W>(noted, stem, live)
+  clear<W>(reached)
 
   let log = undo
-  flip(base + (<usize>stem << PLANE_SHIFT), live)
-  let noted = notes()
-  if (!allKnown) noted = note(noted, stem, live0, live1, live2, live3)
-  let evaluated: u32 = 1
+  const stemValue = base + (<usize>stem << PLANE_SHIFT)
+  copy<W>(log, stemValue)
+  store<u32>(log + PLANE_BYTES, stem)
+  log += ENTRY_BYTES
+  flip<W>(stemValue, live)
   const stemRecord = gates + (<usize>stem << 4)
-  let pending = pushFanouts(fanouts + (<usize>load<u32>(stemRecord, 12) << 2), fanouts + (<usize>load<u32>(stemRecord, 28) << 2), bits, words)
+  let pending = pushFanouts(stemRecord, bits, words)
   let gate = stem
+  let evaluated: u32 = 1
   while (pending > 0) {
     gate = takeNext(gate, bits, words)
     pending--
@@ -108,9 +131,9 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
     const kind = classOf(op)
     const inverts = v128.load(inversions(op), 32)
     let new0: v128
-    let new1: v128
-    let new2: v128 = none()
-    let new3: v128 = none()
+    let new1 = none()
+    let new2 = none()
+    let new3 = none()
     if (kind <= XOR_2) {
       const a = base + (<usize>load<u32>(record, 4) << PLANE_SHIFT)
       const b = base + (<usize>load<u32>(record, 8) << PLANE_SHIFT)
@@ -118,15 +141,15 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
         const aInverts = v128.load(inversions(op), 0)
         const bInverts = v128.load(inversions(op), 16)
         new0 = and2(a, b, aInverts, bInverts, inverts, 0)
-        new1 = and2(a, b, aInverts, bInverts, inverts, 16)
-        if (WIDE) {
+        if (isWide<W>()) {
+          new1 = and2(a, b, aInverts, bInverts, inverts, 16)
           new2 = and2(a, b, aInverts, bInverts, inverts, 32)
           new3 = and2(a, b, aInverts, bInverts, inverts, 48)
         }
       } else {
         new0 = xor2(a, b, inverts, 0)
-        new1 = xor2(a, b, inverts, 16)
-        if (WIDE) {
+        if (isWide<W>()) {
+          new1 = xor2(a, b, inverts, 16)
           new2 = xor2(a, b, inverts, 32)
           new3 = xor2(a, b, inverts, 48)
         }
@@ -136,15 +159,15 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
       const end = input + (<usize>load<u32>(record, 8) << 2)
       if (kind == AND_N) {
         new0 = andN(input, end, inverts, 0)
-        new1 = andN(input, end, inverts, 16)
-        if (WIDE) {
+        if (isWide<W>()) {
+          new1 = andN(input, end, inverts, 16)
           new2 = andN(input, end, inverts, 32)
           new3 = andN(input, end, inverts, 48)
         }
       } else {
         new0 = xorN(input, end, inverts, 0)
-        new1 = xorN(input, end, inverts, 16)
-        if (WIDE) {
+        if (isWide<W>()) {
+          new1 = xorN(input, end, inverts, 16)
           new2 = xorN(input, end, inverts, 32)
           new3 = xorN(input, end, inverts, 48)
         }
@@ -152,120 +175,70 @@ export function propagateFlip(stem: u32, live: usize, reached: usize, allKnown: 
     }
     const at = base + (<usize>gate << PLANE_SHIFT)
     const good0 = v128.load(at, 0)
-    const good1 = v128.load(at, 16)
-    const good2 = WIDE ? v128.load(at, 32) : none()
-    const good3 = WIDE ? v128.load(at, 48) : none()
-    let diff0 = v128.and(v128.xor(new0, good0), live0)
-    let diff1 = v128.and(v128.xor(new1, good1), live1)
-    let diff2 = WIDE ? v128.and(v128.xor(new2, good2), live2) : none()
-    let diff3 = WIDE ? v128.and(v128.xor(new3, good3), live3) : none()
-    let any = v128.or(diff0, diff1)
-    if (WIDE) any = v128.or(any, v128.or(diff2, diff3))
+    let changed0 = v128.and(v128.xor(new0, good0), v128.load(live, 0))
+    let any = changed0
+    let good1 = none()
+    let good2 = none()
+    let good3 = none()
+    let changed1 = none()
+    let changed2 = none()
+    let changed3 = none()
+    if (isWide<W>()) {
+      good1 = v128.load(at, 16)
+      good2 = v128.load(at, 32)
+      good3 = v128.load(at, 48)
+      changed1 = v128.and(v128.xor(new1, good1), v128.load(live, 16))
+      changed2 = v128.and(v128.xor(new2, good2), v128.load(live, 32))
+      changed3 = v128.and(v128.xor(new3, good3), v128.load(live, 48))
+      any = v128.or(v128.or(changed0, changed1), v128.or(changed2, changed3))
+    }
     if (!v128.any_true(any)) continue
 
     const watch = watchOf(op)
-    if (watch) {
-      let seen0 = diff0, seen1 = diff1, seen2 = diff2, seen3 = diff3
-      if (watch != ALWAYS_WATCHED) {
-        const mask = watchMasks + (<usize>load<u32>(watchSlots + (<usize>gate << 2)) << PLANE_SHIFT)
-        seen0 = v128.and(seen0, v128.load(mask, 0))
-        seen1 = v128.and(seen1, v128.load(mask, 16))
-        if (WIDE) {
-          seen2 = v128.and(seen2, v128.load(mask, 32))
-          seen3 = v128.and(seen3, v128.load(mask, 48))
-        }
+    const alone = pending == 0 && (allKnown || (op & STEM_BIT) != 0)
+    if (watch != 0 || alone) {
+      v128.store(plane, changed0, 0)
+      if (isWide<W>()) {
+        v128.store(plane, changed1, 16)
+        v128.store(plane, changed2, 32)
+        v128.store(plane, changed3, 48)
       }
-      reached0 = v128.or(reached0, seen0)
-      reached1 = v128.or(reached1, seen1)
-      live0 = v128.andnot(live0, seen0)
-      live1 = v128.andnot(live1, seen1)
-      any = v128.or(live0, live1)
-      if (WIDE) {
-        reached2 = v128.or(reached2, seen2)
-        reached3 = v128.or(reached3, seen3)
-        live2 = v128.andnot(live2, seen2)
-        live3 = v128.andnot(live3, seen3)
-        any = v128.or(any, v128.or(live2, live3))
+      if (watch != 0) {
+        seeAt<W>(gate, watch, live, reached)
+        if (isEmpty<W>(live)) break
       }
-      if (!v128.any_true(any)) break
-      if (watch == ALWAYS_WATCHED) continue
-      diff0 = v128.andnot(diff0, seen0)
-      diff1 = v128.andnot(diff1, seen1)
-      any = v128.or(diff0, diff1)
-      if (WIDE) {
-        diff2 = v128.andnot(diff2, seen2)
-        diff3 = v128.andnot(diff3, seen3)
-        any = v128.or(any, v128.or(diff2, diff3))
-      }
-      if (!v128.any_true(any)) continue
-    }
-    if (pending == 0) {
-      const seenAt = observability + (<usize>gate << PLANE_SHIFT)
-      if (allKnown) {
-        reached0 = v128.or(reached0, v128.and(diff0, v128.load(seenAt, 0)))
-        reached1 = v128.or(reached1, v128.and(diff1, v128.load(seenAt, 16)))
-        if (WIDE) {
-          reached2 = v128.or(reached2, v128.and(diff2, v128.load(seenAt, 32)))
-          reached3 = v128.or(reached3, v128.and(diff3, v128.load(seenAt, 48)))
-        }
-        break
-      }
-      if (op & STEM_BIT) {
-        if (load<u32>(knownPass + (<usize>gate << 2)) == pass) {
-          const knownAt = known + (<usize>gate << PLANE_SHIFT)
-          reached0 = v128.or(reached0, v128.and(diff0, v128.load(seenAt, 0)))
-          reached1 = v128.or(reached1, v128.and(diff1, v128.load(seenAt, 16)))
-          diff0 = v128.andnot(diff0, v128.load(knownAt, 0))
-          diff1 = v128.andnot(diff1, v128.load(knownAt, 16))
-          any = v128.or(diff0, diff1)
-          if (WIDE) {
-            reached2 = v128.or(reached2, v128.and(diff2, v128.load(seenAt, 32)))
-            reached3 = v128.or(reached3, v128.and(diff3, v128.load(seenAt, 48)))
-            diff2 = v128.andnot(diff2, v128.load(knownAt, 32))
-            diff3 = v128.andnot(diff3, v128.load(knownAt, 48))
-            any = v128.or(any, v128.or(diff2, diff3))
-          }
-          if (!v128.any_true(any)) break
-        }
-        live0 = diff0
-        live1 = diff1
-        live2 = diff2
-        live3 = diff3
-        noted = note(noted, gate, diff0, diff1, diff2, diff3)
+      if (alone) {
+        lookUp<W>(gate, allKnown, reached)
+        if (isEmpty<W>(plane)) break
+        copy<W>(live, plane)
+        noted = note<W>(noted, gate, plane)
+      } else if (isEmpty<W>(plane)) continue
+      changed0 = v128.load(plane, 0)
+      if (isWide<W>()) {
+        changed1 = v128.load(plane, 16)
+        changed2 = v128.load(plane, 32)
+        changed3 = v128.load(plane, 48)
       }
     }
-    v128.store(at, v128.xor(good0, diff0), 0)
-    v128.store(at, v128.xor(good1, diff1), 16)
+    v128.store(at, v128.xor(good0, changed0), 0)
     v128.store(log, good0, 0)
-    v128.store(log, good1, 16)
-    if (WIDE) {
-      v128.store(at, v128.xor(good2, diff2), 32)
-      v128.store(at, v128.xor(good3, diff3), 48)
+    if (isWide<W>()) {
+      v128.store(at, v128.xor(good1, changed1), 16)
+      v128.store(at, v128.xor(good2, changed2), 32)
+      v128.store(at, v128.xor(good3, changed3), 48)
+      v128.store(log, good1, 16)
       v128.store(log, good2, 32)
       v128.store(log, good3, 48)
     }
     store<u32>(log + PLANE_BYTES, gate)
-    log += UNDO_BYTES
-    pending += pushFanouts(fanouts + (<usize>load<u32>(record, 12) << 2), fanouts + (<usize>load<u32>(record, 28) << 2), bits, words)
+    log += ENTRY_BYTES
+    pending += pushFanouts(record, bits, words)
   }
   if (pending > 0) emptyQueue(gate, pending)
-
   while (log > undo) {
-    log -= UNDO_BYTES
-    const at = base + (<usize>load<u32>(log + PLANE_BYTES) << PLANE_SHIFT)
-    v128.store(at, v128.load(log, 0), 0)
-    v128.store(at, v128.load(log, 16), 16)
-    if (WIDE) {
-      v128.store(at, v128.load(log, 32), 32)
-      v128.store(at, v128.load(log, 48), 48)
-    }
+    log -= ENTRY_BYTES
+    copy<W>(base + (<usize>load<u32>(log + PLANE_BYTES) << PLANE_SHIFT), log)
   }
-  flip(base + (<usize>stem << PLANE_SHIFT), live)
-  v128.store(reached, reached0, 0)
-  v128.store(reached, reached1, 16)
-  if (WIDE) {
-    v128.store(reached, reached2, 32)
-    v128.store(reached, reached3, 48)
-  }  if (!allKnown) keepNotes(noted, reached)
+  if (!allKnown) keepNotes<W>(noted, reached)
   spend(evaluated)
 }
