@@ -17,6 +17,8 @@ export const SignalFlag = {
   Charge: 64,
   /** Declared with a direction or a type already. */
   Typed: 128,
+  /** A statement has used it. */
+  Used: 256,
 } as const
 
 export const PORT_FLAGS: number = SignalFlag.Input | SignalFlag.Output | SignalFlag.Inout
