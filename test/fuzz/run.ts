@@ -24,6 +24,9 @@ const { values } = parseArgs({
   },
 })
 
+/** Problems of one reader that are printed and kept; more are counted. */
+const SHOWN = 5
+
 const folder = resolve(import.meta.dirname, '../../out/fuzz')
 
 type Outcome = { problems: number; hangs: number; slowestMs: number; slowest: number }
@@ -56,8 +59,7 @@ function runBatch(
     }, 50)
     worker.on('message', (message: FuzzMessage) => {
       if (message.kind === 'problem') {
-        outcome.problems++
-        keep(reader, seed, message.number, message.problem)
+        if (++outcome.problems <= SHOWN) keep(reader, seed, message.number, message.problem)
       } else if (message.slowestMs > outcome.slowestMs) {
         outcome.slowestMs = message.slowestMs
         outcome.slowest = message.slowest
@@ -78,7 +80,7 @@ function keep(reader: FuzzedReader, seed: number, number: number, problem: strin
   mkdirSync(folder, { recursive: true })
   const name = `${reader.name.replaceAll(' ', '-')}-${seed}-${number}.txt`
   writeFileSync(resolve(folder, name), caseText(reader, seed, number))
-  console.log(`  ${reader.name}, case ${number}: ${problem}`)
+  console.log(`  ${reader.name}, case ${number}: ${problem.split('\n').slice(0, 4).join('\n  ')}`)
 }
 
 async function fuzz(reader: FuzzedReader, seed: number, first: number, end: number): Promise<Outcome> {

@@ -16,6 +16,7 @@ import {
 import { GrowingPlane, wordInBlock } from './growing-plane.ts'
 import type { PinMap } from './match-netlist.ts'
 import type { PatternRunner } from './run-patterns.ts'
+import type { Place } from './stil-file.ts'
 import { firstCompare, writeLoad, writeUnload, type PassedData, type PatternColumn } from './scan-data.ts'
 
 /** Why a pattern counts for time and not for coverage. */
@@ -37,12 +38,14 @@ export type AssemblyCounts = {
   /** Unloads of flip-flops whose clock did not pulse: they show what was loaded, and are not compared. */
   heldUnloads: number
   /** Loads whose data are shorter or longer than their chain. */
-  wrongLengths: Map<string, { found: number; expected: number }>
+  wrongLengths: Map<string, { found: number; expected: number; place: Place }>
   /** Names of inputs without a value when a pattern captured. */
   inputsWithoutValue: Set<number>
   /** Levels seen, by signal: 1 low, 2 high, 4 unknown; at shifts and when patterns compare or capture. */
   shiftLevels: Uint8Array
   frameLevels: Uint8Array
+  /** 1 where a level at a frame was pattern data, not a value that a procedure sets itself. */
+  frameData: Uint8Array
   pulsedInShift: Uint8Array
   pulsedInCapture: Uint8Array
 }
@@ -85,6 +88,8 @@ export class PatternAssembler {
 
   private scanOpen = false
   private loading = false
+  /** Whether the call that loads has come to its Shift. */
+  private hasShifted = false
   private loadMark = 0
   private boundary = 0
   private sawBoundary = false
@@ -131,6 +136,7 @@ export class PatternAssembler {
       inputsWithoutValue: new Set(),
       shiftLevels: new Uint8Array(nSignals),
       frameLevels: new Uint8Array(nSignals),
+      frameData: new Uint8Array(nSignals),
       pulsedInShift: new Uint8Array(nSignals),
       pulsedInCapture: new Uint8Array(nSignals),
     }
@@ -176,11 +182,13 @@ export class PatternAssembler {
 
   beginLoad(): void {
     this.loading = true
+    this.hasShifted = false
     this.loadMark = this.now()
     this.shiftsBefore = 0
   }
 
   endLoad(): void {
+    this.decodeLoad()
     this.loading = false
   }
 
@@ -195,8 +203,8 @@ export class PatternAssembler {
     const clocked = this.clockEdges(run)
     if (clocked && this.isShiftPulse(run)) {
       if (run.compares > 0 && this.captures === 1 && this.shiftsBefore === 0) this.strobeAfterCapture(run)
-      if (this.loading && !this.loadPending) this.shiftsBefore++
-      else this.shiftsAfter++
+      if (this.hasShifted) this.shiftsAfter++
+      else this.shiftsBefore++
       return
     }
     if (run.compares > 0) this.strobe(run, clocked)
@@ -223,12 +231,13 @@ export class PatternAssembler {
     this.clockedWithoutLoad = false
     this.shiftsBefore = 0
     this.shiftsAfter = 0
+    this.hasShifted = true
     this.loadPending = true
     this.load = this.pins.chains.map(({ name, scanInSignal, length: wanted }) => {
       const isPassed = scanInSignal >= 0 && shifted.includes(scanInSignal)
       const data = isPassed ? run.passed(scanInSignal) : NO_DATA
       if (data.count > 0 && wanted !== null && data.count !== wanted) {
-        this.counts.wrongLengths.set(name, { found: data.count, expected: wanted })
+        this.counts.wrongLengths.set(name, { found: data.count, expected: wanted, place: run.place })
       }
       return { data, table: run.table }
     })
@@ -347,18 +356,20 @@ export class PatternAssembler {
     return this.pulsing.length > 0
   }
 
-  /** Whether a pulse outside of Shift moves the chains on, since the scan enables are as they were in Shift. */
+  /**
+   * Whether a pulse outside of Shift moves the chains on: in a procedure that shifts, before Shift or right after it, with
+   * the scan enables, or, where they are not known, all pins that drive, as they are in Shift.
+   */
   private isShiftPulse(run: PatternRunner): boolean {
-    const { scanEnables, scanInputs } = this.pins
-    if (!this.scanOpen && !this.loading) return false
+    if (!this.loading || (this.hasShifted && !this.loadPending)) return false
+    const { scanEnables, steadyInputs } = this.pins
     if (scanEnables.length > 0) {
       return scanEnables.every(({ signal, capture }) => {
         const level = run.table.flags[run.table.row[signal] * CHARACTERS + run.state[signal]] & DRIVE_MASK
         return level === (capture === 1 ? Drive.Low : Drive.High)
       })
     }
-    if (!this.loadPending || !this.loading) return false
-    return scanInputs.every((signal) => run.state[signal] === this.shiftState[signal])
+    return this.hasShifted && steadyInputs.every((signal) => run.state[signal] === this.shiftState[signal])
   }
 
   private strobe(run: PatternRunner, clocked: boolean): void {
@@ -550,7 +561,7 @@ export class PatternAssembler {
       value[at] = level === Drive.High ? value[at] | bit : value[at] & ~bit
       known[at] = level === Drive.High || level === Drive.Low ? known[at] | bit : known[at] & ~bit
       const signal = this.pins.inputSignal[row]
-      if (level === Drive.None && signal >= 0 && this.pins.isScanPin[signal] === 0) {
+      if (signal >= 0 && run.state[signal] === 0 && this.pins.isScanPin[signal] === 0) {
         this.counts.inputsWithoutValue.add(signal)
       }
     }
@@ -629,7 +640,10 @@ export class PatternAssembler {
   }
 
   private noteFrame(run: PatternRunner): void {
-    if (this.scanOpen) this.noteLevels(run, this.counts.frameLevels)
+    if (!this.scanOpen) return
+    const { frameLevels, frameData } = this.counts
+    this.noteLevels(run, frameLevels)
+    for (let signal = 0; signal < frameData.length; signal++) frameData[signal] |= run.isData[signal]
   }
 
   private noteLevels(run: PatternRunner, seen: Uint8Array): void {

@@ -22,7 +22,7 @@ export type PinMap = {
   /** Scan enables with their level in capture. */
   readonly scanEnables: readonly { readonly signal: number; readonly capture: 0 | 1 }[]
   /** Signals that drive and are neither clocks nor scan-ins. */
-  readonly scanInputs: Int32Array
+  readonly steadyInputs: Int32Array
   /** 1 for clocks, scan enables and scan-ins, whose values in capture need not be given. */
   readonly isScanPin: Uint8Array
 }
@@ -90,7 +90,7 @@ export function matchNetlist(
   signals.scan.forEach((scan, signal) => {
     if (scan === 1) isScanIn[signal] = 1
   })
-  const scanInputs = Int32Array.from(
+  const steadyInputs = Int32Array.from(
     signals.names.flatMap((_, signal) =>
       signals.direction[signal] !== 'Out' && isClock[signal] === 0 && isScanIn[signal] === 0 ? [signal] : [],
     ),
@@ -113,7 +113,7 @@ export function matchNetlist(
     isClock,
     restLevel,
     scanEnables,
-    scanInputs,
+    steadyInputs,
     isScanPin,
   }
 

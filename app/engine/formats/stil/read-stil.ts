@@ -4,13 +4,13 @@ import type { Reading } from '../../source/diagnostic.ts'
 import { quoted } from '../../source/finding-list.ts'
 import type { ReadingProgress } from '../../source/reading-progress.ts'
 import type { Source } from '../../source/source.ts'
-import { PatternAssembler } from './assemble-patterns.ts'
+import { PatternAssembler, type AssemblyCounts } from './assemble-patterns.ts'
 import { matchNetlist, type PinMap } from './match-netlist.ts'
 import { readBlocks, type Include } from './read-blocks.ts'
 import { PatternRunner } from './run-patterns.ts'
 import { SignalNames } from './signal-names.ts'
 import { BrokenStatement, ReadingStopped, StilFindings } from './stil-findings.ts'
-import type { StilFile } from './stil-file.ts'
+import type { Place, StilFile } from './stil-file.ts'
 import { buildStilReport, type StilReport } from './stil-report.ts'
 
 export type StilReading = {
@@ -119,6 +119,7 @@ function runStil(
     }
     const { counts } = runner
     const { counts: assembly } = assembler
+    if (!findings.hasErrors) warnOfLosses(assembly, file, pins, netlist, start, findings)
     return {
       findings,
       assembler,
@@ -130,6 +131,42 @@ function runStil(
     if (!(reason instanceof ReadingStopped) && !(reason instanceof BrokenStatement)) throw reason
     return { findings, assembler, complete: false, report: null }
   }
+}
+
+/** Warnings of what makes coverage lower than the patterns might give, each once for the file. */
+function warnOfLosses(
+  assembly: AssemblyCounts,
+  file: StilFile,
+  pins: PinMap,
+  netlist: Netlist | null,
+  { source, span }: Place,
+  findings: StilFindings,
+): void {
+  for (const [chain, { found, expected, place }] of assembly.wrongLengths) {
+    const message = `chain ${quoted(chain)} has ${expected} cells and is loaded with ${found} characters; cells without one are X`
+    findings.caution('width-mismatch', place.source, place.span, `load ${chain}`, message)
+  }
+  if (netlist === null) return
+  for (const [reason, { count, first }] of assembly.timeOnly) {
+    const message = `${plural(count)} for time alone, not for coverage: ${reason}; the first is pattern ${first + 1}`
+    findings.caution('ignored', source, span, reason, message)
+  }
+  if (assembly.stateNotLoaded > 0 && pins.nFlipFlops > 0) {
+    const message = `no load in ${assembly.stateNotLoaded} patterns: the ${pins.nFlipFlops} flip-flops are taken as X there, so that coverage can only come out too low`
+    findings.caution('not-scanned', source, span, 'state', message)
+  }
+  if (assembly.inputsWithoutValue.size > 0) {
+    const message = `no value for ${assembly.inputsWithoutValue.size} inputs when patterns capture: ${list(Array.from(assembly.inputsWithoutValue, (signal) => file.signals.names[signal] ?? ''))}; they are taken as X`
+    findings.caution('missing-signal', source, span, 'values', message)
+  }
+}
+
+function plural(count: number): string {
+  return count === 1 ? '1 pattern counts' : `${count} patterns count`
+}
+
+function list(names: readonly string[]): string {
+  return names.slice(0, 5).map(quoted).join(', ') + (names.length > 5 ? ` and ${names.length - 5} more` : '')
 }
 
 /** Groups that are declared ScanIn or ScanOut mark their signals. */
@@ -168,8 +205,6 @@ function checkSignals(
     )
     return false
   }
-  const list = (names: readonly string[]): string =>
-    names.slice(0, 5).map(quoted).join(', ') + (names.length > 5 ? ` and ${names.length - 5} more` : '')
   if (inputs.length > 0) {
     const message = `no signal here for ${inputs.length} inputs of the netlist: ${list(inputs)}; they are taken as X`
     findings.caution('missing-signal', source, start, 'inputs', message)

@@ -54,6 +54,8 @@ export class PatternRunner {
   readonly findings: StilFindings
   /** The waveform character of each signal; 0 where none was given. */
   readonly state: Uint8Array
+  /** 1 where that character is pattern data: passed by a call, or given by a vector of the pattern itself. */
+  readonly isData: Uint8Array
   table: CompiledTable
   /** How many signals compare, and how many pulse, in the present state. */
   compares = 0
@@ -107,6 +109,7 @@ export class PatternRunner {
     this.place = place
     this.onProgress = onProgress
     this.state = new Uint8Array(nSignals)
+    this.isData = new Uint8Array(nSignals)
     this.fixed = new Uint8Array(nSignals)
     this.argumentText = new Array<string>(nSignals).fill('')
     this.argumentFrom = new Int32Array(nSignals)
@@ -285,14 +288,14 @@ export class PatternRunner {
   private execute(statement: Statement, depth: number): boolean {
     switch (statement.kind) {
       case 'vector':
-        for (const assignment of statement.assignments) this.assign(assignment, false)
+        for (const assignment of statement.assignments) this.assign(assignment, false, depth === 0)
         this.vector()
         return true
       case 'condition':
-        for (const assignment of statement.assignments) this.assign(assignment, false)
+        for (const assignment of statement.assignments) this.assign(assignment, false, false)
         return true
       case 'fixed':
-        for (const assignment of statement.assignments) this.assign(assignment, true)
+        for (const assignment of statement.assignments) this.assign(assignment, true, false)
         return true
       case 'table':
         this.useTable(this.tableNamed(statement.name))
@@ -568,14 +571,16 @@ export class PatternRunner {
     return members
   }
 
-  private assign(assignment: Assignment, fix: boolean): void {
+  private assign(assignment: Assignment, fix: boolean, isData: boolean): void {
     const { text, start, end } = assignment
     const members = this.members(assignment)
     const step = end - start === 1 ? 0 : 1
     for (let at = 0; at < members.length; at++) {
       const signal = members[at]
       let code = text.charCodeAt(start + at * step)
-      if (code === HASH || code === PERCENT) code = this.argument(signal, code === HASH)
+      const isParameter = code === HASH || code === PERCENT
+      if (isParameter) code = this.argument(signal, code === HASH)
+      this.isData[signal] = isData || isParameter ? 1 : 0
       this.give(signal, code)
       if (fix) this.fixed[signal] = 1
     }

@@ -136,7 +136,11 @@ export function buildStilReport(parts: {
       unusedOtherInputs: assembly.unusedExpects.otherInputs,
       unusedThreeState: assembly.unusedExpects.threeState,
     },
-    wrongLengths: Array.from(assembly.wrongLengths, ([chain, lengths]) => ({ chain, ...lengths })),
+    wrongLengths: Array.from(assembly.wrongLengths, ([chain, { found, expected }]) => ({
+      chain,
+      found,
+      expected,
+    })),
     inputsWithoutValue: Array.from(assembly.inputsWithoutValue, (signal) => names[signal] ?? ''),
     warnings: findings.warnings,
   }
@@ -155,26 +159,32 @@ function countRows(plane: BitPlane, wanted: (row: number) => boolean): number {
 const LOW = 1
 const HIGH = 2
 
+/** From so many patterns on, data that never change are taken for a pin that holds still. */
+const PATTERNS_THAT_TELL = 20
+
 function findTestPins({
   file,
   names,
   pins,
+  patterns,
   assembly,
 }: {
   file: StilFile
   names: SignalNames
   pins: PinMap
+  patterns: PatternSet
   assembly: AssemblyCounts
 }): TestPin[] {
   const { signals } = file
-  const { shiftLevels, frameLevels, pulsedInShift, pulsedInCapture } = assembly
+  const { shiftLevels, frameLevels, frameData, pulsedInShift, pulsedInCapture } = assembly
   const resting = pulsingSignals(file, names)
   const scanIns = new Set(pins.chains.map(({ scanInSignal }) => scanInSignal))
   const found: TestPin[] = []
   const hasScan = shiftLevels.some((level) => level !== 0)
   signals.names.forEach((name, signal) => {
     if (signals.direction[signal] === 'Out') return
-    const frame = frameLevels[signal]
+    const tells = frameData[signal] === 0 || patterns.nPatterns >= PATTERNS_THAT_TELL
+    const frame = tells ? frameLevels[signal] : 0
     const value = frame === LOW ? 0 : frame === HIGH ? 1 : 'X'
     const add = (role: TestPin['role'], pinValue: TestPin['value']): void => {
       found.push({ name, role, value: pinValue, from: 'patterns' })

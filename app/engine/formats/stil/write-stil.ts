@@ -66,8 +66,10 @@ class StilWriter {
   private readonly chains: readonly ExportChain[]
   private readonly clocks: readonly { readonly name: string; readonly rest: 0 | 1 }[]
   private readonly scanEnables: readonly { readonly name: string; readonly shift: 0 | 1 }[]
-  /** Rows of the inputs that patterns drive, clocks not among them; rows of outputs that are no inputs. */
+  /** Rows of the inputs that are driven, clocks not among them; rows of outputs that are no inputs. */
   private readonly drivenRows: readonly number[]
+  /** Rows of the inputs whose values stand with each pattern: scan enables are set by the procedures where they can be. */
+  private readonly dataRows: readonly number[]
   private readonly comparedRows: readonly number[]
   private readonly outputRowOf: ReadonlyMap<string, number>
   private readonly groupNames = new Map<string, string>()
@@ -99,6 +101,11 @@ class StilWriter {
         : scanEnables
     const isClock = new Set(this.clocks.map(({ name }) => name))
     this.drivenRows = this.inputs.flatMap((name, row) => (isClock.has(name) ? [] : [row]))
+    const captureValue = new Map(this.scanEnables.map(({ name, shift }) => [name, shift === 1 ? '0' : '1']))
+    this.dataRows = this.drivenRows.filter((row) => {
+      const constant = hasScan ? captureValue.get(this.inputs[row]) : undefined
+      return chosen.some((pattern) => inputSign(selection.patterns, row, pattern, 'N') !== constant)
+    })
     this.comparedRows = this.outputs.flatMap((name, row) => (isInput.has(name) ? [] : [row]))
   }
 
@@ -121,7 +128,7 @@ class StilWriter {
       ),
     ]
     const groups = [
-      ['inputs', inputs],
+      ['inputs', this.dataRows.map((row) => this.inputs[row])],
       ['outputs', outputs],
       ['scan_in', chains.map(({ scanIn }) => scanIn)],
       ['scan_out', chains.map(({ scanOut }) => scanOut)],
@@ -156,7 +163,7 @@ class StilWriter {
   pattern(at: number): string {
     const pattern = this.chosen[at]
     const { patterns } = this.selection
-    const drive = this.drivenRows.map((row) => this.pinSign(row, pattern)).join('')
+    const drive = this.dataRows.map((row) => this.pinSign(row, pattern)).join('')
     const compare = this.comparedRows.map((row) => expectedSign(this.selection, row, pattern)).join('')
     const data = [
       ...(drive === '' ? [] : [`${this.groupName('inputs')}=${drive};`]),
@@ -321,7 +328,7 @@ class StilWriter {
     const pulses = this.clocks.map(({ name }) => ` ${quote(name)}=P;`).join('')
     const rest = this.clocks.map(({ name, rest }) => ` ${quote(name)}=${rest};`).join('')
     const count = this.chains.length
-    const pins = `${this.parameters('inputs', this.drivenRows.length)}${this.parameters('outputs', this.comparedRows.length)}`
+    const pins = `${this.parameters('inputs', this.dataRows.length)}${this.parameters('outputs', this.comparedRows.length)}`
     const frame = `${this.restState(true)} }`
     return [
       'Procedures {',

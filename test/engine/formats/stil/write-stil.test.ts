@@ -181,6 +181,7 @@ function testBench(stil: string, top: string): string {
   }
   const pulse = '#1 CK = 1; #1 CK = 0; #1;'
   const [, shiftState] = /"load_unload" \{\s+W "main";\s+C \{ "CK"=0; "driven"=(\d+);/.exec(stil) ?? []
+  const [, captureState] = /"capture" \{ W "main"; C \{ "CK"=0; "driven"=(\d+);/.exec(stil) ?? []
   for (const [, procedure, body] of stil.matchAll(/Call "(\w+)" \{([^}]*)\}/g)) {
     const data = new Map([...body.matchAll(/"(\w+)"=(\w+);/g)].map(([, name, text]) => [name, text]))
     if (procedure === 'load_unload') {
@@ -198,6 +199,7 @@ function testBench(stil: string, top: string): string {
         steps.push(pulse)
       }
     } else {
+      drive(inputs, captureState)
       drive(groups.get('inputs') ?? [], data.get('inputs') ?? '')
       steps.push('#1;')
       check(groups.get('outputs') ?? [], data.get('outputs') ?? '')
@@ -224,34 +226,38 @@ describe.skipIf(!hasData)('an exported STIL file', () => {
     ['s27_scan', 's27_scan', 's27_scan', 12],
     ['s15850_scan1', 's15850_scan1_171', 'CUT', 3],
     ['s13207_scan10', 's13207_scan10', 's13207', 12],
-  ])('of %s plays in Icarus Verilog without a mismatch, backwards', (name, patternFile, top, count) => {
-    const source = readData(`stil/${patternFile}.stil`)
-    const netlist = readScanNetlist(name, source)
-    const { patterns } = readStil(source, netlist).value!
-    const sequence = inOrder(count).reverse()
-    const stil = writeStil(patterns, netlist, sequence)
-    const back = readStil({ name: 'export', text: stil }, netlist).value!
-    expect(contents(back.patterns, inOrder(count))).toEqual(contents(patterns, sequence))
-    const { total } = compareResponse(netlist, back.patterns)
+  ])(
+    'of %s plays in Icarus Verilog without a mismatch, backwards',
+    { timeout: 120_000 },
+    (name, patternFile, top, count) => {
+      const source = readData(`stil/${patternFile}.stil`)
+      const netlist = readScanNetlist(name, source)
+      const { patterns } = readStil(source, netlist).value!
+      const sequence = inOrder(count).reverse()
+      const stil = writeStil(patterns, netlist, sequence)
+      const back = readStil({ name: 'export', text: stil }, netlist).value!
+      expect(contents(back.patterns, inOrder(count))).toEqual(contents(patterns, sequence))
+      const { total } = compareResponse(netlist, back.patterns)
 
-    const folder = mkdtempSync(join(tmpdir(), 'tallycut-'))
-    try {
-      writeFileSync(
-        join(folder, 'bench.v'),
-        CELL_MODELS + readData(`mapped/${name}.v`).text + testBench(stil, top),
-      )
-      execFileSync('iverilog', [
-        '-g2005',
-        '-s',
-        'bench',
-        '-o',
-        join(folder, 'bench'),
-        join(folder, 'bench.v'),
-      ])
-      const printed = execFileSync('vvp', ['-n', join(folder, 'bench')], { encoding: 'utf8' })
-      expect(printed.trim()).toBe(`${total.compared} 0`)
-    } finally {
-      rmSync(folder, { recursive: true })
-    }
-  })
+      const folder = mkdtempSync(join(tmpdir(), 'tallycut-'))
+      try {
+        writeFileSync(
+          join(folder, 'bench.v'),
+          CELL_MODELS + readData(`mapped/${name}.v`).text + testBench(stil, top),
+        )
+        execFileSync('iverilog', [
+          '-g2005',
+          '-s',
+          'bench',
+          '-o',
+          join(folder, 'bench'),
+          join(folder, 'bench.v'),
+        ])
+        const printed = execFileSync('vvp', ['-n', join(folder, 'bench')], { encoding: 'utf8' })
+        expect(printed.trim()).toBe(`${total.compared} 0`)
+      } finally {
+        rmSync(folder, { recursive: true })
+      }
+    },
+  )
 })
