@@ -82,9 +82,10 @@ class LibertyParser {
 
   parse(): readonly LibertyGroup[] | null {
     const file: OpenGroup = { attributes: [], groups: [] }
-    while (!this.findings.isFull && !this.isCancelled && this.skipToLibrary()) {
+    while (!this.findings.isFull && !this.isCancelled) {
       const start = this.at
       try {
+        if (!this.skipToLibrary()) break
         this.parseStatement(file, 0, true)
       } catch (error) {
         if (!(error instanceof StatementError)) throw error

@@ -533,7 +533,10 @@ export class ExpressionReader extends TokenReader {
     const { start } = this.lexer
     const value = this.parseSum()
     if (!Number.isSafeInteger(value) || Math.abs(value) > 2 ** 31 - 1) {
-      this.fail('out-of-range', start, this.lexer.start, `the constant ${value} is out of range`)
+      const what = Number.isFinite(value)
+        ? `the constant ${value} is out of range`
+        : 'the constant divides by 0'
+      this.fail('out-of-range', start, this.lexer.start, what)
     }
     return value
   }
