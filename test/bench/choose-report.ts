@@ -10,7 +10,7 @@ import { curveOf } from '../../app/engine/choose/coverage-curve.ts'
 import { deliveredOrder } from '../../app/engine/choose/delivered-order.ts'
 import { smallestCompleteSet } from '../../app/engine/choose/smallest-complete-set.ts'
 import { steepestFirst, steepestWithin } from '../../app/engine/choose/steepest-first.ts'
-import { loadHighsSolver } from '../../app/workers/highs-solver.ts'
+import { createHighsSolver } from '../../app/workers/highs-solver.ts'
 import { readData } from '../helpers/data.ts'
 import { freeTask } from '../helpers/detection-matrix.ts'
 import { randomRun } from '../helpers/random-run.ts'
@@ -26,7 +26,7 @@ const circuits = readdirSync(folder)
     (file) => file.endsWith('.bench') && (wanted.length === 0 || wanted.includes(file.replace('.bench', ''))),
   )
   .sort((a, b) => Number(/\d+/.exec(a)) - Number(/\d+/.exec(b)))
-const solveMip = await loadHighsSolver()
+const solveMip = createHighsSolver()
 
 console.log(
   `${PATTERNS} random patterns, seed ${SEED}; uncollapsed faults, base: lines. Each entry: patterns needed (faults under the`,

@@ -6,10 +6,10 @@ import { lostFaults } from '../../app/engine/choose/lost-faults.ts'
 import { bestPrefixOrSingle } from '../../app/engine/choose/best-prefix-or-single.ts'
 import { smallestCompleteSet } from '../../app/engine/choose/smallest-complete-set.ts'
 import { steepestFirst, steepestWithin } from '../../app/engine/choose/steepest-first.ts'
-import { loadHighsSolver } from '../../app/workers/highs-solver.ts'
+import { createHighsSolver } from '../../app/workers/highs-solver.ts'
 import { allChoices, smallTask } from '../helpers/small-choices.ts'
 
-const solveMip = await loadHighsSolver()
+const solveMip = createHighsSolver()
 
 describe('on small tasks, against every choice there is', () => {
   test('the smallest complete set is one, its bound holds, and where they meet nothing is cheaper', () => {

@@ -4,12 +4,12 @@ import type { ChoiceTask } from '../../app/engine/choose/choice-task.ts'
 import { MipRows, type MipModel } from '../../app/engine/choose/mip.ts'
 import { smallestCompleteSet } from '../../app/engine/choose/smallest-complete-set.ts'
 import { createRandom } from '../../app/engine/source/random.ts'
-import { loadHighsSolver } from '../../app/workers/highs-solver.ts'
+import { createHighsSolver } from '../../app/workers/highs-solver.ts'
 import { hasData, readData } from '../helpers/data.ts'
 import { freeTask, matrixOf, rowsOf, syntheticMatrix } from '../helpers/detection-matrix.ts'
 import { randomRun } from '../helpers/random-run.ts'
 
-const solve = await loadHighsSolver()
+const solve = createHighsSolver()
 const always = (): boolean => true
 
 /** Maximum coverage within a budget, as a textbook writes it: Nemhauser, Wolsey & Fisher 1978, section 1. */

@@ -1,9 +1,9 @@
 import { describe, expect, test } from 'vitest'
 import { MipRows, type MipModel } from '../../app/engine/choose/mip.ts'
 import { createRandom } from '../../app/engine/source/random.ts'
-import { loadHighsSolver } from '../../app/workers/highs-solver.ts'
+import { createHighsSolver } from '../../app/workers/highs-solver.ts'
 
-const solve = await loadHighsSolver()
+const solve = createHighsSolver()
 const always = (): boolean => true
 
 /** Two products on two machines: 3x + 5y most, with x + 2y ≤ 7 and 3x + y ≤ 9; on paper x = 11/5, y = 12/5, worth 18.6. */

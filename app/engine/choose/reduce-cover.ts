@@ -11,27 +11,27 @@ export type ReducedCover = {
 /**
  * Reduces the problem of covering all rows until nothing more is certain: a row with one column makes it essential, a
  * row whose columns include all of another's is covered with it, and a column whose rows all lie in another that costs
- * no more is never needed. `isUsable` leaves columns out from the start. Null when `goOn` said no.
+ * no more is never needed. Null when `goOn` said no.
  * SOURCE: the classic reductions of set covering, Garfinkel & Nemhauser 1972, chapter 8.
  */
-export function reduceCover(
-  problem: DualProblem,
-  isUsable: (column: number) => boolean,
-  goOn: () => boolean,
-): ReducedCover | null {
+export function reduceCover(problem: DualProblem, goOn: () => boolean): ReducedCover | null {
   const { nRows, nColumns, rowStart, rowItems, columnAt, columnEnd, columnItems, cost } = problem
   const wordsPerRow = Math.ceil(nColumns / 32)
   const bits = new Uint32Array(nRows * wordsPerRow)
-  const rows: number[][] = Array.from({ length: nRows }, (_, row) => {
-    const list = Array.from(rowItems.subarray(rowStart[row], rowStart[row + 1])).filter(isUsable)
+  const rows: number[][] = []
+  const columns: number[][] = []
+  for (let row = 0; row < nRows; row++) {
+    if ((row & 127) === 0 && !goOn()) return null
+    const list = rowItems.slice(rowStart[row], rowStart[row + 1]).sort()
     for (const column of list) bits[row * wordsPerRow + (column >>> 5)] |= 1 << (column & 31)
-    return list.sort((a, b) => a - b)
-  })
-  const columns: number[][] = Array.from({ length: nColumns }, (_, column) =>
-    isUsable(column) ? Array.from(columnItems.subarray(columnAt[column], columnEnd[column])) : [],
-  )
+    rows.push(Array.from(list))
+  }
+  for (let column = 0; column < nColumns; column++) {
+    if ((column & 127) === 0 && !goOn()) return null
+    columns.push(Array.from(columnItems.subarray(columnAt[column], columnEnd[column])))
+  }
   const hasRow = new Uint8Array(nRows).fill(1)
-  const hasColumn = Uint8Array.from({ length: nColumns }, (_, column) => (isUsable(column) ? 1 : 0))
+  const hasColumn = new Uint8Array(nColumns).fill(1)
   const covers = (row: number, column: number): boolean =>
     ((bits[row * wordsPerRow + (column >>> 5)] >>> (column & 31)) & 1) === 1
   const chosen: number[] = []
@@ -39,6 +39,7 @@ export function reduceCover(
   for (let isChanged = true; isChanged;) {
     isChanged = false
     for (let row = 0; row < nRows; row++) {
+      if ((row & 1023) === 0 && !goOn()) return null
       if (hasRow[row] === 0) continue
       rows[row] = rows[row].filter((column) => hasColumn[column] === 1)
       if (rows[row].length > 1) continue

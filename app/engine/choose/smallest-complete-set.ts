@@ -53,7 +53,7 @@ export function smallestCompleteSet(task: ChoiceTask, options: SmallestSetOption
   const unitsOf = (columns: readonly number[]): number[] =>
     columns.map((column) => problem.unitOfColumn[column])
 
-  const core = reduceCover(problem, () => true, goOn)
+  const core = reduceCover(problem, goOn)
   if (core === null) return finish(greedyUnits, 0)
   const chosenCost = core.chosen.reduce((sum, column) => sum + problem.cost[column], 0)
   if (core.rows.length === 0) return finish(unitsOf(core.chosen), chosenCost)
