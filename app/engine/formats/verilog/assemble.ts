@@ -1,15 +1,17 @@
 import type { LibraryCell } from '../../circuit/cell-library.ts'
-import { CircuitBuilder, isGate } from '../../circuit/circuit-builder.ts'
+import { CircuitBuilder, isGate, type CircuitFault } from '../../circuit/circuit-builder.ts'
 import { GateKind, LineKind, type Circuit, type LineTable } from '../../circuit/circuit.ts'
 import { NetGraph } from '../../circuit/net-graph.ts'
 import type { FlipFlopClock, Netlist, TestPin } from '../../circuit/netlist.ts'
-import { spreadConstants, traceBack } from '../../circuit/scan-constants.ts'
 import { listLines } from '../../faults/list-lines.ts'
+import { MAX_DIAGNOSTICS } from '../../source/diagnostic.ts'
 import { quoted, type FindingList } from '../../source/finding-list.ts'
 import { CellAssembler } from './assemble-cells.ts'
 import { FlatNet, type FlatNetlist } from './flat-netlist.ts'
 import { findAliases } from './net-aliases.ts'
+import { observedNets, patternInputs } from './pattern-ports.ts'
 import { UnusableSources } from './unusable-sources.ts'
+import { placeWrittenFlipFlops, writtenClockPins } from './written-flip-flops.ts'
 
 export type AssemblyOptions = {
   readonly top: string
@@ -49,6 +51,8 @@ export class Assembler {
   readonly graph: NetGraph = new NetGraph()
   readonly unusable: UnusableSources = new UnusableSources()
   readonly flipFlops: ScannedFlipFlop[] = []
+  /** True where a library cell is used, so that faults sit on cell pins. */
+  readonly isMapped: boolean
   readonly flat: FlatNetlist
   readonly cells: readonly LibraryCell[]
   readonly options: AssemblyOptions
@@ -61,10 +65,7 @@ export class Assembler {
   private driverPlace = new Int32Array(0)
   private driverScope = new Int32Array(0)
   private readonly threeState = new Map<number, ThreeStateDriver[]>()
-  /** Per net of the graph: its net in the circuit, or −1. */
-  private netOf = new Int32Array(0)
   private readonly innerCount = new Map<number, number>()
-  private isMapped = false
 
   constructor(
     flat: FlatNetlist,
@@ -76,11 +77,11 @@ export class Assembler {
     this.cells = cells
     this.options = options
     this.findings = findings
+    this.isMapped = flat.cell.length > 0
   }
 
   run(): Netlist | null {
     const { flat, graph } = this
-    this.isMapped = flat.cell.length > 0
     for (let net = 0; net < flat.nNets; net++) graph.addNet()
     graph.drive(FlatNet.Zero, GateKind.Const0)
     graph.drive(FlatNet.One, GateKind.Const1)
@@ -96,7 +97,7 @@ export class Assembler {
     this.resolveThreeState()
     if (this.findings.hasErrors) return null
     const inputs = this.listInputs()
-    this.placeFlipFlops(inputs)
+    placeWrittenFlipFlops(this, inputs)
     cellAssembler.placeSequential(inputs)
     cellAssembler.addWrittenGates()
     this.reportUndriven(cellAssembler)
@@ -303,59 +304,6 @@ export class Assembler {
     return loaded
   }
 
-  /**
-   * Flip-flops written as such are all in the full-scan view, as in `.bench` files, if their clock comes straight from an
-   * input; beside library cells they are on no chain, so only where the caller assumes it. One whose clock is made by
-   * logic, or that takes its data at the other edge than most, is a source of X.
-   */
-  private placeFlipFlops(inputs: readonly number[]): void {
-    const { flat, graph, unusable } = this
-    const { data: rows, length } = flat.flipFlops
-    if (length === 0) return
-    const isInput = new Set(inputs)
-    const constants = spreadConstants(graph, new Map())
-    const clocks: { port: number; inverted: boolean }[] = []
-    let falling = 0
-    for (let at = 0; at < length; at += 5) {
-      const origin = traceBack(graph, constants, this.rootOf(rows[at]))
-      const port = isInput.has(origin.net) ? origin.net : -1
-      clocks.push({ port, inverted: origin.inverted })
-      if (port >= 0 && origin.inverted) falling++
-    }
-    const usualInverted = falling * 2 > clocks.length
-    for (let at = 0; at < length; at += 5) {
-      const net = this.rootOf(rows[at + 1])
-      const data = this.rootOf(rows[at + 2])
-      if (!this.claim(net, rows[at + 3], rows[at + 4])) continue
-      const clock = clocks[at / 5]
-      const isScanned = !this.isMapped || this.options.assumeScanned
-      if (isScanned && clock.port >= 0 && clock.inverted === usualInverted) {
-        graph.drive(net, GateKind.FlipFlop, data)
-        const edge = clock.inverted ? 'falling' : 'rising'
-        this.flipFlops.push({ net, clock: { port: this.netName(clock.port), edge } })
-      } else {
-        graph.drive(net, GateKind.Unknown)
-        const row = unusable.add('unscanned flip-flop', this.netName(net))
-        row.sources.push(net)
-        row.unobserved.push(data)
-        if (row.count > 1) continue
-        const source = flat.sourceOf(rows[at + 3])
-        const why = !isScanned
-          ? 'it is on no scan chain'
-          : clock.port < 0
-            ? 'its clock is made by logic'
-            : 'its clock rises where that of most others falls'
-        this.findings.warn(
-          'not-scanned',
-          source,
-          rows[at + 4],
-          this.tokenEnd(source.text, rows[at + 4]),
-          `flip-flop ${quoted(this.netName(net))} is not scanned but a source of X: ${why}`,
-        )
-      }
-    }
-  }
-
   /** Nets that something takes in and nothing drives carry X. */
   private reportUndriven(cellAssembler: CellAssembler): void {
     const { flat, graph, unusable } = this
@@ -393,19 +341,19 @@ export class Assembler {
 
   private finish(inputs: readonly number[], cellAssembler: CellAssembler): Netlist | null {
     const { flat, graph } = this
-    const outputs = this.distinctOutputs()
-    const patternInputs = this.patternInputs(inputs, outputs)
+    const outputs = observedNets(this)
+    const given = patternInputs(this, inputs, outputs)
     const builder = new CircuitBuilder()
-    const netOf = (this.netOf = new Int32Array(graph.nNets).fill(-1))
+    const netOf = new Int32Array(graph.nNets).fill(-1)
     const add = (net: number): void => {
       if (netOf[net] < 0) netOf[net] = builder.addNet(this.netName(net))
     }
     const used = this.usedNets(outputs, cellAssembler)
-    for (const net of patternInputs) add(net)
+    for (const net of given) add(net)
     for (const { net } of this.flipFlops) add(net)
     for (let net = 0; net < graph.nNets; net++) if (used[net] === 1) add(net)
 
-    for (const net of patternInputs) builder.drive(netOf[net], GateKind.Input)
+    for (const net of given) builder.drive(netOf[net], GateKind.Input)
     for (const { net } of this.flipFlops)
       builder.drive(netOf[net], GateKind.FlipFlop, [netOf[graph.input(net, 0)]])
     let gates = 0
@@ -432,7 +380,7 @@ export class Assembler {
       return null
     }
     const pins = this.isMapped ? cellAssembler.pinTable(netOf) : null
-    const circuit = this.finishCircuit(builder, pins)
+    const circuit = this.finishCircuit(builder, netOf, pins)
     return {
       circuit,
       chains: cellAssembler.chains(),
@@ -446,39 +394,49 @@ export class Assembler {
         cellsUsed: cellAssembler.cellsUsed(),
         cellsUnknown: this.cellsUnknown(),
         unusable: this.unusable.finish(netOf),
-        testPins: this.isMapped ? cellAssembler.testPins() : this.clockPins(),
+        testPins: this.isMapped ? cellAssembler.testPins() : writtenClockPins(this),
       },
     }
   }
 
-  /** Builds the circuit, cutting loops with X until none is left. */
-  private finishCircuit(builder: CircuitBuilder, pins: LineTable | null): Circuit {
-    for (;;) {
-      const result = builder.finish(this.options.top, pins)
-      if (!Array.isArray(result)) {
-        const circuit = result as Circuit
+  /** Builds the circuit, cutting loops with X until none is left: of each loop the gate that closes it. */
+  private finishCircuit(builder: CircuitBuilder, netOf: Int32Array, pins: LineTable | null): Circuit {
+    const result = builder.finish(this.options.top, pins)
+    if (!Array.isArray(result)) return result as Circuit
+    const graphNetOf = new Int32Array(builder.nNets)
+    netOf.forEach((net, graphNet) => {
+      if (net >= 0) graphNetOf[net] = graphNet
+    })
+    const cut = new Set<number>()
+    for (let faults = result as readonly CircuitFault[]; ;) {
+      for (const fault of faults) {
+        if (fault.kind !== 'combinational-loop') throw new RangeError('a net without a driver')
+        const [net] = fault.nets
+        if (cut.has(net)) continue
+        cut.add(net)
+        builder.cut(net)
+        if (cut.size <= MAX_DIAGNOSTICS) this.reportLoop(fault.nets.map((each) => graphNetOf[each]))
+        const row = this.unusable.add('cut loop', builder.names[net])
+        row.sources.push(graphNetOf[net])
+        row.unobserved.push(...this.graph.inputs(graphNetOf[net]))
+      }
+      const next = builder.finish(this.options.top, pins)
+      if (!Array.isArray(next)) {
+        const circuit = next as Circuit
         if (pins !== null) leaveOutCutGates(pins, circuit)
         return circuit
       }
-      for (const fault of result) {
-        if (fault.kind !== 'combinational-loop') throw new RangeError('a net without a driver')
-        const net = fault.nets[0] as number
-        this.reportLoop(fault.nets as readonly number[], builder.names)
-        const row = this.unusable.add('cut loop', builder.names[net])
-        row.circuitSources.push(net)
-        row.unobserved.push(...this.graph.inputs(this.netOf.indexOf(net)))
-        builder.cut(net)
-      }
+      faults = next as readonly CircuitFault[]
     }
   }
 
-  private reportLoop(nets: readonly number[], names: readonly string[]): void {
+  private reportLoop(nets: readonly number[]): void {
     const { flat } = this
-    const path = nets.filter((net) => names[net] !== '')
-    const shown = path.slice(0, 16).map((net) => names[net])
-    const written = this.netOf.findIndex((net, at) => at < flat.nNets && path.includes(net))
-    const module = flat.scopeModules[written < 0 ? 0 : flat.netScope.data[written]]
-    const place = written < 0 ? module.place : flat.netPlace.data[written]
+    const path = nets.filter((net) => this.netName(net) !== '')
+    const shown = path.slice(0, 16).map((net) => this.netName(net))
+    const written = path.find((net) => net < flat.nNets)
+    const module = flat.scopeModules[written === undefined ? 0 : flat.netScope.data[written]]
+    const place = written === undefined ? module.place : flat.netPlace.data[written]
     this.findings.warn(
       'combinational-loop',
       module.source,
@@ -487,44 +445,6 @@ export class Assembler {
       `a loop without a flip-flop is cut with X: ${shown.join(' → ')}` +
         `${path.length > 16 ? ` … (${path.length} nets)` : ''} → ${shown[0] ?? ''}`,
     )
-  }
-
-  /** Output nets in the order of the declarations; where two outputs are one net, the later one gets a buffer. */
-  private distinctOutputs(): number[] {
-    const { graph } = this
-    const seen = new Set<number>()
-    const outputs: number[] = []
-    const observe = (port: number): void => {
-      let net = this.rootOf(port)
-      if (seen.has(net) || graph.kind.data[net] === GateKind.Input) {
-        const buffer = graph.gate(GateKind.Buffer, net)
-        this.ownNames.set(buffer, this.flat.netText(port))
-        net = buffer
-      }
-      seen.add(net)
-      outputs.push(net)
-    }
-    for (const port of this.flat.outputs.view()) observe(port)
-    for (const port of this.flat.inouts.view()) {
-      if (this.graph.isDriven(this.rootOf(port)) && graph.kind.data[this.rootOf(port)] !== GateKind.Input)
-        observe(port)
-    }
-    return outputs
-  }
-
-  /**
-   * The inputs that a pattern gives. In a netlist of gates with flip-flops an input that reaches nothing but clock pins is
-   * none of them, as `.bench` files have no clock; that leaves out supply ports too, which reach nothing at all.
-   */
-  private patternInputs(inputs: readonly number[], outputs: readonly number[]): readonly number[] {
-    if (this.isMapped || this.flipFlops.length === 0) return inputs
-    const { graph } = this
-    const reaches = new Uint8Array(graph.nNets)
-    for (let net = 0; net < graph.nNets; net++) {
-      for (let k = graph.count(net) - 1; k >= 0; k--) reaches[graph.input(net, k)] = 1
-    }
-    for (const net of outputs) reaches[net] = 1
-    return inputs.filter((net) => reaches[net] === 1)
   }
 
   /** 1 for each net that belongs in the circuit: written drivers and everything that feeds them. */
@@ -548,19 +468,6 @@ export class Assembler {
 
   private rootOfAny(net: number): number {
     return net < this.root.length ? this.root[net] : net
-  }
-
-  /** The clocks of a netlist of gates, which patterns do not give. */
-  private clockPins(): TestPin[] {
-    const ports = new Map(this.flipFlops.map(({ clock }) => [clock.port, clock.edge]))
-    const clocks = Array.from(ports, ([port, edge]): TestPin => {
-      return { name: port ?? '', role: 'clock', value: edge === 'rising' ? 0 : 1, from: 'library' }
-    })
-    return [...this.options.testPins, ...clocks.filter(({ name }) => !this.isTestPin(name))]
-  }
-
-  private isTestPin(name: string): boolean {
-    return this.options.testPins.some((pin) => pin.name === name)
   }
 
   private cellsUnknown(): { cell: string; count: number }[] {

@@ -87,9 +87,7 @@ export class DeclarationReader extends ExpressionReader {
       const name = this.expectName('the name of a port')
       if (lexer.token === Sign.openBracket)
         this.unsupported(place, lexer.end, 'a port that is a part of a signal')
-      let signal = this.signalNamed(name)
-      if (signal < 0) signal = this.module.addSignal(name, SignalFlag.Implicit, 0, 0, false, place)
-      else {
+      if (this.signalNamed(name) >= 0) {
         this.fail(
           'duplicate-declaration',
           place,
@@ -97,6 +95,7 @@ export class DeclarationReader extends ExpressionReader {
           `port ${this.quotedName(name)} is listed twice`,
         )
       }
+      const signal = this.module.addSignal(name, SignalFlag.Implicit, 0, 0, false, place)
       this.noteSignal(name, signal)
       this.module.ports.push(signal)
     } while (this.accept(Sign.comma))
@@ -221,7 +220,6 @@ export class DeclarationReader extends ExpressionReader {
   protected parsePortDeclaration(): void {
     const flags = this.parseDirection() | SignalFlag.Typed
     const range = this.parseNetType()
-    const { module } = this
     do {
       const place = this.lexer.start
       const name = this.expectName('the name of a port')
@@ -239,7 +237,7 @@ export class DeclarationReader extends ExpressionReader {
       this.declareSignal(name, flags, range, place)
       if (this.lexer.token === Sign.equals) this.unsupported(place, this.lexer.end, 'an initial value')
     } while (this.accept(Sign.comma))
-    this.expect(Sign.semicolon, `";" or "," after ${module.nSignals > 0 ? 'a port' : 'the declaration'}`)
+    this.expect(Sign.semicolon, '";" or "," after the port')
   }
 
   protected parseNetDeclaration(word: Word): void {
@@ -301,16 +299,11 @@ export class DeclarationReader extends ExpressionReader {
     this.parseRange()
     const name = this.expectName('the name of a parameter')
     this.expect(Sign.equals, '"=" after the parameter')
-    if (lexer.token === Token.String) {
+    const isReal =
+      lexer.token === Token.Number && this.source.text.slice(lexer.start, lexer.end).includes('.')
+    if (lexer.token === Token.String || isReal) {
       lexer.next()
       return
-    }
-    if (lexer.token === Token.Number && lexer.end - lexer.start > 0) {
-      const text = this.source.text.slice(lexer.start, lexer.end)
-      if (text.includes('.')) {
-        lexer.next()
-        return
-      }
     }
     this.parameters.set(name, this.parseConstant())
   }

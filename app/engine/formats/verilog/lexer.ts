@@ -195,11 +195,6 @@ export class VerilogLexer {
     return this.token === Token.End ? 'the end of the file' : quoted(this.text.slice(this.start, this.end))
   }
 
-  /** True where the text ended inside an open comment, string, attribute or conditional: the file was cut off. */
-  get position(): number {
-    return this.at
-  }
-
   private accept(token: number, end: number): void {
     this.token = token
     this.end = end

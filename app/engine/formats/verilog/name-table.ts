@@ -13,10 +13,6 @@ export class NameTable {
   /** Open addressing: id and hash of each slot side by side, so that a miss costs one look into memory. */
   private slots = emptySlots(4096)
 
-  get size(): number {
-    return this.count
-  }
-
   /** Makes a text known, so that names can point into it; returns its number for `intern`. */
   addText(text: string): number {
     return this.texts.push(text) - 1

@@ -9,8 +9,6 @@ type Row = {
   examples: string[]
   sources: number[]
   unobserved: number[]
-  /** Sources that are named by their number in the circuit already. */
-  circuitSources: number[]
 }
 
 /** Collects what gives X, by kind. */
@@ -21,7 +19,7 @@ export class UnusableSources {
   add(kind: UnusableKind, name: string): Row {
     let row = this.rows.get(kind)
     if (row === undefined) {
-      row = { kind, count: 0, examples: [], sources: [], unobserved: [], circuitSources: [] }
+      row = { kind, count: 0, examples: [], sources: [], unobserved: [] }
       this.rows.set(kind, row)
     }
     row.count++
@@ -35,8 +33,8 @@ export class UnusableSources {
 
   /** The report's rows; `netOf` maps nets of the graph to the circuit's, −1 where the circuit has none. */
   finish(netOf: Int32Array): UnusableSource[] {
-    const inCircuit = (nets: readonly number[], more: readonly number[] = []): Uint32Array => {
-      const found = new Set<number>(more)
+    const inCircuit = (nets: readonly number[]): Uint32Array => {
+      const found = new Set<number>()
       for (const net of nets) if (netOf[net] >= 0) found.add(netOf[net])
       return Uint32Array.from(found)
     }
@@ -44,7 +42,7 @@ export class UnusableSources {
       kind: row.kind,
       count: row.count,
       examples: row.examples,
-      sources: inCircuit(row.sources, row.circuitSources),
+      sources: inCircuit(row.sources),
       unobserved: inCircuit(row.unobserved),
     }))
   }
