@@ -55,7 +55,8 @@ export function parseJson(source: Source): Reading<JsonNode> {
     message: string,
     hint?: string,
   ): JsonFinding {
-    const diagnostic = { code, severity: 'error', file: source.name, span: { start, end }, message } as const
+    const span = { start, end: Math.min(end, text.length) }
+    const diagnostic = { code, severity: 'error', file: source.name, span, message } as const
     return new JsonFinding(hint === undefined ? diagnostic : { ...diagnostic, hint })
   }
 
