@@ -9,6 +9,7 @@ import {
 } from '../engine/simulate/kernel.ts'
 import { kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simulate/kernel-layout.ts'
 import { instantiateKernel, patternsPerBlockOf, sharedMemory } from './instantiate-kernel.ts'
+import { sendBlockReport, waitForReports } from './send-block-report.ts'
 import { simulateUnits } from './simulate-units.ts'
 import {
   CLOSED,
@@ -66,7 +67,7 @@ function runTask(
   const units = unitsOf(layout, Math.floor((resumeFrom?.patternsDone ?? 0) / layout.blockWidth))
   Atomics.store(control, Control.Units, units.count)
   for (let thread = 1; thread < threads; thread++) {
-    const join: JoinRequest = { memory, layout, units, thread, control: request.control }
+    const join: JoinRequest = { run, memory, layout, units, thread, control: request.control }
     helpers[thread - 1]?.postMessage(join)
   }
   const started = performance.now()
@@ -77,10 +78,13 @@ function runTask(
   })
   let checkpoint = resumeFrom ?? checkpointAt(0)
   let nextCheckpoint = started + CHECKPOINT_MILLISECONDS
-  const isDue = (unit: number): boolean => unit >= units.inFirstBlock && performance.now() >= nextCheckpoint
+  const afterUnit = (unit: number): boolean => {
+    if (layout.easyFrom !== null) sendBlockReport(own, buffer, run, control)
+    return unit < units.inFirstBlock || performance.now() < nextCheckpoint
+  }
 
   for (;;) {
-    const outcome = simulateUnits(own, control, units, isDue)
+    const outcome = simulateUnits(own, control, units, afterUnit)
     if (outcome !== 'due') waitForHelpers(control)
     if (outcome === 'cancelled' || Atomics.load(control, Control.Cancel) !== 0) {
       send({ run, kind: 'cancelled', checkpoint })
@@ -99,6 +103,8 @@ function runTask(
     nextCheckpoint = now + Math.max(CHECKPOINT_MILLISECONDS, (now - pausedAt) / CHECKPOINT_SHARE)
   }
   const kernelSeconds = (performance.now() - started) / 1000
+  // Helpers' reports come by ports of their own: none may come after the end.
+  waitForReports(control, 0)
   const profile = gatherProfile(layout, buffer, threads)
   const matrix = gatherMatrix(layout, profile, buffer)
   send({ run, kind: 'done', profile, matrix, kernelSeconds, memoryBytes })

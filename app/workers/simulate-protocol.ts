@@ -1,4 +1,5 @@
 import type { MessagePort } from 'node:worker_threads'
+import type { BlockReport } from '../engine/simulate/block-report.ts'
 import type { DetectionMatrix, DetectionProfile } from '../engine/simulate/detection-profile.ts'
 import type { Units } from '../engine/simulate/kernel.ts'
 import type { KernelLayout } from '../engine/simulate/kernel-layout.ts'
@@ -25,6 +26,7 @@ export type RunRequest = {
 }
 
 export type JoinRequest = {
+  readonly run: number
   readonly memory: WebAssembly.Memory
   readonly layout: KernelLayout
   readonly units: Units
@@ -33,6 +35,7 @@ export type JoinRequest = {
 }
 
 export type RunReport =
+  | { readonly run: number; readonly kind: 'block'; readonly block: BlockReport }
   | { readonly run: number; readonly kind: 'checkpoint'; readonly checkpoint: SimulationCheckpoint }
   | {
       readonly run: number
@@ -60,6 +63,8 @@ export const Control = {
   UnitsDone: 5,
   /** How many units the run has; 0 until it has been packed. */
   Units: 6,
+  /** Block reports that have been sent and not yet been taken. */
+  Reports: 7,
   /** Length of the block. */
   words: 8,
 } as const

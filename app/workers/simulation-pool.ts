@@ -1,4 +1,5 @@
 import { MessageChannel, Worker, type MessagePort } from 'node:worker_threads'
+import type { BlockReport } from '../engine/simulate/block-report.ts'
 import type { DetectionProfile } from '../engine/simulate/detection-profile.ts'
 import { kernelTaskOf, type KernelTask } from '../engine/simulate/kernel-task.ts'
 import type { BitPlane } from '../engine/simulate/pattern-set.ts'
@@ -29,6 +30,10 @@ export type SimulationOptions = {
   readonly onProgress?: (progress: SimulationProgress) => void
   readonly resumeFrom?: SimulationCheckpoint
   readonly onCheckpoint?: (checkpoint: SimulationCheckpoint) => void
+  /** Takes what each block detects, blocks in any order; needs detectionLimit 0. The threads wait while it is behind. */
+  readonly onBlock?: (block: BlockReport) => void
+  /** Detections in a block at which a class is easy, so that its count alone is reported. */
+  readonly easyFrom?: number
 }
 
 export type SimulationOutcome =
@@ -58,6 +63,8 @@ export type SimulationPoolConfig = {
 }
 
 const PROGRESS_MILLISECONDS = 100
+/** A quarter of a block: up to here a list of patterns would not take much less than their bits. */
+const EASY_FROM = 128
 
 /** Starts the threads at once, so that they are ready when the first task has been read. */
 export function createSimulationPool(config: SimulationPoolConfig): SimulationPool {
@@ -95,6 +102,8 @@ export function createSimulationPool(config: SimulationPoolConfig): SimulationPo
 
 type Crew = {
   readonly coordinator: Worker
+  /** The coordinator and its helpers. */
+  readonly workers: readonly Worker[]
   /** Set where a thread has failed: the error that stopped it. */
   failure: Error | null
   /** Called when a thread fails or all have been stopped. */
@@ -125,12 +134,14 @@ function startCrew(threads: number, { wasmBytes, workerUrl }: SimulationPoolConf
   const helpers = channels.map(({ port2 }) =>
     start({ role: 'helper', wasmBytes, coordinator: port2 }, [port2]),
   )
+  const workers = [coordinator, ...helpers]
   const crew: Crew = {
     coordinator,
+    workers,
     failure: null,
     onFailure: () => undefined,
     async stop() {
-      await Promise.all([coordinator, ...helpers].map((worker) => worker.terminate()))
+      await Promise.all(workers.map((worker) => worker.terminate()))
     },
   }
   return crew
@@ -143,7 +154,8 @@ function runOn(
   options: SimulationOptions & { readonly threads: number },
 ): Promise<SimulationOutcome> {
   const { coordinator } = crew
-  const { signal, onProgress, onCheckpoint } = options
+  const { signal, onProgress, onCheckpoint, onBlock } = options
+  const easyFrom = onBlock === undefined ? null : (options.easyFrom ?? EASY_FROM)
   const control = new SharedArrayBuffer(4 * Control.words)
   const words = new Int32Array(control)
   const started = performance.now()
@@ -162,7 +174,7 @@ function runOn(
     const settle = (end: () => void): void => {
       clearInterval(timer)
       signal?.removeEventListener('abort', cancel)
-      coordinator.off('message', onMessage)
+      for (const worker of crew.workers) worker.off('message', onMessage)
       crew.onFailure = () => undefined
       coordinator.unref()
       end()
@@ -170,6 +182,11 @@ function runOn(
     const onMessage = (message: RunReport): void => {
       if (message.run !== run) return
       switch (message.kind) {
+        case 'block':
+          onBlock?.(message.block)
+          Atomics.sub(words, Control.Reports, 1)
+          Atomics.notify(words, Control.Reports)
+          return
         case 'checkpoint':
           onCheckpoint?.(message.checkpoint)
           return
@@ -189,11 +206,11 @@ function runOn(
     signal?.addEventListener('abort', cancel)
     crew.onFailure = (error) => settle(() => reject(error))
     if (crew.failure !== null) return crew.onFailure(crew.failure)
-    coordinator.on('message', onMessage)
+    for (const worker of crew.workers) worker.on('message', onMessage)
     coordinator.ref()
     coordinator.postMessage({
       run,
-      task: shareable(kernelTaskOf(task)),
+      task: shareable(kernelTaskOf(task, easyFrom)),
       threads: options.threads,
       resumeFrom,
       wantCheckpoints: onCheckpoint !== undefined,

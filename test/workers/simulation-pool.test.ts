@@ -1,6 +1,7 @@
 import { afterAll, beforeAll, describe, expect, test } from 'vitest'
 import { buildFaultList } from '../../app/engine/faults/build-fault-list.ts'
 import { readBench } from '../../app/engine/formats/bench/read-bench.ts'
+import type { BlockReport } from '../../app/engine/simulate/block-report.ts'
 import type { SimulationTask } from '../../app/engine/simulate/simulation.ts'
 import { simulateTwin } from '../../app/engine/simulate/twin.ts'
 import { simulateInProcess } from '../../app/workers/simulate-in-process.ts'
@@ -89,6 +90,34 @@ describe('a simulation pool', () => {
     )
     const rest = await pool.run(task, { resumeFrom: outcome.checkpoint })
     expect(rest.state === 'done' && rest.result.profile).toEqual(simulateInProcess(kernel, task).profile)
+  })
+
+  test('reports what each block detects: bits of hard classes, counts of easy ones', async () => {
+    for (let seed = 3000; seed < 3020; seed++) {
+      const task: SimulationTask = { ...randomTask(seed), detectionLimit: 0, wantMatrix: true }
+      const matrix = simulateTwin(task)?.matrix
+      if (!matrix) throw new Error('the slow simulation kept no matrix')
+      const rowOf = new Map(Array.from(matrix.classOfRow, (group, row) => [group, row]))
+      const words = new Uint32Array(matrix.words.length)
+      const counted = new Map<number, number>()
+      const onBlock = (block: BlockReport): void => {
+        block.hardClasses.forEach((group, at) => {
+          const bits = block.hardWords.subarray(at * block.wordsPerRow, (at + 1) * block.wordsPerRow)
+          words.set(bits, (rowOf.get(group) ?? -1) * matrix.wordsPerRow + block.firstPattern / 32)
+        })
+        block.easyClasses.forEach((group, at) => {
+          counted.set(group, (counted.get(group) ?? 0) + block.easyCounts[at])
+        })
+      }
+      await pool.run(task, { onBlock, easyFrom: 1000 })
+      expect(words, `seed ${seed}`).toEqual(matrix.words)
+      const outcome = await pool.run(task, { onBlock, easyFrom: 0 })
+      if (outcome.state !== 'done') throw new Error('the run was cancelled')
+      const { detections } = outcome.result.profile
+      expect(Array.from(matrix.classOfRow, (group) => counted.get(group))).toEqual(
+        Array.from(matrix.classOfRow, (group) => detections[group]),
+      )
+    }
   })
 
   test('does not begin what was cancelled before', async () => {

@@ -6,7 +6,7 @@ import type { KernelTask } from './kernel-task.ts'
 import { isInternal, orderNets, type NetOrder } from './net-order.ts'
 
 /** The layout that this packer writes; a kernel built for another one is refused. */
-export const LAYOUT_VERSION = 3
+export const LAYOUT_VERSION = 4
 
 const NO_SLOT = 0xffffffff
 const HEADER_WORDS = 32
@@ -28,8 +28,11 @@ export type KernelLayout = {
   readonly nRegions: number
   readonly nClasses: number
   readonly detectionLimit: number
-  /** Words of a row of the detection matrix, where one is asked for. */
+  /** Words of a row of the detection matrix, where one is asked for; one row for each class that is simulated. */
   readonly matrixWords: number
+  readonly matrixClasses: Uint32Array | null
+  /** Detections in a block at which it reports of a class the count alone; null: blocks report nothing. */
+  readonly easyFrom: number | null
   /** Pairs of classes with the same effect at every output: the first gets the second's result. */
   readonly twins: FaultSites['twins']
   readonly shared: Readonly<Record<SharedTable, Extent>>
@@ -60,6 +63,7 @@ const SHARED_TABLES = [
   'patternObserved',
   'counted',
   'matrix',
+  'matrixRows',
 ] as const
 
 /** In the order of the header of a thread's own part. Extents count from the part's start. */
@@ -81,6 +85,10 @@ const OWN_TABLES = [
   'first',
   'detections',
   'possibly',
+  'hardClasses',
+  'hardPlanes',
+  'easyClasses',
+  'easyCounts',
 ] as const
 
 type SharedTable = (typeof SHARED_TABLES)[number] | 'header' | 'first' | 'detections'
@@ -133,6 +141,8 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
   }
   const watchRows = patterns.observed === null ? [] : rowsOfObservedNets(circuit, order)
   const rowBytes = 4 * patterns.value.wordsPerRow
+  const matrixRows = task.classes?.length ?? nClasses
+  const reported = task.easyFrom === null ? 0 : sites.nActive
 
   const shared = layOut(FIRST_ADDRESS, {
     header: 4 * HEADER_WORDS,
@@ -154,7 +164,8 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     patternUnknowns: (patterns.unknown?.rows ?? 0) * rowBytes,
     patternObserved: (patterns.observed?.rows ?? 0) * rowBytes,
     counted: rowBytes,
-    matrix: task.wantMatrix ? nClasses * rowBytes : 0,
+    matrix: task.wantMatrix ? matrixRows * rowBytes : 0,
+    matrixRows: task.wantMatrix ? 4 * nClasses : 0,
     first: 4 * nClasses,
     detections: 4 * nClasses,
   })
@@ -183,6 +194,10 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     first: 4 * ownResults,
     detections: 4 * ownResults,
     possibly: nClasses,
+    hardClasses: 4 * reported,
+    hardPlanes: reported * plane,
+    easyClasses: 4 * reported,
+    easyCounts: 4 * reported,
   })
   const layout = {
     blockWidth,
@@ -192,6 +207,8 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     nClasses,
     detectionLimit,
     matrixWords: task.wantMatrix ? patterns.value.wordsPerRow : 0,
+    matrixClasses: task.classes,
+    easyFrom: task.easyFrom,
     twins: sites.twins,
     shared: shared.extents,
     own: own.extents,
@@ -242,6 +259,9 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
   if (patterns.unknown !== null) words(shared.patternUnknowns).set(patterns.unknown.words)
   if (patterns.observed !== null) words(shared.patternObserved).set(patterns.observed.words)
   writeCounted(patterns, words(shared.counted))
+  const matrixRows = words(shared.matrixRows)
+  if (task.classes === null) matrixRows.forEach((_, group) => (matrixRows[group] = group))
+  else if (task.wantMatrix) task.classes.forEach((group, row) => (matrixRows[group] = row))
   words(shared.first).fill(NO_SLOT)
   words(shared.header).set([
     order.nets.length,
@@ -307,7 +327,7 @@ export function writeOwn(layout: KernelLayout, thread: number, memory: ArrayBuff
   const base = layout.ownStart + thread * layout.ownBytes
   const addressOf = (table: (typeof OWN_TABLES)[number]): number => {
     if ((table === 'first' || table === 'detections') && own[table].bytes === 0) return shared[table].at
-    return base + own[table].at
+    return own[table].bytes === 0 ? 0 : base + own[table].at
   }
   new Uint32Array(memory, base, HEADER_WORDS).set(OWN_TABLES.map(addressOf))
 }

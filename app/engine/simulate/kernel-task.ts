@@ -15,10 +15,12 @@ export type KernelTask = {
   readonly patterns: Pick<PatternSet, 'nPatterns' | 'value' | 'unknown' | 'observed' | 'timeOnly'>
   readonly detectionLimit: number
   readonly wantMatrix: boolean
+  /** Detections in a block at which it reports of a class the count alone; null: blocks report nothing. */
+  readonly easyFrom: number | null
 }
 
 /** Returns the arrays of a task, without names and whatever else the kernel does not read. Nothing is copied. */
-export function kernelTaskOf(task: SimulationTask): KernelTask {
+export function kernelTaskOf(task: SimulationTask, easyFrom: number | null = null): KernelTask {
   const { nNets, kind, faninStart, fanin, inputs, outputs, flipFlops } = task.circuit
   const { lines, nClasses, representative } = task.faults
   const { nPatterns, value, unknown, observed, timeOnly } = task.patterns
@@ -37,5 +39,6 @@ export function kernelTaskOf(task: SimulationTask): KernelTask {
     patterns: { nPatterns, value, unknown, observed, timeOnly },
     detectionLimit: task.detectionLimit,
     wantMatrix: task.wantMatrix,
+    easyFrom,
   }
 }

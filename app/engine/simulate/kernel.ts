@@ -1,4 +1,5 @@
 import type { DetectionMatrix, DetectionProfile } from './detection-profile.ts'
+import { withTwins, type BlockReport } from './block-report.ts'
 import { LAYOUT_VERSION, type KernelLayout } from './kernel-layout.ts'
 
 /** What the compiled kernel exports. Addresses are bytes into the memory that it was given. */
@@ -10,6 +11,9 @@ export type KernelExports = {
   usePatterns(from: number, to: number): void
   simulateRegions(from: number, to: number, budget: number): number
   simulateTaps(): void
+  beginReport(easyFrom: number): void
+  hardReported(): number
+  easyReported(): number
 }
 
 /** Throws where the kernel was built for another layout of memory than this program packs. */
@@ -66,13 +70,15 @@ function rangesOf(layout: KernelLayout): number[] {
 export class KernelThread {
   private readonly kernel: KernelExports
   private readonly layout: KernelLayout
+  private readonly base: number
   private loaded = -1
 
   /** Threads are numbered from 0; the header of each one's own part must have been written. */
   constructor(kernel: KernelExports, layout: KernelLayout, thread: number) {
     this.kernel = kernel
     this.layout = layout
-    kernel.attach(layout.shared.header.at, layout.ownStart + thread * layout.ownBytes)
+    this.base = layout.ownStart + thread * layout.ownBytes
+    kernel.attach(layout.shared.header.at, this.base)
   }
 
   /** Simulates one unit. `goOn` is asked every few milliseconds; false stops at once, and the unit counts as not done. */
@@ -80,6 +86,7 @@ export class KernelThread {
     const { kernel, layout } = this
     if (unit >= units.inFirstBlock) {
       this.load(blocksBefore(units, unit))
+      if (layout.easyFrom !== null) kernel.beginReport(layout.easyFrom)
       kernel.usePatterns(0, layout.blockWidth)
       return this.simulateRegions(layout.nRegions, 0, goOn)
     }
@@ -90,6 +97,26 @@ export class KernelThread {
     this.load(0)
     kernel.usePatterns(range === 0 ? 0 : ranges[range - 1], ranges[range])
     return this.simulateRegions(edge(part + 1), edge(part), goOn)
+  }
+
+  /** What the last block detected, copied out of the kernel's memory. The layout must have been planned for reports. */
+  report(memory: ArrayBufferLike): BlockReport {
+    const { kernel, layout, base } = this
+    const hard = kernel.hardReported()
+    const easy = kernel.easyReported()
+    const words = (
+      table: 'hardClasses' | 'hardPlanes' | 'easyClasses' | 'easyCounts',
+      count: number,
+    ): Uint32Array => new Uint32Array(memory, base + layout.own[table].at, count).slice()
+    const report = {
+      firstPattern: this.loaded * layout.blockWidth,
+      wordsPerRow: layout.blockWidth / 32,
+      hardClasses: words('hardClasses', hard),
+      hardWords: words('hardPlanes', hard * (layout.blockWidth / 32)),
+      easyClasses: words('easyClasses', easy),
+      easyCounts: words('easyCounts', easy),
+    }
+    return layout.twins.length === 0 ? report : withTwins(report, layout.twins)
   }
 
   private load(block: number): void {
@@ -175,22 +202,21 @@ export function gatherMatrix(
 ): DetectionMatrix | null {
   const wordsPerRow = layout.matrixWords
   if (wordsPerRow === 0) return null
-  const { at, bytes } = layout.shared.matrix
-  const words = new Uint32Array(memory, at, bytes >> 2)
-  for (const [group, same] of layout.twins) {
-    words.copyWithin(group * wordsPerRow, same * wordsPerRow, (same + 1) * wordsPerRow)
+  const { shared, matrixClasses, nClasses, nPatterns } = layout
+  const words = new Uint32Array(memory, shared.matrix.at, shared.matrix.bytes >> 2)
+  const rowOf = new Uint32Array(memory, shared.matrixRows.at, nClasses)
+  const moveRow = (to: number, from: number): void => {
+    words.copyWithin(to * wordsPerRow, from * wordsPerRow, (from + 1) * wordsPerRow)
   }
+  for (const [group, same] of layout.twins) moveRow(rowOf[group], rowOf[same])
   const detected: number[] = []
-  for (let group = 0; group < layout.nClasses; group++) {
+  for (let row = 0; row < (matrixClasses?.length ?? nClasses); row++) {
+    const group = matrixClasses?.[row] ?? row
     if (profile.detections[group] === 0) continue
-    words.copyWithin(detected.length * wordsPerRow, group * wordsPerRow, (group + 1) * wordsPerRow)
+    moveRow(detected.length, row)
     detected.push(group)
   }
-  return {
-    nPatterns: layout.nPatterns,
-    nRows: detected.length,
-    wordsPerRow,
-    classOfRow: Uint32Array.from(detected),
-    words: words.subarray(0, detected.length * wordsPerRow),
-  }
+  const classOfRow = Uint32Array.from(detected)
+  const kept = words.subarray(0, detected.length * wordsPerRow)
+  return { nPatterns, nRows: detected.length, wordsPerRow, classOfRow, words: kept }
 }

@@ -1,6 +1,16 @@
-import { detections, first, matrix, rowBytes } from './memory'
+import {
+  detections,
+  easyClasses,
+  easyCounts,
+  first,
+  hardClasses,
+  hardPlanes,
+  matrix,
+  matrixRows,
+  rowBytes,
+} from './memory'
 import { blockStart, limit, rangeStart } from './block'
-import { copy, count, firstOf, Wide } from './plane'
+import { PLANE_SHIFT, copy, count, firstOf, Wide } from './plane'
 
 export const NO_CLASS: u32 = 0xffffffff
 
@@ -12,7 +22,43 @@ export function countAll(group: u32, plane: usize): void {
   const before = load<u32>(at)
   if (before == 0) store<u32>(first + (<usize>group << 2), blockStart + firstOf(plane))
   store<u32>(at, before + found)
-  if (matrix != 0) copy<Wide>(matrix + <usize>group * rowBytes + (blockStart >> 3), plane)
+  if (matrix != 0) {
+    const row = load<u32>(matrixRows + (<usize>group << 2))
+    copy<Wide>(matrix + <usize>row * rowBytes + (blockStart >> 3), plane)
+  }
+  if (hardClasses != 0) report(group, found, plane)
+}
+
+/** Detections in one block at which a class is easy: of easy classes the count alone is reported. */
+let easyFrom: u32 = 0
+let hardCount: u32 = 0
+let easyCount: u32 = 0
+
+/** Forgets what was reported of the block before. */
+export function beginReport(from: u32): void {
+  easyFrom = from
+  hardCount = 0
+  easyCount = 0
+}
+
+export function hardReported(): u32 {
+  return hardCount
+}
+
+export function easyReported(): u32 {
+  return easyCount
+}
+
+function report(group: u32, found: u32, plane: usize): void {
+  if (found >= easyFrom) {
+    store<u32>(easyClasses + (<usize>easyCount << 2), group)
+    store<u32>(easyCounts + (<usize>easyCount << 2), found)
+    easyCount++
+  } else {
+    store<u32>(hardClasses + (<usize>hardCount << 2), group)
+    copy<Wide>(hardPlanes + (<usize>hardCount << PLANE_SHIFT), plane)
+    hardCount++
+  }
 }
 
 /** Counts the patterns of the plane, of which there must be some, in results that all threads share. */

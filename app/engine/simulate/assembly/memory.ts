@@ -1,7 +1,7 @@
 /** Where the tables lie: byte addresses, read once from the headers that the packer writes. */
 
 /** Grows with every change of tables or headers, so that a driver refuses a kernel of another build. */
-const LAYOUT_VERSION: u32 = 3
+const LAYOUT_VERSION: u32 = 4
 
 export function layoutVersion(): u32 {
   return LAYOUT_VERSION
@@ -39,8 +39,10 @@ export let patternUnknowns: usize = 0
 export let patternObserved: usize = 0
 /** One row: the patterns that count for coverage. */
 export let counted: usize = 0
-/** Which pattern detects which class, a row of patterns a class; 0 where not asked for. */
+/** Which pattern detects which class, a row of patterns a row of the matrix; 0 where not asked for. */
 export let matrix: usize = 0
+/** The matrix row of each class. */
+export let matrixRows: usize = 0
 
 export let values: usize = 0
 export let observability: usize = 0
@@ -59,6 +61,11 @@ export let scratch: usize = 0
 export let first: usize = 0
 export let detections: usize = 0
 export let possibly: usize = 0
+/** What one block detects, in the order in which it is found; 0 where not asked for. */
+export let hardClasses: usize = 0
+export let hardPlanes: usize = 0
+export let easyClasses: usize = 0
+export let easyCounts: usize = 0
 
 /** Points the tables at one circuit's memory and at one thread's own part of it. */
 export function attach(shared: usize, own: usize): void {
@@ -90,6 +97,7 @@ export function attach(shared: usize, own: usize): void {
   patternObserved = load<u32>(shared, 100)
   counted = load<u32>(shared, 104)
   matrix = load<u32>(shared, 108)
+  matrixRows = load<u32>(shared, 112)
 
   values = load<u32>(own, 0)
   observability = load<u32>(own, 4)
@@ -108,4 +116,8 @@ export function attach(shared: usize, own: usize): void {
   first = load<u32>(own, 56)
   detections = load<u32>(own, 60)
   possibly = load<u32>(own, 64)
+  hardClasses = load<u32>(own, 68)
+  hardPlanes = load<u32>(own, 72)
+  easyClasses = load<u32>(own, 76)
+  easyCounts = load<u32>(own, 80)
 }
