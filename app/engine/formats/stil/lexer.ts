@@ -13,7 +13,7 @@ const BACKSLASH = 92
 const OPEN = 123
 const CLOSE = 125
 
-/** The longest name that IEEE 1450-1999 allows (clause 6.8). */
+/** The longest name that IEEE 1450-1999 allows (clause 6.6). */
 const MAX_NAME = 1024
 
 const IS_WORD = new Uint8Array(128)

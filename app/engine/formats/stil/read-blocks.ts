@@ -41,7 +41,7 @@ const DIRECTIONS: ReadonlySet<string> = new Set<Direction>(['In', 'Out', 'InOut'
 export type Include = (name: string) => Source | null
 
 /**
- * Reads all blocks of a STIL file but the patterns' statements (IEEE 1450-1999, clauses 8 to 21), going on after an error
+ * Reads all blocks of a STIL file but the patterns' statements (IEEE 1450-1999, clauses 8 to 20 and 24), going on after an error
  * at the next statement. Patterns are only found: `patterns` holds where their statements stand.
  */
 export function readBlocks(source: Source, include: Include, findings: StilFindings): StilFile {

@@ -32,7 +32,8 @@ export type StilOptions = {
 }
 
 /**
- * Reads a STIL file (IEEE 1450-1999) as a pattern set of that netlist. Loads become the values of the flip-flops, each
+ * Reads a STIL file (IEEE 1450-1999; clause numbers here and in the files beside it are from memory) as a pattern set of
+ * that netlist. Loads become the values of the flip-flops, each
  * unload the expected values of the pattern before it, masks take away what is observed, and cycles are counted as the
  * tester runs them. Patterns that one time frame can't show right count for time alone, and the report says why.
  * No value where the file has errors, names no signal of the netlist, or was cancelled.

@@ -384,7 +384,7 @@ export class PatternRunner {
 
   /**
    * One shift for each character of the longest data that its "#" stand for. Shorter scan-in data are padded in front and
-   * shorter scan-out data behind, so that both line up with the cells (clause 23.1).
+   * shorter scan-out data behind, so that both line up with the cells (clause 24).
    */
   private shift(body: readonly Statement[]): void {
     const { argumentLeft, findings, place, counts } = this

@@ -16,7 +16,7 @@ const MAX_WIDTH = 1 << 20
 const MAX_DEPTH = 64
 
 /**
- * Finds the signals that a name or an expression stands for (IEEE 1450-1999, clauses 6.12 and 15), each once worked out:
+ * Finds the signals that a name or an expression stands for (IEEE 1450-1999, clauses 6.14 and 15), each once worked out:
  *
  *     expression = term { ("+" | "-") term }
  *     term       = name | "(" expression ")"

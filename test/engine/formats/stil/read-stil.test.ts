@@ -5,7 +5,8 @@ import { compareResponse } from '../../../../app/engine/simulate/compare-respons
 import { bitAt, type BitPlane, type PatternSet } from '../../../../app/engine/simulate/pattern-set.ts'
 import { smallScanDesign, smallStil } from './small-scan-design.ts'
 
-// Each expectation here is worked by hand from IEEE 1450-1999: which clause is named where it is not plain scan practice.
+// Each expectation here is worked by hand from IEEE 1450-1999: the clause, from memory, stands where it is not
+// plain scan practice.
 
 const design = smallScanDesign()
 
@@ -95,7 +96,7 @@ describe('scan loads and unloads', () => {
     expect({ inputs: inputsOf(declared), expects: expectsOf(declared) }).toEqual(expected)
   })
 
-  it('pads short scan-in data in front and short scan-out data behind (clause 23.1)', () => {
+  it('pads short scan-in data in front and short scan-out data behind (clause 24)', () => {
     const signals = 'CK In; SE In; SI In; SJ In; A In; B In; Y Out; Z Out; SO Out; SP Out;'
     const waveforms = `CK { 01P { '0ns' D/U/D; '50ns' D/U/U; '80ns' D/U/D; } }
       'SE + SI + SJ + A + B' { 01 { '0ns' D/U; } } 'outs + SP' { LHX { '40ns' L/H/X; } }`
