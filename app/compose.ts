@@ -1,19 +1,28 @@
 import { readFileSync } from 'node:fs'
+import { availableParallelism } from 'node:os'
 import { join } from 'node:path'
+import { fileURLToPath } from 'node:url'
 import { userFile } from '../db/user-file.ts'
 import type { Handlers } from './contract/handlers.ts'
 import type { Installation } from './installation.ts'
+import { createBudgets } from './services/budgets.ts'
+import { createDemo } from './services/demo.ts'
 import { createDispatch, type Dispatch } from './services/dispatch.ts'
 import { createEventHub, type EventHub } from './services/event-hub.ts'
 import { createFiles } from './services/files.ts'
 import { createHost, type HostInfo } from './services/host.ts'
+import { createNetlists } from './services/netlists.ts'
 import { pageFile, type PageFile } from './services/page-files.ts'
+import { createPatternSets } from './services/pattern-sets.ts'
+import { createPlanDesk } from './services/plan-desk.ts'
 import { createProducts } from './services/products.ts'
 import { createProjects } from './services/projects.ts'
+import { createRuns } from './services/runs.ts'
 import { createSession } from './services/session.ts'
 import { createSettings, parseUserState } from './services/settings.ts'
 import { createTasks } from './services/tasks.ts'
 import { createTesters } from './services/testers.ts'
+import { createDesk, type Desk } from './workers/desk.ts'
 
 export type ApplicationConfig = {
   readonly installation: Installation
@@ -21,9 +30,12 @@ export type ApplicationConfig = {
   /** Where settings and the list of recent projects are kept. */
   readonly userFolder: string
   readonly projectFolder: string
+  /** Threads that simulate; all processors but one where not said, so that one stays free to answer. */
+  readonly threads?: number
   readonly now?: () => number
   /** Told of faults in the program itself. */
   readonly onFault: (where: string, error: unknown) => void
+  /** Checks what services answer against the contract, for tests and development. */
   readonly checkOutput?: boolean
 }
 
@@ -31,7 +43,7 @@ export type Application = {
   readonly dispatch: Dispatch
   readonly events: EventHub
   page(path: string): Promise<PageFile | null>
-  /** Leaves everything as it can be gone on with: runs stand at their last checkpoint. */
+  /** Leaves everything as it can be gone on with: runs stand at their last segment. */
   close(): Promise<void>
 }
 
@@ -41,11 +53,25 @@ export function createApplication(config: ApplicationConfig): Application {
   const { version } = JSON.parse(readFileSync(join(installation.root, 'package.json'), 'utf8')) as {
     version: string
   }
+  const engine = `Tallycut ${version}`
+  const userState = userFile(join(config.userFolder, 'tallycut.json'), parseUserState)
+  const threads = {
+    simulateScript: fileURLToPath(installation.thread('simulate-worker')),
+    kernel: installation.kernel,
+    count: config.threads ?? Math.max(1, availableParallelism() - 1),
+  }
+  const desk = (name: string): Desk => createDesk(installation.thread('desk-worker'), name, threads)
+  const desks = {
+    reader: desk('reader'),
+    runner: desk('runner'),
+    planner: desk('planner'),
+    prover: desk('prover'),
+  }
+
   const events = createEventHub()
   const session = createSession()
   const tasks = createTasks(events, now)
   const files = createFiles()
-  const userState = userFile(join(config.userFolder, 'tallycut.json'), parseUserState)
   const projects = createProjects({
     session,
     events,
@@ -57,22 +83,44 @@ export function createApplication(config: ApplicationConfig): Application {
       open: async (path) => (await import('../db/open-project.ts')).openProject(path),
     },
   })
-  const handlers = {
-    ...createHost({ version, engine: `Tallycut ${version}`, door, projectFolder }),
+  const common = { session, events, tasks, now }
+  const parts: Omit<Handlers, 'projects.openDemo'> = {
+    ...createHost({ version, engine, door, projectFolder }),
     ...createSettings(userState, events),
+    ...files.handlers,
+    ...projects.handlers,
     ...createProducts(session, events, now),
     ...createTesters(session, events, now),
-    ...projects.handlers,
-    ...files.handlers,
+    ...createNetlists({ ...common, files, desk: desks.reader }),
+    ...createPatternSets({ ...common, files, desk: desks.reader }),
+    ...createRuns({ ...common, desk: desks.runner, engine, onFault }),
+    ...createBudgets({
+      ...common,
+      planner: createPlanDesk(desks.planner, session.store),
+      prover: createPlanDesk(desks.prover, session.store),
+      version,
+    }),
     ...tasks.handlers,
-  } as unknown as Handlers
+  }
+  const handlers: Handlers = {
+    ...parts,
+    ...createDemo({
+      handlers: parts,
+      tasks,
+      projects,
+      session,
+      assets: installation.assets,
+      projectFolder,
+    }),
+  }
   return {
     dispatch: createDispatch(handlers, { checkOutput: config.checkOutput ?? false, onFault }),
     events,
     page: (path) => pageFile(installation.page, path),
     async close() {
-      tasks.cancelAll()
       session.close()
+      tasks.cancelAll()
+      await Promise.all(Object.values(desks).map((one) => one.close()))
     },
   }
 }

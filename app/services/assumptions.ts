@@ -9,8 +9,11 @@ import {
 } from '../engine/tester/assumption-field.ts'
 import { TESTER_FIELDS, testerContradictions, type Tester } from '../engine/tester/tester.ts'
 
-/** The name stands in the record itself; shares of area have a form of their own in files only. */
-const NOT_IN_FORMS: ReadonlySet<string> = new Set(['name', 'areaShares'])
+/** The name stands in the record itself; lists of objects, such as shares of area, stand in files only. */
+function isInForms({ key, shape }: AnyField): boolean {
+  const inner = shape.kind === 'or-null' ? shape.of : shape
+  return key !== 'name' && !(inner.kind === 'list' && inner.of.kind === 'object')
+}
 
 /** A field of either file, where it does not matter of which. */
 type AnyField = AssumptionField<Record<string, unknown>>
@@ -19,6 +22,7 @@ type Resolved<T> = { readonly values: T; readonly errors: readonly FieldError[] 
 
 /** Returns the fields that forms show of products and of testers. */
 export function formFields(): { product: Field[]; tester: Field[] } {
+  const fieldsOf = (fields: readonly AnyField[]): Field[] => fields.filter(isInForms).map(fieldOf)
   return { product: fieldsOf(PRODUCT_FIELDS), tester: fieldsOf(TESTER_FIELDS) }
 }
 
@@ -88,23 +92,11 @@ function resolve<T>(
   return { values: resolved, errors }
 }
 
-function fieldsOf<T>(fields: readonly AssumptionField<T>[]): Field[] {
-  return fields.filter(({ key }) => !NOT_IN_FORMS.has(key)).map(fieldOf)
-}
-
 function formField(fields: readonly AnyField[], key: string): AnyField | undefined {
-  return fields.find((field) => field.key === key && !NOT_IN_FORMS.has(key))
+  return fields.find((field) => field.key === key && isInForms(field))
 }
 
-function fieldOf<T>({
-  key,
-  label,
-  unit,
-  shape,
-  default: value,
-  nullMeans,
-  explanation,
-}: AssumptionField<T>): Field {
+function fieldOf({ key, label, unit, shape, default: value, nullMeans, explanation }: AnyField): Field {
   const inner = shape.kind === 'or-null' ? shape.of : shape
   const limits: NumberShape = inner.kind === 'number' ? inner : { kind: 'number' }
   const words = choicesOf(inner)

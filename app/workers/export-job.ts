@@ -1,0 +1,149 @@
+import { AppError } from '../contract/errors.ts'
+import type { OutputOf } from '../contract/operations.ts'
+import { buildPlan, type Plan, type PlanInput } from '../engine/choose/build-plan.ts'
+import { scanFactsOf } from '../engine/choose/choice-basis.ts'
+import { lostBlocks } from '../engine/choose/lost-blocks.ts'
+import { type ExportSelection, exportWarnings } from '../engine/formats/export-selection.ts'
+import { simulateGood } from '../engine/simulate/good-machine.ts'
+import { REPORT_MEDIA_TYPES, reportOfPlan } from '../report/report-of-plan.ts'
+import { DeskAnswer } from './desk-answer.ts'
+import type { DeskContext } from './desk-context.ts'
+import type { ExportFormat, PlanJobs } from './plan-jobs.ts'
+import { basisOf, heldDossier, orderOf, type RunDossier } from './run-dossier.ts'
+
+type Input = PlanJobs['make-export']['input']
+
+const EXTENSIONS: Readonly<Record<ExportFormat, string>> = {
+  html: 'html',
+  pdf: 'pdf',
+  xlsx: 'xlsx',
+  csv: 'csv',
+  vectors: 'vec',
+  'patterns-csv': 'csv',
+  stil: 'stil',
+}
+
+/** Makes a report of a cut, or a pattern file with the patterns that it runs. */
+export async function exportJob(
+  input: Input,
+  context: DeskContext<never>,
+): Promise<DeskAnswer<OutputOf<'exports.make'>>> {
+  const { format, subject } = input
+  const dossier = heldDossier(input.key)
+  context.report({ phase: 'Writing', share: null })
+  const made =
+    format === 'vectors' || format === 'patterns-csv' || format === 'stil'
+      ? await patternFile(dossier, input, format)
+      : {
+          bytes: await reportOfPlan(planOf(dossier, input), sourceOf(dossier, input), format),
+          mediaType: REPORT_MEDIA_TYPES[format],
+          warnings: [],
+        }
+  const stem = `${subject.product} ${subject.patternSet} ${input.cut} patterns`
+  const fileName = `${stem.replace(/[^\p{L}\p{N} ._-]+/gu, ' ').replace(/\s+/g, ' ')}.${EXTENSIONS[format]}`
+  return new DeskAnswer({ fileName, ...made }, [made.bytes.buffer])
+}
+
+function planOf(dossier: RunDossier, input: Input): Parameters<typeof reportOfPlan>[0] {
+  const { netlist, faults, profile, patterns } = dossier
+  const basis = basisOf(dossier, input)
+  const order = orderOf(dossier, input.order, input)
+  const { maxMilliseconds } = input.assumptions.limits
+  const common = {
+    faults,
+    untestable: null,
+    task: basis.task,
+    total: basis.total,
+    order: { ...order, chosen: Math.max(order.chosen, input.cut) },
+    patterns,
+    patternFile: '',
+    scan: scanFactsOf(netlist),
+    tester: input.tester,
+    product: input.product,
+    program: [],
+    goals: [],
+    ceiling: null,
+    ceilingWithin: () => null,
+    smallest: null,
+  }
+  const own = { kind: 'patterns', most: input.cut } as const
+  const plain = requirePlan({ ...common, limits: [own] })
+  const isInside = maxMilliseconds !== null && plain.result.budget.milliseconds <= maxMilliseconds
+  const plan = isInside
+    ? requirePlan({ ...common, limits: [own, { kind: 'milliseconds', most: maxMilliseconds }] })
+    : plain
+  const chosen = order.sequence.subarray(0, plan.result.budget.patterns)
+  return { netlist, faults, profile, plan, lost: lostBlocks(basis.task, faults, chosen) }
+}
+
+function requirePlan(input: PlanInput): Plan {
+  const { plan, problems } = buildPlan(input)
+  if (plan === null) throw new AppError('bad-input', problems[0]?.message, { field: problems[0]?.key })
+  return plan
+}
+
+function sourceOf({ netlist }: RunDossier, input: Input): Parameters<typeof reportOfPlan>[1] {
+  const { subject, assumptions } = input
+  const named = (role: string): string[] =>
+    subject.files.filter((file) => file.role === role).map(({ name }) => name)
+  const order = input.order === 'by-hand' ? 'as-delivered' : input.order
+  const commandLine = [
+    'npm run -s tallycut -- plan',
+    ...named('netlist').slice(0, 1).map(quoted),
+    ...named('patterns').map(quoted),
+    ...named('library').map((name) => `--library ${quoted(name)}`),
+    `--tester tester.json --product product.json --order ${order} --max-patterns ${input.cut}`,
+    ...(assumptions.n > 1 ? [`--n ${assumptions.n}`] : []),
+    ...(assumptions.constraints === null ? [] : ['--constraints constraints.json']),
+    ...(assumptions.weights === null ? [] : ['--weights weights.csv']),
+  ].join(' ')
+  return {
+    date: subject.date,
+    version: subject.version,
+    subject: `netlist ${subject.netlist}, pattern set ${subject.patternSet}`,
+    files: subject.files,
+    options: [
+      { label: 'Order', value: input.order },
+      { label: 'Patterns', value: String(input.cut) },
+      { label: 'Detections of each fault', value: String(assumptions.n) },
+    ],
+    commandLine,
+    notices: netlist.report.unusable.map(({ kind, count }) => `${count} × ${kind}: taken as unknown.`),
+  }
+}
+
+async function patternFile(
+  dossier: RunDossier,
+  input: Input,
+  format: 'vectors' | 'patterns-csv' | 'stil',
+): Promise<{ bytes: Uint8Array<ArrayBuffer>; mediaType: string; warnings: string[] }> {
+  const { netlist, patterns } = dossier
+  const { circuit } = netlist
+  const order = orderOf(dossier, input.order, input)
+  const response = patterns.expected === null ? simulateGood(circuit, patterns) : null
+  const sequence = order.sequence.subarray(0, input.cut)
+  const selection: ExportSelection = { patterns, circuit, sequence, response }
+  const parts =
+    format === 'stil'
+      ? (await import('../engine/formats/stil/write-stil.ts')).stilParts(patterns, netlist, sequence, {
+          title: `${input.subject.product}, ${input.subject.patternSet}`,
+          response,
+        })
+      : format === 'vectors'
+        ? (await import('../engine/formats/vectors/write-vectors.ts')).vectorsParts(selection)
+        : (await import('../engine/formats/csv/write-pattern-csv.ts')).patternCsvParts(selection)
+  return {
+    bytes: joined(parts),
+    mediaType: format === 'patterns-csv' ? 'text/csv; charset=utf-8' : 'text/plain; charset=utf-8',
+    warnings: exportWarnings(selection, format === 'stil' ? 'stil' : 'plain'),
+  }
+}
+
+/** Returns texts as one run of bytes, without ever holding them as one string. */
+function joined(parts: Iterable<string>): Uint8Array<ArrayBuffer> {
+  return new Uint8Array(Buffer.concat(Array.from(parts, (part) => Buffer.from(part))))
+}
+
+function quoted(name: string): string {
+  return /^[\w./-]+$/.test(name) ? name : `'${name.replaceAll("'", "'\\''")}'`
+}
