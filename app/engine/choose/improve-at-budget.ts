@@ -21,6 +21,8 @@ export type ImproveOptions = {
   /** False ends the search with the best so far: a time limit and a cancel both come this way. */
   readonly onProgress?: ChoiceProgress
   readonly solveMip?: MipSolver
+  /** The ceiling at this budget where it is known already; else one is worked out. */
+  readonly bound?: number
   /** The solver is asked only for problems of at most so many detections. */
   readonly mostDetections?: number
 }
@@ -41,15 +43,15 @@ export function improveAtBudget(
   const { rules } = task
   let done = 0
   const goOn = (): boolean => onProgress(Math.min(done++, 1000), 1000)
-  const ceiling = ceilingOf(task, Float64Array.of(budget), { effort: 4e8, onProgress: goOn })
+  const ceiling = options.bound ?? ceilingAt(task, budget, goOn)
   const settled = withSettledPairs(task, chosen)
   const problem = ceiling === null ? null : buildDualProblem(settled.task, goOn)
   if (ceiling === null || problem === null) return null
 
   const swaps = new SwapSearch(problem, settled.columnsOf(problem), budget - problem.keptCost, settled.isFree)
-  swaps.improve(Math.floor(ceiling.bounds[0] * problem.weightScale - problem.keptWeight), goOn)
+  swaps.improve(Math.floor(ceiling * problem.weightScale) - problem.keptWeight, goOn)
   let columns = swaps.chosen()
-  let bound = ceiling.bounds[0]
+  let bound = ceiling
   const start = detectedWeight(task, chosen)
   const patternsOf = (list: readonly number[]): Uint32Array => {
     const units = new Set(list.map((column) => problem.unitOfColumn[column]))
@@ -78,6 +80,13 @@ export function improveAtBudget(
     }
   }
   return { patterns, weight, gained: weight - start, bound: Math.max(bound, weight), proven: bound <= weight }
+}
+
+/** Returns the bound at one budget; smaller budgets on the way to it bring the multipliers near. */
+function ceilingAt(task: ChoiceTask, budget: number, goOn: () => boolean): number | null {
+  const steps = Float64Array.from({ length: 12 }, (_, at) => budget * 0.7 ** (11 - at))
+  const ceiling = ceilingOf(task, steps, { effort: 6e8, onProgress: goOn })
+  return ceiling === null ? null : ceiling.bounds[steps.length - 1]
 }
 
 /** Returns the task with every unit that pairs of `before` speak of settled: kept where it is chosen, not free where not. */

@@ -41,6 +41,7 @@ function orderBySteps(
 ): Order | null {
   const { rules } = task
   const units = buildUnitMatrix(task)
+  if (!onProgress(0, units.nRows + units.nUnits)) return null
   const gains = new Gains(units, task.detections)
   const order = new UnitSequence(rules)
   const place = (unit: number): void => {
