@@ -48,6 +48,21 @@ export function placeWrittenFlipFlops(shared: Assembler, inputs: readonly number
       `flip-flop ${quoted(shared.netName(net))} is not scanned but a source of X: ${why}`,
     )
   }
+  warnSeveralClocks(shared)
+}
+
+/** Several clocks in one pattern are taken as one pulse, which a person should know. */
+function warnSeveralClocks({ flat, flipFlops, findings, tokenEnd }: Assembler): void {
+  const ports = [...new Set(flipFlops.map(({ clock }) => clock.port ?? ''))]
+  if (ports.length < 2) return
+  const { source, place } = flat.scopeModules[0]
+  findings.warn(
+    'ignored',
+    source,
+    place,
+    tokenEnd(source.text, place),
+    `flip-flops have ${ports.length} clocks (${ports.slice(0, 5).join(', ')}): patterns are read as if all were pulsed together`,
+  )
 }
 
 /** The input net that clocks each written flip-flop, −1 where there is none, and whether it arrives inverted. */

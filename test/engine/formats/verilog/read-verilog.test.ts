@@ -231,6 +231,13 @@ describe('flip-flops of a netlist of gates', () => {
     expect(gates(text)).toEqual(['q = FlipFlop(a)'])
   })
 
+  test('several clocks are taken as one pulse, with a warning', () => {
+    const text = `module m (input c1, c2, a, output reg p, q); always @(posedge c1) p <= a; always @(posedge c2) q <= a; endmodule`
+    const { value, diagnostics } = readVerilog([{ name: 'own.v', text }])
+    expect(diagnostics.map((each) => each.message)).toEqual([expect.stringContaining('2 clocks (c1, c2)')])
+    expect(value?.circuit.inputs).toHaveLength(1)
+  })
+
   test('a clock that logic makes, or that falls where others rise, makes a source of X', () => {
     const text = `module m (input ck, en, a, output reg p, q, r, s); and (g, ck, en); not (nck, ck);
       always @(posedge ck) p <= a; always @(posedge g) q <= a; always @(posedge nck) r <= a;
