@@ -21,10 +21,7 @@ import { firstCompare, writeLoad, writeUnload, type PassedData, type PatternColu
 
 /** Why a pattern counts for time and not for coverage. */
 export type TimeOnlyReason =
-  | 'more than one capture'
-  | 'other clocks than the scan clocks'
-  | 'clocks at different times'
-  | 'nothing but a load and an unload'
+  'more than one capture' | 'other clocks than the scan clocks' | 'clocks at different times'
 
 export type AssemblyCounts = {
   /** Cycles before the first pattern of each burst, and after the last. */
@@ -52,8 +49,10 @@ export type AssemblyCounts = {
 
 const NO_DATA: PassedData = { text: '', from: 0, stride: 1, count: 0 }
 
-/** Bits of all planes together that a set may have, a gigabyte. */
-const MAX_PLANE_WORDS = 1 << 28
+/** Words of all planes together that a set may have: half a gigabyte. */
+const MAX_PLANE_WORDS = 1 << 27
+
+const MAX_CYCLES = 0xffffffff
 
 /**
  * Turns the cycles and shifts of a run into patterns. A pattern starts with a load, which is also the unload of the
@@ -171,7 +170,7 @@ export class PatternAssembler {
       this.discard()
       this.counts.closingCycles += closing
     } else if (this.scanOpen) {
-      this.closePattern(this.now(), false)
+      this.closePattern(this.now())
     } else {
       this.counts.closingCycles += closing
     }
@@ -209,7 +208,7 @@ export class PatternAssembler {
     }
     if (run.compares > 0) this.strobe(run, clocked)
     if (clocked) this.capture(run)
-    if (!this.scanOpen && this.strobed) this.closePattern(this.now(), false)
+    if (!this.scanOpen && this.strobed) this.closePattern(this.now())
   }
 
   /** A shift of that many rounds; `shifted` are the signals that take a character a round from their data. */
@@ -220,7 +219,7 @@ export class PatternAssembler {
     if (this.scanOpen) {
       this.decodeLoad()
       this.unload(run)
-      this.closePattern(start, true)
+      this.closePattern(start)
     } else if (!this.sawBoundary) {
       this.counts.openingCycles += start - this.boundary
       this.sawBoundary = true
@@ -301,15 +300,13 @@ export class PatternAssembler {
     this.captured = null
   }
 
-  private closePattern(end: number, unloaded: boolean): void {
+  private closePattern(end: number): void {
     const pattern = this.nPatterns - 1
     this.decodeLoad()
-    this.cycles[pattern] = end - this.boundary
+    this.cycles[pattern] = this.checkedCycles(end - this.boundary)
     this.boundary = end
     if (this.scanOpen) {
       if (this.captures === 0) this.withoutCapture.push(pattern)
-      if (this.captures === 0 && !this.strobed && unloaded)
-        this.timeOnlyFor('nothing but a load and an unload')
     } else {
       this.counts.stateNotLoaded++
       if (this.clockedWithoutLoad) this.dependent.push(pattern)
@@ -325,6 +322,15 @@ export class PatternAssembler {
     }
     this.captures = 0
     this.sawBoundary = true
+  }
+
+  private checkedCycles(cycles: number): number {
+    if (cycles > MAX_CYCLES && this.run !== null) {
+      const { findings, place } = this.run
+      const message = `pattern ${this.nPatterns} takes ${cycles} cycles; at most ${MAX_CYCLES} are counted`
+      findings.report('limit', place.source, place.span, message)
+    }
+    return cycles
   }
 
   private discard(): void {
@@ -548,6 +554,7 @@ export class PatternAssembler {
   /** Makes the levels just read the pattern's input values. */
   private keepFrame(run: PatternRunner): void {
     const pattern = this.nPatterns - 1
+    this.decodeLoad()
     if (this.frame === null) this.noteFrame(run)
     this.frame ??= new Uint8Array(this.nInputs)
     this.frame.set(this.levels)
@@ -655,9 +662,11 @@ export class PatternAssembler {
   }
 }
 
+/** When a clock leaves its level at rest: within the cycle, or, where it holds the other level, as it takes that. */
 function edgeOf(run: PatternRunner, signal: number): number {
   const { table, state } = run
-  return table.shapes[table.shape[table.row[signal] * CHARACTERS + state[signal]]].edge
+  const { edge, levels } = table.shapes[table.shape[table.row[signal] * CHARACTERS + state[signal]]]
+  return Number.isNaN(edge) && levels.length > 0 ? levels[0].time : edge
 }
 
 function levelAt(table: CompiledTable, at: number, time: number): number {

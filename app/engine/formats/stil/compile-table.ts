@@ -177,7 +177,7 @@ function shapeOf(
   let strobe = NaN
   let edge = NaN
   let pulses = false
-  let time = 0
+  let time = NaN
   let previous = 0
   for (const event of events) {
     if (event.time !== '') time = evaluateTime(event.time, specs, previous)

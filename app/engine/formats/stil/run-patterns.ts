@@ -267,7 +267,7 @@ export class PatternRunner {
       'limit',
       source,
       span,
-      'the patterns up to here fill a gigabyte; no more are read',
+      'the patterns up to here fill half a gigabyte; no more are read',
       'Split the file into several pattern sets.',
     )
     throw new ReadingStopped()

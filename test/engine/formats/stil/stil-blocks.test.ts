@@ -125,6 +125,17 @@ describe('timing (clause 18)', () => {
     })
   })
 
+  it('takes the customary characters where the file has no timing, with a strobe before the clock', () => {
+    const text = smallStil(pattern)
+      .replace(/^Timing.*\n(.*\n)*?ScanStructures/m, 'ScanStructures')
+      .replaceAll('W t;', '')
+    expect(text).not.toContain('Waveform')
+    const testPins = [{ name: 'CK', role: 'clock', value: 0, from: 'user' }] as const
+    const { value, diagnostics } = readStil({ name: 'x', text }, smallScanDesign({ testPins }))
+    expect(diagnostics).toEqual([])
+    expect(value?.report.expects).toMatchObject({ outputs: 2, unloads: 3, unusedAfterCapture: 0 })
+  })
+
   it('names an event list that fits no character list', () => {
     const text = smallStil(pattern).replace('D/U/N/Z', 'D/U/N')
     const { diagnostics } = readStil({ name: 'x', text }, design)
