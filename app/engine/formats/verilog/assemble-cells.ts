@@ -323,20 +323,17 @@ export class CellAssembler {
     return this.clockGateOutputs.has(net)
   }
 
-  /** Warns about something that concerns the whole netlist, at the top module's name. */
-  warnTop(message: string, hint: string | null = null): void {
-    const module = this.shared.flat.scopeModules[0]
-    const end = this.shared.tokenEnd(module.source.text, module.place)
-    this.shared.findings.warn('not-scanned', module.source, module.place, end, message, { hint })
-  }
-
   /** Warns about one cell instance, at its place. */
-  warnAt(row: number, message: string, hint: string | null = null): void {
-    const { flat, findings } = this.shared
-    const source = flat.sourceOf(flat.cellScope.data[row])
-    const place = flat.cellPlace.data[row]
-    const end = this.shared.tokenEnd(source.text, place)
-    findings.warn('not-scanned', source, place, end, `${quoted(flat.cellText(row))} ${message}`, { hint })
+  warnAt(row: number, message: string): void {
+    const { flat } = this.shared
+    const name = quoted(flat.cellText(row))
+    this.shared.warn(
+      'not-scanned',
+      `${name} ${message}`,
+      null,
+      flat.cellScope.data[row],
+      flat.cellPlace.data[row],
+    )
   }
 }
 

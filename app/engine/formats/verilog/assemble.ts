@@ -4,7 +4,7 @@ import { GateKind, LineKind, type Circuit, type LineTable } from '../../circuit/
 import { NetGraph } from '../../circuit/net-graph.ts'
 import type { FlipFlopClock, Netlist, TestPin } from '../../circuit/netlist.ts'
 import { listLines } from '../../faults/list-lines.ts'
-import { MAX_DIAGNOSTICS } from '../../source/diagnostic.ts'
+import { MAX_DIAGNOSTICS, type DiagnosticCode } from '../../source/diagnostic.ts'
 import { quoted, type FindingList } from '../../source/finding-list.ts'
 import { CellAssembler } from './assemble-cells.ts'
 import { FlatNet, type FlatNetlist } from './flat-netlist.ts'
@@ -163,7 +163,14 @@ export class Assembler {
     return net < this.flat.nNets ? this.flat.netText(net) : (this.ownNames.get(net) ?? '')
   }
 
-  tokenEnd(text: string, start: number): number {
+  /** Warns about what stands at a place of a scope's module; without a place, about the netlist, at its top's name. */
+  warn(code: DiagnosticCode, message: string, hint: string | null = null, scope = 0, place = -1): void {
+    const { source, place: modulePlace } = this.flat.scopeModules[scope]
+    const start = place < 0 ? modulePlace : place
+    this.findings.warn(code, source, start, this.tokenEnd(source.text, start), message, { hint })
+  }
+
+  private tokenEnd(text: string, start: number): number {
     let end = start + 1
     while (end < text.length && /[A-Za-z0-9_$.[\]]/.test(text[end])) end++
     return end
@@ -320,22 +327,16 @@ export class Assembler {
     }
     const count = unusable.count('undriven net')
     if (count === 0 || examples.length === 0) return
-    const net = examples[0]
-    const source = flat.sourceOf(flat.netScope.data[net])
-    const place = flat.netPlace.data[net]
-    const isImplicit = flat.isImplicit(net)
-    this.findings.warn(
+    const [net] = examples
+    const shown = examples.slice(0, 3).map((each) => quoted(this.netName(each)))
+    this.warn(
       'undriven-net',
-      source,
-      place,
-      this.tokenEnd(source.text, place),
       count === 1
-        ? `net ${quoted(this.netName(net))} is used but nothing drives it: it carries X`
-        : `${count} nets are used but nothing drives them, such as ${examples
-            .slice(0, 3)
-            .map((each) => quoted(this.netName(each)))
-            .join(', ')}: they carry X`,
-      { hint: isImplicit ? 'It is declared nowhere: its name may be misspelled.' : null },
+        ? `net ${shown[0]} is used but nothing drives it: it carries X`
+        : `${count} nets are used but nothing drives them, such as ${shown.join(', ')}: they carry X`,
+      flat.isImplicit(net) ? 'It is declared nowhere: its name may be misspelled.' : null,
+      flat.netScope.data[net],
+      flat.netPlace.data[net],
     )
   }
 
@@ -435,15 +436,13 @@ export class Assembler {
     const path = nets.filter((net) => this.netName(net) !== '')
     const shown = path.slice(0, 16).map((net) => this.netName(net))
     const written = path.find((net) => net < flat.nNets)
-    const module = flat.scopeModules[written === undefined ? 0 : flat.netScope.data[written]]
-    const place = written === undefined ? module.place : flat.netPlace.data[written]
-    this.findings.warn(
+    this.warn(
       'combinational-loop',
-      module.source,
-      place,
-      this.tokenEnd(module.source.text, place),
       `a loop without a flip-flop is cut with X: ${shown.join(' → ')}` +
         `${path.length > 16 ? ` … (${path.length} nets)` : ''} → ${shown[0] ?? ''}`,
+      null,
+      written === undefined ? 0 : flat.netScope.data[written],
+      written === undefined ? -1 : flat.netPlace.data[written],
     )
   }
 

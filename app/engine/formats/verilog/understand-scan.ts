@@ -47,7 +47,11 @@ class ScanAssembler {
     for (const { states } of sequential) for (const state of states) graph.drive(state, GateKind.Unknown)
     for (const pin of options.testPins) {
       if (this.netByName.has(pin.name)) this.pins.set(pin.name, pin)
-      else this.cells.warnTop(`no input is called ${quoted(pin.name)}, which was to be held in test`)
+      else
+        this.shared.warn(
+          'not-scanned',
+          `no input is called ${quoted(pin.name)}, which was to be held in test`,
+        )
     }
     const fixed = this.heldPins('fixed')
     const shift = this.shiftPins(fixed)
@@ -307,12 +311,14 @@ class ScanAssembler {
   private warnUnscanned(unscanned: number, assumed: number): void {
     const flipFlops = this.shared.unusable.count('unscanned flip-flop')
     if (assumed > 0) {
-      this.cells.warnTop(
+      this.shared.warn(
+        'not-scanned',
         `${assumed} flip-flops are on no scan chain and are taken as scanned: the figures are a planning assumption`,
       )
     }
     if (unscanned === 0 || flipFlops === 0) return
-    this.cells.warnTop(
+    this.shared.warn(
+      'not-scanned',
       `${flipFlops} flip-flops are on no scan chain: they are sources of X, and what they take is not observed`,
       'Give the netlist with its scan chains, or plan with the assumption that all flip-flops will be scanned.',
     )
@@ -329,7 +335,8 @@ class ScanAssembler {
       sharing.set(chain.scanIn, number)
       const scanIn = this.shared.netName(chain.scanIn)
       if (number === 2) {
-        this.cells.warnTop(
+        this.shared.warn(
+          'not-scanned',
           `scan-in ${quoted(scanIn)} feeds several chains: their flip-flops are not loaded independently`,
         )
       }

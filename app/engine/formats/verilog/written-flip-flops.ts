@@ -39,29 +39,26 @@ export function placeWrittenFlipFlops(shared: Assembler, inputs: readonly number
       : port < 0
         ? 'its clock is made by logic'
         : 'its clock rises where that of most others falls'
-    const source = flat.sourceOf(scope)
-    shared.findings.warn(
+    const name = quoted(shared.netName(net))
+    shared.warn(
       'not-scanned',
-      source,
+      `flip-flop ${name} is not scanned but a source of X: ${why}`,
+      null,
+      scope,
       place,
-      shared.tokenEnd(source.text, place),
-      `flip-flop ${quoted(shared.netName(net))} is not scanned but a source of X: ${why}`,
     )
   }
   warnSeveralClocks(shared)
 }
 
 /** Several clocks in one pattern are taken as one pulse, which a person should know. */
-function warnSeveralClocks({ flat, flipFlops, findings, tokenEnd }: Assembler): void {
-  const ports = [...new Set(flipFlops.map(({ clock }) => clock.port ?? ''))]
+function warnSeveralClocks(shared: Assembler): void {
+  const ports = [...new Set(shared.flipFlops.map(({ clock }) => clock.port ?? ''))]
   if (ports.length < 2) return
-  const { source, place } = flat.scopeModules[0]
-  findings.warn(
+  const shown = ports.slice(0, 5).join(', ')
+  shared.warn(
     'ignored',
-    source,
-    place,
-    tokenEnd(source.text, place),
-    `flip-flops have ${ports.length} clocks (${ports.slice(0, 5).join(', ')}): patterns are read as if all were pulsed together`,
+    `flip-flops have ${ports.length} clocks (${shown}): patterns are read as if all were pulsed together`,
   )
 }
 
