@@ -8,6 +8,8 @@ import { stilParts, writeStil } from '../../../../app/engine/formats/stil/write-
 import { exportWarnings } from '../../../../app/engine/formats/export-selection.ts'
 import { compareResponse } from '../../../../app/engine/simulate/compare-response.ts'
 import { simulateGood } from '../../../../app/engine/simulate/good-machine.ts'
+import { simulateTwin } from '../../../../app/engine/simulate/twin.ts'
+import { buildFaultList } from '../../../../app/engine/faults/build-fault-list.ts'
 import {
   bitAt,
   emptyPlane,
@@ -222,6 +224,29 @@ endmodule
 }
 
 describe.skipIf(!hasData)('an exported STIL file', () => {
+  it('detects what the set detects, and the patterns chosen from it detect what they did there', () => {
+    const source = readData('stil/s27_scan.stil')
+    const netlist = readScanNetlist('s27_scan', source)
+    const { patterns } = readStil(source, netlist).value!
+    const { circuit } = netlist
+    const faults = buildFaultList(circuit)
+    const detectionsOf = (set: PatternSet): number[] =>
+      Array.from(
+        simulateTwin({ circuit, faults, patterns: set, detectionLimit: 0, classes: null, wantMatrix: false })!
+          .profile.detections,
+      )
+    const reversed = writeStil(patterns, netlist, inOrder(12).reverse())
+    const all = detectionsOf(patterns)
+    expect(all.some((count) => count > 0)).toBe(true)
+    expect(detectionsOf(readStil({ name: 'export', text: reversed }, netlist).value!.patterns)).toEqual(all)
+    const halves = [inOrder(6), inOrder(12).slice(6)].map((sequence) =>
+      detectionsOf(
+        readStil({ name: 'half', text: writeStil(patterns, netlist, sequence) }, netlist).value!.patterns,
+      ),
+    )
+    expect(halves[0].map((count, at) => count + halves[1][at])).toEqual(all)
+  })
+
   it.each([
     ['s27_scan', 's27_scan', 's27_scan', 12],
     ['s15850_scan1', 's15850_scan1_171', 'CUT', 3],
