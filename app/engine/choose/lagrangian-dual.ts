@@ -11,7 +11,7 @@ const STEPS_BETWEEN_QUESTIONS = 4e6
 
 /**
  * The dual of a choice at one set of multipliers λ, kept up to date as they change. All of `lambda`, `gain` and sums of
- * them are whole numbers below 2^52 in units of 1 / scale, so additions are exact in any order.
+ * them are whole numbers up to 2^53 in units of 1 / scale, so additions are exact in any order.
  *
  * For 0 ≤ need_f λ_f ≤ w_f every choice that costs at most B detects at most
  * Σ_f (w_f − need_f λ_f) + max { Σ_p g_p y_p : Σ_p c_p y_p ≤ B, 0 ≤ y_p ≤ 1 },  g_p = Σ λ_f over the rows of column p.
@@ -38,10 +38,12 @@ export class LagrangianDual {
 
   /** Starts at λ = w / need, the best multipliers for a budget of one unit where one detection is enough. */
   constructor(problem: DualProblem) {
-    const { weight, need, nRows, nColumns } = problem
+    const { weight, need, nRows, nColumns, rowStart } = problem
     this.problem = problem
     this.totalWeight = weight.reduce((sum, one) => sum + one, 0)
-    this.scale = 2 ** Math.min(20, 51 - Math.ceil(Math.log2(this.totalWeight + 2)))
+    // The largest sum there can be: all gains together, where every multiplier is at its cap.
+    const largest = weight.reduce((sum, one, row) => sum + one * (1 + rowStart[row + 1] - rowStart[row]), 2)
+    this.scale = 2 ** Math.max(0, Math.min(20, 52 - Math.ceil(Math.log2(largest))))
     this.#cap = weight.map((one, row) => Math.floor((one * this.scale) / need[row]))
     this.best = this.#cap.slice()
     this.#lambda = new Float64Array(nRows)

@@ -40,9 +40,9 @@ export class MipRows {
 
   /** Adds lower ≤ Σ values[i] × variable items[i] ≤ upper. */
   add(items: Iterable<number>, values: Iterable<number> | number, lower: number, upper: number): void {
-    this.#items.push(...items)
+    for (const item of items) this.#items.push(item)
     if (typeof values === 'number') while (this.#values.length < this.#items.length) this.#values.push(values)
-    else this.#values.push(...values)
+    else for (const value of values) this.#values.push(value)
     this.#start.push(this.#items.length)
     this.#lower.push(lower)
     this.#upper.push(upper)
