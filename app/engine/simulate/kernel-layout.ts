@@ -6,7 +6,7 @@ import type { KernelTask } from './kernel-task.ts'
 import { isInternal, orderNets, type NetOrder } from './net-order.ts'
 
 /** The layout that this packer writes; a kernel built for another one is refused. */
-export const LAYOUT_VERSION = 4
+export const LAYOUT_VERSION = 5
 
 const NO_SLOT = 0xffffffff
 const HEADER_WORDS = 32
@@ -25,6 +25,7 @@ export type KernelLayout = {
   readonly blockWidth: number
   readonly nBlocks: number
   readonly nPatterns: number
+  readonly nNets: number
   readonly nRegions: number
   readonly nClasses: number
   readonly detectionLimit: number
@@ -203,6 +204,7 @@ export function planKernel(task: KernelTask, blockWidth: number): KernelPlan {
     blockWidth,
     nBlocks: Math.ceil(patterns.nPatterns / blockWidth),
     nPatterns: patterns.nPatterns,
+    nNets,
     nRegions,
     nClasses,
     detectionLimit,
@@ -264,8 +266,6 @@ export function writeShared(plan: KernelPlan, task: KernelTask, memory: ArrayBuf
   else if (task.wantMatrix) task.classes.forEach((group, row) => (matrixRows[group] = row))
   words(shared.first).fill(NO_SLOT)
   words(shared.header).set([
-    order.nets.length,
-    plan.layout.nRegions,
     sites.taps.length,
     constants.length,
     patterns.value.rows,

@@ -8,6 +8,7 @@ export type KernelExports = {
   patternsPerBlock(): number
   attach(shared: number, own: number): void
   loadBlock(block: number, detectionLimit: number): void
+  evaluateGood(from: number, to: number): void
   usePatterns(from: number, to: number): void
   simulateRegions(from: number, to: number, budget: number): number
   simulateTaps(): void
@@ -85,7 +86,7 @@ export class KernelThread {
   simulateUnit(units: Units, unit: number, goOn: () => boolean): boolean {
     const { kernel, layout } = this
     if (unit >= units.inFirstBlock) {
-      this.load(blocksBefore(units, unit))
+      if (!this.load(blocksBefore(units, unit), goOn)) return false
       if (layout.easyFrom !== null) kernel.beginReport(layout.easyFrom)
       kernel.usePatterns(0, layout.blockWidth)
       return this.simulateRegions(layout.nRegions, 0, goOn)
@@ -94,7 +95,7 @@ export class KernelThread {
     const range = Math.floor(unit / PARTS)
     const part = PARTS - 1 - (unit % PARTS)
     const edge = (at: number): number => Math.round((at * layout.nRegions) / PARTS)
-    this.load(0)
+    if (!this.load(0, goOn)) return false
     kernel.usePatterns(range === 0 ? 0 : ranges[range - 1], ranges[range])
     return this.simulateRegions(edge(part + 1), edge(part), goOn)
   }
@@ -119,9 +120,17 @@ export class KernelThread {
     return layout.twins.length === 0 ? report : withTwins(report, layout.twins)
   }
 
-  private load(block: number): void {
-    if (this.loaded !== block) this.kernel.loadBlock(block, this.layout.detectionLimit)
+  private load(block: number, goOn: () => boolean): boolean {
+    const { kernel, layout } = this
+    if (this.loaded === block) return true
+    this.loaded = -1
+    kernel.loadBlock(block, layout.detectionLimit)
+    for (let net = 0; net < layout.nNets; net += BUDGET) {
+      if (!goOn()) return false
+      kernel.evaluateGood(net, Math.min(layout.nNets, net + BUDGET))
+    }
     this.loaded = block
+    return true
   }
 
   private simulateRegions(from: number, to: number, goOn: () => boolean): boolean {

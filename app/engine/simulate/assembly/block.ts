@@ -38,7 +38,7 @@ export let narrow: bool = false
 
 let column: usize = 0
 
-/** Loads a block of patterns and computes the fault-free values of all nets under it. */
+/** Loads a block of patterns. Values of gates are those of an earlier block until they are evaluated. */
 export function loadBlock(block: u32, detectionLimit: u32): void {
   limit = detectionLimit
   blockStart = block * ((<u32>PLANE_BYTES) << 3)
@@ -47,8 +47,12 @@ export function loadBlock(block: u32, detectionLimit: u32): void {
   loadConstants()
   loadInputs()
   if (patternObserved != 0) loadMasks()
-  if (threeValued) evaluateGoodThreeValued()
-  else evaluateGoodTwoValued()
+}
+
+/** Computes the fault-free values of nets `from` to `to` − 1; those of all earlier ones must have been computed. */
+export function evaluateGood(from: u32, to: u32): void {
+  if (threeValued) evaluateGoodThreeValued(from, to)
+  else evaluateGoodTwoValued(from, to)
 }
 
 /** Restricts what is simulated to patterns `from` to `to` − 1 of the block. */

@@ -1,5 +1,5 @@
 export { patternsPerBlock } from './plane'
 export { attach, layoutVersion } from './memory'
-export { loadBlock, usePatterns } from './block'
+export { evaluateGood, loadBlock, usePatterns } from './block'
 export { beginReport, easyReported, hardReported } from './counting'
 export { simulateRegions, simulateTaps } from './simulate'

@@ -1,14 +1,12 @@
 /** Where the tables lie: byte addresses, read once from the headers that the packer writes. */
 
 /** Grows with every change of tables or headers, so that a driver refuses a kernel of another build. */
-const LAYOUT_VERSION: u32 = 4
+const LAYOUT_VERSION: u32 = 5
 
 export function layoutVersion(): u32 {
   return LAYOUT_VERSION
 }
 
-export let nNets: u32 = 0
-export let nRegions: u32 = 0
 export let nTaps: u32 = 0
 export let nConstants: u32 = 0
 export let nInputRows: u32 = 0
@@ -67,57 +65,64 @@ export let hardPlanes: usize = 0
 export let easyClasses: usize = 0
 export let easyCounts: usize = 0
 
+let cursor: usize = 0
+
+function next(): u32 {
+  cursor += 4
+  return load<u32>(cursor - 4)
+}
+
 /** Points the tables at one circuit's memory and at one thread's own part of it. */
 export function attach(shared: usize, own: usize): void {
-  nNets = load<u32>(shared, 0)
-  nRegions = load<u32>(shared, 4)
-  nTaps = load<u32>(shared, 8)
-  nConstants = load<u32>(shared, 12)
-  nInputRows = load<u32>(shared, 16)
-  nResponseRows = load<u32>(shared, 20)
-  nWatches = load<u32>(shared, 24)
-  rowBytes = load<u32>(shared, 28)
-  unknownDrivers = load<u32>(shared, 32)
-  gates = load<u32>(shared, 36)
-  inputs = load<u32>(shared, 40)
-  sites = load<u32>(shared, 44)
-  pins = load<u32>(shared, 48)
-  pinClasses = load<u32>(shared, 52)
-  fanouts = load<u32>(shared, 56)
-  watchSlots = load<u32>(shared, 60)
-  watchRowStart = load<u32>(shared, 64)
-  watchRows = load<u32>(shared, 68)
-  regions = load<u32>(shared, 72)
-  taps = load<u32>(shared, 76)
-  masks = load<u32>(shared, 80)
-  constants = load<u32>(shared, 84)
-  inputSlots = load<u32>(shared, 88)
-  patternValues = load<u32>(shared, 92)
-  patternUnknowns = load<u32>(shared, 96)
-  patternObserved = load<u32>(shared, 100)
-  counted = load<u32>(shared, 104)
-  matrix = load<u32>(shared, 108)
-  matrixRows = load<u32>(shared, 112)
+  cursor = shared
+  nTaps = next()
+  nConstants = next()
+  nInputRows = next()
+  nResponseRows = next()
+  nWatches = next()
+  rowBytes = next()
+  unknownDrivers = next()
+  gates = next()
+  inputs = next()
+  sites = next()
+  pins = next()
+  pinClasses = next()
+  fanouts = next()
+  watchSlots = next()
+  watchRowStart = next()
+  watchRows = next()
+  regions = next()
+  taps = next()
+  masks = next()
+  constants = next()
+  inputSlots = next()
+  patternValues = next()
+  patternUnknowns = next()
+  patternObserved = next()
+  counted = next()
+  matrix = next()
+  matrixRows = next()
 
-  values = load<u32>(own, 0)
-  observability = load<u32>(own, 4)
-  effects = load<u32>(own, 8)
-  known = load<u32>(own, 12)
-  knownPass = load<u32>(own, 16)
-  settled = load<u32>(own, 20)
-  queue = load<u32>(own, 24)
-  summary = load<u32>(own, 28)
-  undo = load<u32>(own, 32)
-  candidates = load<u32>(own, 36)
-  watchMasks = load<u32>(own, 40)
-  rowMasks = load<u32>(own, 44)
-  valid = load<u32>(own, 48)
-  scratch = load<u32>(own, 52)
-  first = load<u32>(own, 56)
-  detections = load<u32>(own, 60)
-  possibly = load<u32>(own, 64)
-  hardClasses = load<u32>(own, 68)
-  hardPlanes = load<u32>(own, 72)
-  easyClasses = load<u32>(own, 76)
-  easyCounts = load<u32>(own, 80)
+  cursor = own
+  values = next()
+  observability = next()
+  effects = next()
+  known = next()
+  knownPass = next()
+  settled = next()
+  queue = next()
+  summary = next()
+  undo = next()
+  candidates = next()
+  watchMasks = next()
+  rowMasks = next()
+  valid = next()
+  scratch = next()
+  first = next()
+  detections = next()
+  possibly = next()
+  hardClasses = next()
+  hardPlanes = next()
+  easyClasses = next()
+  easyCounts = next()
 }

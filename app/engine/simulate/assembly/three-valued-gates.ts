@@ -1,4 +1,4 @@
-import { gates, inputs, nNets, values } from './memory'
+import { gates, inputs, values } from './memory'
 import { AND_2, AND_N, SOURCE, XOR_2, classOf } from './two-valued-gates'
 import { PLANE_BYTES, PLANE_SHIFT, isWide, Wide } from './plane'
 
@@ -81,10 +81,10 @@ export function evaluateGate<W>(record: usize, op: u32, to: usize): void {
   }
 }
 
-/** Computes the fault-free values of all gates, three-valued, in the order of the nets. */
-export function evaluateGoodThreeValued(): void {
-  let record = gates
-  for (let slot: u32 = 0; slot < nNets; slot++, record += 16) {
+/** Computes the fault-free values of the gates among nets `start` to `stop` − 1, three-valued. */
+export function evaluateGoodThreeValued(start: u32, stop: u32): void {
+  for (let slot = start; slot < stop; slot++) {
+    const record = gates + (<usize>slot << 4)
     const op = load<u32>(record)
     if (classOf(op) != SOURCE) evaluateGate<Wide>(record, op, netValue(slot))
   }

@@ -1,4 +1,4 @@
-import { gates, inputs, masks, nNets, values } from './memory'
+import { gates, inputs, masks, values } from './memory'
 import { PLANE_BYTES, PLANE_SHIFT } from './plane'
 
 /**
@@ -67,12 +67,12 @@ export function xorN(input: usize, end: usize, inverts: v128, lane: usize): v128
   return odd
 }
 
-/** Computes the fault-free values of all gates, two-valued, in the order of the nets. */
-export function evaluateGoodTwoValued(): void {
+/** Computes the fault-free values of the gates among nets `start` to `stop` − 1, two-valued. */
+export function evaluateGoodTwoValued(start: u32, stop: u32): void {
   const base = values
-  let record = gates
-  let to = base
-  const end = gates + (<usize>nNets << 4)
+  let record = gates + (<usize>start << 4)
+  let to = base + (<usize>start << PLANE_SHIFT)
+  const end = gates + (<usize>stop << 4)
   for (; record < end; record += 16, to += PLANE_BYTES) {
     const op = load<u32>(record)
     const kind = classOf(op)
