@@ -516,7 +516,7 @@ export class PatternAssembler {
         if (Number.isNaN(time)) time = this.momentOf(run)
         level = levelAt(table, at, time)
       }
-      this.levels[row] = level
+      this.levels[row] = level === Drive.None ? Drive.Unknown : level
     }
   }
 

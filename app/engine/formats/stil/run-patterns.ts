@@ -6,7 +6,6 @@ import {
   COMPARE_MASK,
   Compare,
   DEFINED,
-  PULSE,
   compileTable,
   customaryTable,
   type CompiledTable,
@@ -57,9 +56,8 @@ export class PatternRunner {
   /** 1 where that character is pattern data: passed by a call, or given by a vector of the pattern itself. */
   readonly isData: Uint8Array
   table: CompiledTable
-  /** How many signals compare, and how many pulse, in the present state. */
+  /** How many signals compare in the present state. */
   compares = 0
-  pulses = 0
   /** Data passed for each signal: characters at text, from, from + stride …, that many; −1 where none were passed. */
   private readonly argumentText: string[]
   private readonly argumentFrom: Int32Array
@@ -612,7 +610,6 @@ export class PatternRunner {
     const was = table.flags[row + before]
     const is = table.flags[row + code]
     if (was !== is) {
-      if (((was ^ is) & PULSE) !== 0) this.pulses += (is & PULSE) === 0 ? -1 : 1
       if (((was ^ is) & DEFINED) !== 0) this.undefineds += (is & DEFINED) === 0 ? 1 : -1
       const compared = (was & COMPARE_MASK) !== Compare.None
       if (compared !== ((is & COMPARE_MASK) !== Compare.None)) this.compares += compared ? -1 : 1
@@ -630,16 +627,13 @@ export class PatternRunner {
     const { state, table } = this
     const { row, flags } = table
     let compares = 0
-    let pulses = 0
     let undefineds = 0
     for (let signal = 0; signal < state.length; signal++) {
       const flag = flags[row[signal] * CHARACTERS + state[signal]]
       if ((flag & COMPARE_MASK) !== 0) compares++
-      if ((flag & PULSE) !== 0) pulses++
       if ((flag & DEFINED) === 0) undefineds++
     }
     this.compares = compares
-    this.pulses = pulses
     this.undefineds = undefineds
   }
 

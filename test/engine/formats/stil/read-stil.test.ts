@@ -177,6 +177,21 @@ describe('what one time frame can not show', () => {
     expect(value!.report.expects.unusedOtherInputs).toBe(2)
   })
 
+  it('takes a pin that lets go and one that only compares for the same unknown input', () => {
+    const waveforms = `CK { 01P { '0ns' D/U/D; '50ns' D/U/U; '80ns' D/U/D; } } B { 01ZX { '0ns' D/U/Z/X; } }
+      'SE + SI + A' { 01 { '0ns' D/U; } } outs { LHX { '40ns' L/H/X; } }`
+    const procedures = `load { W t; C { CK=0; SE=1; } Shift { V { CK=P; SI=#; SO=#; } } }
+      capture { W t; V { CK=0; SE=0; pi=##; po=##; } V { CK=P; pi=##; po=XX; } }`
+    const patterns = patternsOf(
+      smallStil('Call load { SI=100; } Call capture { pi=1Z1X; po=XH; } Call load { SO=XHH; }', {
+        waveforms,
+        procedures,
+      }),
+    )
+    expect(inputsOf(patterns)).toEqual(['1X001'])
+    expect(expectsOf(patterns)).toEqual(['-HHH-'])
+  })
+
   const twoClocks = {
     signals: 'CK In; CL In; SE In; SI In; A In; B In; Y Out; Z Out; SO Out;',
     waveforms: `'CK + CL' { 01P { '0ns' D/U/D; '50ns' D/U/U; '80ns' D/U/D; } }
