@@ -91,13 +91,14 @@ export function createRuns(options: {
     const startedAt = performance.now()
     const seconds = (): number => before + (performance.now() - startedAt) / 1000
     const segments = await storedSegments(store, runId)
-    const keep = ({ segment, parts, patternsDone, figures }: SimulateJob['part']): void => {
+    store.packed.removeFrom({ runId }, 'segment', segments.length * PARTS_PER_SEGMENT)
+    const keep = ({ segment, part, bytes, standing }: SimulateJob['part']): void => {
       if (session.current() !== store) return
       store.together(() => {
-        parts.forEach((bytes, part) =>
-          store.packed.add({ runId }, 'segment', segment * PARTS_PER_SEGMENT + part, bytes),
-        )
-        stand(store, runId, { patternsDone, figures, seconds: seconds() })
+        store.packed.add({ runId }, 'segment', segment * PARTS_PER_SEGMENT + part, bytes)
+        if (standing === null) return
+        store.runs.setSegments(runId, segment + 1)
+        stand(store, runId, { ...standing, seconds: seconds() })
       })
     }
     let lost: unknown = null

@@ -39,7 +39,8 @@ export function storedPatterns(store: ProjectStore, patternSetId: number): Uint8
 /** Returns what a run has detected so far: its segments in order, each in parts. Other work goes on between them. */
 export async function storedSegments(store: ProjectStore, runId: number): Promise<Uint8Array[][]> {
   const segments: Uint8Array[][] = []
-  for (;;) {
+  const whole = store.runs.segments(runId)
+  while (segments.length < whole) {
     const parts: Uint8Array[] = []
     for (;;) {
       const part = store.packed.part({ runId }, 'segment', segments.length * PARTS_PER_SEGMENT + parts.length)
@@ -47,9 +48,9 @@ export async function storedSegments(store: ProjectStore, runId: number): Promis
       parts.push(part)
       await new Promise(setImmediate)
     }
-    if (parts.length === 0) return segments
     segments.push(parts)
   }
+  return segments
 }
 
 /** Returns the files behind a run, as reports list them. */

@@ -20,7 +20,7 @@ export function compressJob({ files }: CompressJob['input']): DeskAnswer<Compres
     name,
     sizeBytes: bytes.length,
     sha256: createHash('sha256').update(bytes).digest('hex'),
-    gzip: new Uint8Array(isGzip(bytes) ? bytes : gzipSync(bytes, { level: 6 })),
+    gzip: new Uint8Array(isGzip(bytes) ? bytes : gzipSync(bytes, { level: 1 })),
   }))
   return new DeskAnswer(
     kept,

@@ -28,6 +28,8 @@ type Waiting = {
   reject(error: Error): void
 }
 
+/** Whoever cancels is answered after so long, even while the desk is still busy putting things down. */
+const ANSWER_MS = 100
 /** A job that does not stop by itself so long after it was asked to is stopped together with its thread. */
 const GRACE_MS = 2000
 
@@ -35,17 +37,22 @@ const GRACE_MS = 2000
 export function createDesk(script: URL, name: string, threads: DeskThreads): Desk {
   let worker: Worker | null = null
   let jobs = 0
+  /** Jobs whose outcome somebody waits for, and jobs that the thread has not reported the end of. */
   const waiting = new Map<number, Waiting>()
+  const busy = new Set<number>()
 
   const settle = (jobId: number, end: (job: Waiting) => void): void => {
     const job = waiting.get(jobId)
     waiting.delete(jobId)
-    if (waiting.size === 0) worker?.unref()
     if (job !== undefined) end(job)
   }
 
   const hear = (message: FromDesk): void => {
     const { jobId } = message
+    if (message.type !== 'progress' && message.type !== 'part') {
+      busy.delete(jobId)
+      if (busy.size === 0) worker?.unref()
+    }
     switch (message.type) {
       case 'progress':
         return waiting.get(jobId)?.options.onProgress?.(message.progress)
@@ -71,6 +78,7 @@ export function createDesk(script: URL, name: string, threads: DeskThreads): Des
     const lose = (cause: unknown): void => {
       if (worker !== started) return
       worker = null
+      busy.clear()
       for (const jobId of [...waiting.keys()]) {
         settle(jobId, (job) => job.reject(new AppError('worker-lost', undefined, undefined, cause)))
       }
@@ -93,17 +101,19 @@ export function createDesk(script: URL, name: string, threads: DeskThreads): Des
       const stop = (): void => {
         Atomics.store(new Int32Array(cancel), 0, 1)
         onto.postMessage({ type: 'cancel', jobId } satisfies ToDesk)
-        const timer = setTimeout(() => {
-          if (!waiting.has(jobId)) return
-          settle(jobId, (job) => job.reject(new AppError('cancelled')))
-          void onto.terminate()
-        }, GRACE_MS)
-        timer.unref()
+        const giveUp = (): void => settle(jobId, (job) => job.reject(new AppError('cancelled')))
+        // Jobs are done in their order: the oldest that has not ended is the one at work.
+        const endThread = (): void => {
+          if (Math.min(...busy) === jobId) void onto.terminate()
+        }
+        setTimeout(giveUp, ANSWER_MS).unref()
+        setTimeout(endThread, GRACE_MS).unref()
       }
       signal?.addEventListener('abort', stop, { once: true })
       const outcome = new Promise<DeskJobs[typeof name]['output']>((resolve, reject) => {
         waiting.set(jobId, { options: options as DeskOptions<DeskJobName>, resolve, reject })
       })
+      busy.add(jobId)
       onto.postMessage({ type: 'run', jobId, name, input, cancel } satisfies ToDesk, [...transfer])
       return outcome.finally(() => signal?.removeEventListener('abort', stop))
     },

@@ -21,12 +21,16 @@ export type SimulateJob = {
     readonly segments: readonly (readonly Uint8Array[])[]
   }
   readonly output: { readonly figures: NonNullable<Run['figures']> }
-  /** A segment that has been simulated: with it a later attempt goes on from there. */
+  /** One part of a segment that has been simulated. With the last one a later attempt can go on from its end. */
   readonly part: {
     readonly segment: number
-    readonly parts: readonly Uint8Array<ArrayBuffer>[]
-    readonly patternsDone: number
-    readonly figures: NonNullable<Run['figures']>
+    readonly part: number
+    readonly bytes: Uint8Array<ArrayBuffer>
+    /** How the run stands after the segment; null for all parts but the last. */
+    readonly standing: {
+      readonly patternsDone: number
+      readonly figures: NonNullable<Run['figures']>
+    } | null
   }
 }
 
@@ -87,10 +91,11 @@ export async function simulateJob(
     sum.add(finished)
     done = to
     const parts = packSegment(finished)
-    context.send(
-      { segment, parts, patternsDone: done, figures: runFigures(faults, sum.profile()) },
-      parts.map(({ buffer }) => buffer),
-    )
+    const standing = { patternsDone: done, figures: runFigures(faults, sum.profile()) }
+    parts.forEach((bytes, part) => {
+      const isLast = part === parts.length - 1
+      context.send({ segment, part, bytes, standing: isLast ? standing : null }, [bytes.buffer])
+    })
     const seconds = (performance.now() - startedAt) / 1000
     blocks = Math.max(1, Math.min(4 * blocks, Math.floor((blocks * SEGMENT_SECONDS) / seconds)))
   }

@@ -92,6 +92,7 @@ CREATE TABLE run (
   patterns_done INTEGER NOT NULL DEFAULT 0 CHECK (patterns_done >= 0),
   patterns_total INTEGER NOT NULL CHECK (patterns_total >= 0),
   seconds REAL NOT NULL DEFAULT 0,
+  segments INTEGER NOT NULL DEFAULT 0 CHECK (segments >= 0),
   figures_json TEXT CHECK (json_valid(figures_json)),
   reason TEXT,
   engine TEXT NOT NULL,
@@ -122,12 +123,13 @@ CREATE TABLE budget (
 CREATE UNIQUE INDEX budget_name ON budget (product_id, name) WHERE deleted_token IS NULL;
 CREATE UNIQUE INDEX budget_in_use ON budget (product_id) WHERE in_use = 1 AND deleted_token IS NULL;
 
--- Columns of numbers, packed: patterns as read, what a run has detected so far (segment) and in the end (result).
+-- Columns of numbers, packed: patterns as read, and what each segment of a run's patterns detects. Of a run's parts those
+-- of its first run.segments segments count.
 CREATE TABLE packed (
   id INTEGER PRIMARY KEY,
   pattern_set_id INTEGER REFERENCES pattern_set (id) ON DELETE CASCADE,
   run_id INTEGER REFERENCES run (id) ON DELETE CASCADE,
-  kind TEXT NOT NULL CHECK (kind IN ('patterns', 'segment', 'result')),
+  kind TEXT NOT NULL CHECK (kind IN ('patterns', 'segment')),
   part INTEGER NOT NULL CHECK (part >= 0),
   bytes BLOB NOT NULL,
   CHECK ((pattern_set_id IS NULL) <> (run_id IS NULL))

@@ -1,7 +1,7 @@
 import type { Database } from 'better-sqlite3'
 
 export type PackedOwner = { readonly patternSetId: number } | { readonly runId: number }
-export type PackedKind = 'patterns' | 'segment' | 'result'
+export type PackedKind = 'patterns' | 'segment'
 
 export type PackedRepository = ReturnType<typeof createPackedRepository>
 
@@ -14,7 +14,7 @@ export function createPackedRepository(db: Database) {
   )
   const count = db.prepare<[object], number>(`SELECT COUNT(*) FROM packed WHERE ${owner}`).pluck()
   const one = db.prepare<[object], Buffer>(`SELECT bytes FROM packed WHERE ${owner} AND part = @part`).pluck()
-  const remove = db.prepare<[object]>(`DELETE FROM packed WHERE ${owner}`)
+  const removeFrom = db.prepare<[object]>(`DELETE FROM packed WHERE ${owner} AND part >= @part`)
   const key = (of: PackedOwner, kind: PackedKind): object => ({
     patternSetId: null,
     runId: null,
@@ -31,8 +31,9 @@ export function createPackedRepository(db: Database) {
       const bytes = one.get({ ...key(of, kind), part })
       return bytes === undefined ? null : new Uint8Array(bytes)
     },
-    remove(of: PackedOwner, kind: PackedKind): void {
-      remove.run(key(of, kind))
+    /** Removes this part and all after it. */
+    removeFrom(of: PackedOwner, kind: PackedKind, part: number): void {
+      removeFrom.run({ ...key(of, kind), part })
     },
   }
 }

@@ -51,6 +51,8 @@ export function createRunRepository(db: Database) {
        reason = @reason, ended_at_ms = @endedAtMs
      WHERE id = @id`,
   )
+  const segments = db.prepare<[number], number>('SELECT segments FROM run WHERE id = ?').pluck()
+  const setSegments = db.prepare<[number, number]>('UPDATE run SET segments = ? WHERE id = ?')
   const interrupt = db.prepare(
     "UPDATE run SET state = 'interrupted', reason = ? WHERE state IN ('queued', 'running')",
   )
@@ -67,6 +69,11 @@ export function createRunRepository(db: Database) {
     stand(id: number, standing: RunStanding): void {
       const { figures } = standing
       update.run({ ...standing, figures: figures === null ? null : JSON.stringify(figures), id })
+    },
+    /** How many segments of its patterns are whole in the file. */
+    segments: (id: number): number => segments.get(id) ?? 0,
+    setSegments(id: number, count: number): void {
+      setSegments.run(count, id)
     },
     /** Marks what a program that ended left queued or running; returns how many there were. */
     interruptAll: (reason: string): number => interrupt.run(reason).changes,
