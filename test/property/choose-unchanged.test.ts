@@ -68,6 +68,18 @@ describe('changes that change nothing that counts', () => {
   })
 })
 
+test('costs that are not whole give the same ceiling as the whole costs that they are multiples of', () => {
+  const costs = Float64Array.from({ length: 120 }, (_, pattern) => 1 + (pattern % 3))
+  const budgets = Float64Array.from({ length: 60 }, (_, at) => at + 1)
+  const whole = ceilingOf({ ...original, costs }, budgets)?.bounds
+  const tenths = ceilingOf(
+    { ...original, costs: costs.map((cost) => cost / 10) },
+    budgets.map((budget) => budget / 10),
+  )?.bounds
+  for (const [at, bound] of (whole ?? []).entries())
+    expect(Math.abs(bound - (tenths?.[at] ?? NaN))).toBeLessThanOrEqual(2)
+})
+
 describe('a thousand random choices stay under the ceiling', () => {
   const random = createRandom(29)
   const costs = Float64Array.from({ length: 120 }, () => 5 + random.below(40))

@@ -1,5 +1,5 @@
 import type { ChoiceRules } from './choice-rules.ts'
-import type { ChoiceTask } from './choice-task.ts'
+import { type ChoiceTask, withSlack } from './choice-task.ts'
 import { cutPlaces } from './cut-places.ts'
 import { detectedWeight } from './detected-weight.ts'
 import { Gains } from './gains.ts'
@@ -31,7 +31,7 @@ export function bestPrefixOrSingle(task: ChoiceTask, order: Order, budget: numbe
   }
   let length = -1
   let spent = 0
-  for (let k = 0; k <= order.chosen && spent <= budget; k++) {
+  for (let k = 0; k <= order.chosen && spent <= withSlack(budget); k++) {
     if (mayCut[k] === 1) length = k
     if (k < order.chosen) spent += costs[order.sequence[k]]
   }
@@ -61,7 +61,7 @@ export function bestPrefixOrSingle(task: ChoiceTask, order: Order, budget: numbe
       continue
     const added = kept.missingFor(unit).flatMap((one) => patternsOf(rules, one))
     const cost = keptCost + costOf(added)
-    if (cost > budget) continue
+    if (cost > withSlack(budget)) continue
     if (kept.isReady(unit)) steepest = unit
     const patterns = Uint32Array.of(...keptPatterns, ...added)
     const weight = detectedWeight(task, patterns)

@@ -24,6 +24,9 @@ export type CeilingOptions = {
 
 const USUAL_EFFORT = 3e9
 
+/** Sums of costs that are not whole may round by less than this part; what takes exactly the budget has to fit. */
+const ROUNDING_SLACK = 1e-11
+
 /** Up to so many budgets each get multipliers of their own; of more, those at least an eighth apart do. */
 const MANY_BUDGETS = 100
 const ANCHOR_RATIO = 1.125
@@ -49,7 +52,9 @@ export function ceilingOf(
   const problem = buildDualProblem(task, () => onProgress(0, effort))
   if (problem === null || !onProgress(0, effort)) return null
   const dual = new LagrangianDual(problem)
-  const free = budgets.map((budget) => budget - problem.keptCost)
+  const slack =
+    problem.cost.every(Number.isInteger) && Number.isInteger(problem.keptCost) ? 0 : ROUNDING_SLACK
+  const free = budgets.map((budget) => budget * (1 + slack) - problem.keptCost)
   const floor = greedyFloor(problem, () => onProgress(0, effort))
   if (floor === null) return null
 

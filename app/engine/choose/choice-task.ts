@@ -20,3 +20,8 @@ export type ChoiceProgress = (done: number, total: number) => boolean
 export function unitCosts(nPatterns: number): Float64Array {
   return new Float64Array(nPatterns).fill(1)
 }
+
+/** Returns a budget with slack for rounding, so that what takes exactly the limit fits whatever the order of the sum. */
+export function withSlack(budget: number): number {
+  return budget * (1 + 1e-12)
+}

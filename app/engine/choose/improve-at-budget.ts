@@ -1,5 +1,5 @@
 import { ceilingOf } from './ceiling.ts'
-import type { ChoiceProgress, ChoiceTask } from './choice-task.ts'
+import { type ChoiceProgress, type ChoiceTask, withSlack } from './choice-task.ts'
 import { detectedWeight } from './detected-weight.ts'
 import { buildDualProblem, type DualProblem } from './dual-problem.ts'
 import { MipRows, type MipSolver } from './mip.ts'
@@ -48,7 +48,8 @@ export function improveAtBudget(
   const problem = ceiling === null ? null : buildDualProblem(settled.task, goOn)
   if (ceiling === null || problem === null) return null
 
-  const swaps = new SwapSearch(problem, settled.columnsOf(problem), budget - problem.keptCost, settled.isFree)
+  const free = withSlack(budget) - problem.keptCost
+  const swaps = new SwapSearch(problem, settled.columnsOf(problem), free, settled.isFree)
   swaps.improve(Math.floor(ceiling * problem.weightScale) - problem.keptWeight, goOn)
   let columns = swaps.chosen()
   let bound = ceiling
@@ -64,7 +65,7 @@ export function improveAtBudget(
   const isOpen = detectedWeight(task, patternsOf(columns)) < bound
   const isSmall = problem.nColumns > 0 && problem.rowStart[problem.nRows] <= mostDetections
   if (solveMip && isOpen && isSmall && goOn()) {
-    const exact = solveExactly(problem, columns, budget - problem.keptCost, settled.isFree, solveMip, goOn)
+    const exact = solveExactly(problem, columns, free, settled.isFree, solveMip, goOn)
     columns = exact.columns
     if (settled.isWholeTask) bound = Math.min(bound, (problem.keptWeight + exact.bound) / problem.weightScale)
   }

@@ -119,7 +119,10 @@ test('a cut lies between groups and after what is kept', () => {
 test('an order by hand gives way only to constraints', () => {
   const { rules } = compile(6, { keep: [2], together: [[3, 4]], leaveOut: [6], before: [[1, 5]] })
   if (rules === null) throw new Error('the constraints contradict')
-  const order = handOrder(rules, [5, 4, 3].map((one) => one - 1))
+  const order = handOrder(
+    rules,
+    [5, 4, 3].map((one) => one - 1),
+  )
   expect([...order.sequence].map((pattern) => pattern + 1)).toEqual([2, 1, 5, 3, 4, 6])
   expect(order).toMatchObject({ name: 'by-hand', chosen: 5, runs: 5 })
 })
