@@ -46,25 +46,37 @@ export async function readNetlistInput(
   if (files.sources.length < input.files.length || libraryFiles.sources.length < input.libraries.length) {
     return stopped()
   }
-  const libraries: CellLibrary[] = []
-  for (const source of libraryFiles.sources) {
-    const library = readLiberty(source, { onProgress })
-    diagnostics.push(...library.diagnostics)
-    if (library.value === null) return stopped()
-    libraries.push(library.value)
-  }
-  const { value, diagnostics: found } = readNetlist(files.sources, {
-    libraries,
-    testPins: input.testPins,
-    assumeScanned: input.assumeScanned,
-    onProgress,
-    ...(input.top === null ? {} : { top: input.top }),
-  })
+  const reading = netlistOf(files.sources, libraryFiles.sources, input, onProgress)
   return {
     sources: files.sources,
     libraries: libraryFiles.sources,
-    reading: { value, diagnostics: [...diagnostics, ...found] },
+    reading: { value: reading.value, diagnostics: [...diagnostics, ...reading.diagnostics] },
   }
+}
+
+/** Reads a netlist and its cell libraries from their texts. */
+export function netlistOf(
+  sources: readonly Source[],
+  librarySources: readonly Source[],
+  { top, testPins, assumeScanned }: Pick<NetlistInput, 'top' | 'testPins' | 'assumeScanned'>,
+  onProgress: ReadingProgress,
+): Reading<Netlist> {
+  const diagnostics: Diagnostic[] = []
+  const libraries: CellLibrary[] = []
+  for (const source of librarySources) {
+    const library = readLiberty(source, { onProgress })
+    diagnostics.push(...library.diagnostics)
+    if (library.value === null) return { value: null, diagnostics }
+    libraries.push(library.value)
+  }
+  const { value, diagnostics: found } = readNetlist(sources, {
+    libraries,
+    testPins,
+    assumeScanned,
+    onProgress,
+    ...(top === null ? {} : { top }),
+  })
+  return { value, diagnostics: [...diagnostics, ...found] }
 }
 
 /** Reads a netlist that was read before and its faults; the last few stay at hand under their key. */

@@ -2,7 +2,7 @@ import { gunzipSync, gzipSync } from 'node:zlib'
 import { decodeWire, encodeWire } from '../contract/wire.ts'
 
 /** The size of the parts in which packed values are stored, so that none holds up whoever writes or reads it. */
-const PART_BYTES = 4 * 1024 * 1024
+const PART_BYTES = 1024 * 1024
 
 /** Returns a value of plain data and columns as compressed bytes, cut into parts. */
 export function packParts(value: unknown): Uint8Array<ArrayBuffer>[] {

@@ -51,7 +51,7 @@ export async function readPatternsJob(
     return new DeskAnswer({ account: null, diagnostics: placed, packed: [] })
   }
   context.report({ phase: 'Comparing expected values', share: null })
-  const format = patternFormatOf(first, netlist.circuit).name
+  const format = patternFormatOf(first).name
   const account = accountOf(reading.value, netlist, format)
   const packed = packPatterns(reading.value.patterns)
   return new DeskAnswer(

@@ -63,6 +63,15 @@ export async function readSourceBytes(
   return readStream(Readable.from(parts()), name, bytes.length, options)
 }
 
+/** The same for a stream whose length is not known, such as standard input. */
+export async function readSourceStream(
+  stream: Readable,
+  name: string,
+  options: SourceFileOptions = {},
+): Promise<Reading<Source>> {
+  return readStream(stream, name, 0, options)
+}
+
 class Stopped extends Error {}
 class TooLarge extends Error {}
 
