@@ -1,30 +1,65 @@
+import { AppError } from '../contract/errors.ts'
+import { closestName } from '../engine/source/closest-name.ts'
+import { readArguments, UsageError } from './arguments.ts'
+import { ExitCode } from './command.ts'
+import { COMMANDS, type CommandEntry, type PlainEntry } from './commands.ts'
 import type { Io } from './io.ts'
+import { openTerminal, type Terminal } from './terminal.ts'
 
-type Command = (args: readonly string[], io: Io) => Promise<number>
-
-/** Every command, loaded when it is asked for. */
-const COMMANDS: Readonly<Record<string, () => Promise<Command>>> = {
-  circuit: async () => inProgress('circuit'),
-  coverage: async () => inProgress('coverage'),
-  plan: async () => inProgress('plan'),
-  compare: async () => inProgress('compare'),
-  serve: async () => (await import('./serve.ts')).serve,
-}
+const HELP = new Set(['--help', '-h'])
 
 /** Runs one command of the command line; returns the exit code. */
 export async function main(argv: readonly string[], io: Io): Promise<number> {
-  const [name = 'help', ...args] = argv
-  if (!Object.hasOwn(COMMANDS, name)) {
-    io.stderr.write(`There is no command "${name}". There are: ${Object.keys(COMMANDS).join(', ')}.\n`)
-    return 2
+  const [name, ...args] = argv
+  const terminal = openTerminal(io)
+  try {
+    if (name === undefined || name === 'help' || HELP.has(name)) return await help(args[0] ?? null, io)
+    const entry = entryOf(name)
+    if (args.some((arg) => HELP.has(arg))) return await help(name, io)
+    if ('loadPlain' in entry) return await (await entry.loadPlain())(args, io)
+    const command = await entry.load()
+    return await command.run(readArguments(args, command.options), terminal, io)
+  } catch (error) {
+    return exitCodeOf(error, name ?? 'help', terminal)
+  } finally {
+    terminal.clear()
   }
-  const command = await COMMANDS[name]?.()
-  return command === undefined ? 70 : command(args, io)
 }
 
-function inProgress(name: string): Command {
-  return async (_args, io) => {
-    io.stderr.write(`The command "${name}" is being written.\n`)
-    return 70
+function entryOf(name: string): CommandEntry | PlainEntry {
+  const entry = Object.hasOwn(COMMANDS, name) ? COMMANDS[name] : undefined
+  if (entry !== undefined) return entry
+  const names = Object.keys(COMMANDS)
+  const close = closestName(name, names)
+  throw new UsageError(
+    `There is no command "${name}".`,
+    close === null ? `Commands: ${names.join(', ')}.` : `Did you mean "${close}"?`,
+  )
+}
+
+async function help(name: string | null, io: Io): Promise<number> {
+  const { commandHelp, overview } = await import('./help.ts')
+  const entry = name === null || HELP.has(name) ? null : entryOf(name)
+  const isListed = name !== null && entry !== null && 'load' in entry
+  io.stdout.write(isListed ? commandHelp(name, await entry.load()) : overview())
+  return ExitCode.Done
+}
+
+/** Says what went wrong, unless it was said when it was found. */
+function exitCodeOf(error: unknown, name: string, terminal: Terminal): number {
+  if (error instanceof UsageError) {
+    terminal.fail(error.message, error.hint ?? `"tallycut help ${name}" tells all options.`)
+    return ExitCode.BadInput
   }
+  if (!(error instanceof AppError) || error.code === 'internal') {
+    const trace = error instanceof Error ? (error.stack ?? error.message) : String(error)
+    terminal.fail('A fault in Tallycut itself.', `Please report it with the lines that follow.\n${trace}`)
+    return ExitCode.Internal
+  }
+  if (error.code === 'cancelled') {
+    terminal.say('Interrupted.')
+    return ExitCode.Interrupted
+  }
+  if (error.code !== 'bad-file') terminal.fail(error.message)
+  return error.code === 'out-of-reach' ? ExitCode.No : ExitCode.BadInput
 }

@@ -1,4 +1,3 @@
-import type { Circuit } from '../circuit/circuit.ts'
 import type { Netlist } from '../circuit/netlist.ts'
 import { joinPatternSets } from '../simulate/pattern-set-builder.ts'
 import type { PatternSet } from '../simulate/pattern-set.ts'
@@ -34,7 +33,7 @@ export type PatternFormat = {
   readonly name: string
   readonly label: string
   readonly extensions: readonly string[]
-  looksLike(head: string, circuit: Circuit): boolean
+  looksLike(head: string): boolean
   read(source: Source, netlist: Netlist, options: PatternOptions): Reading<PatternReading>
 }
 
@@ -89,13 +88,12 @@ export const PATTERN_FORMATS: readonly PatternFormat[] = [
 
 /** The format of a netlist, by its content, else by its file name; `.bench` where neither tells. */
 export function netlistFormatOf(source: Source): NetlistFormat {
-  return formatOf(source, NETLIST_FORMATS, (format, head) => format.looksLike(head)) ?? NETLIST_FORMATS[0]
+  return formatOf(source, NETLIST_FORMATS) ?? NETLIST_FORMATS[0]
 }
 
 /** The format of a pattern file, by its content, else by its file name; vectors where neither tells. */
-export function patternFormatOf(source: Source, circuit: Circuit): PatternFormat {
-  const byContent = (format: PatternFormat, head: string): boolean => format.looksLike(head, circuit)
-  return formatOf(source, PATTERN_FORMATS, byContent) ?? PATTERN_FORMATS[PATTERN_FORMATS.length - 1]
+export function patternFormatOf(source: Source): PatternFormat {
+  return formatOf(source, PATTERN_FORMATS) ?? PATTERN_FORMATS[PATTERN_FORMATS.length - 1]
 }
 
 /** Reads one netlist from its files. A format that takes one file reports the others as left out. */
@@ -123,9 +121,7 @@ export function readPatterns(
   netlist: Netlist,
   options: PatternOptions = {},
 ): Reading<PatternReading> {
-  const readings = sources.map((source) =>
-    patternFormatOf(source, netlist.circuit).read(source, netlist, options),
-  )
+  const readings = sources.map((source) => patternFormatOf(source).read(source, netlist, options))
   const diagnostics = readings.flatMap((reading) => reading.diagnostics)
   const values = readings.flatMap((reading) => (reading.value === null ? [] : [reading.value]))
   if (values.length < sources.length) return { value: null, diagnostics }
@@ -138,15 +134,14 @@ export function readPatterns(
   }
 }
 
-function formatOf<F extends { readonly extensions: readonly string[] }>(
+function formatOf<F extends NetlistFormat | PatternFormat>(
   source: Source,
   formats: readonly F[],
-  looksLike: (format: F, head: string) => boolean,
 ): F | undefined {
   const head = source.text.slice(0, HEAD)
   const extension = source.name.replace(/\.gz$/i, '').split('.').pop()?.toLowerCase() ?? ''
   const named = formats.find((format) => format.extensions.includes(extension))
-  return formats.find((format) => looksLike(format, head)) ?? named
+  return formats.find((format) => format.looksLike(head)) ?? named
 }
 
 function firstLine(head: string): string {

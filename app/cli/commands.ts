@@ -1,0 +1,29 @@
+import type { Command } from './command.ts'
+import type { Io } from './io.ts'
+
+/** A command in the list: what it does, in a line, and how it is loaded once it is asked for. */
+export type CommandEntry = {
+  readonly summary: string
+  readonly load: () => Promise<Command>
+}
+
+/** A command that reads its own arguments and has no help of its own. */
+export type PlainEntry = {
+  readonly summary: string
+  readonly loadPlain: () => Promise<(args: readonly string[], io: Io) => Promise<number>>
+}
+
+export const COMMANDS: Readonly<Record<string, CommandEntry | PlainEntry>> = {
+  circuit: {
+    summary: 'reads a netlist; counts its gates, lines and faults',
+    load: async () => (await import('./circuit.ts')).circuit,
+  },
+  coverage: {
+    summary: 'simulates patterns; fault coverage and its curve',
+    load: async () => (await import('./coverage.ts')).coverage,
+  },
+  serve: {
+    summary: 'the application on loopback, in a browser',
+    loadPlain: async () => (await import('./serve.ts')).serve,
+  },
+}

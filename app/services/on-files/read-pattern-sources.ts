@@ -1,0 +1,22 @@
+import type { Netlist } from '../../engine/circuit/netlist.ts'
+import { readPatterns, type PatternReading } from '../../engine/formats/registry.ts'
+import type { Source } from '../../engine/source/source.ts'
+import { readingProgress, valueOf, type FileWork } from './file-work.ts'
+import { includedSource } from './included-source.ts'
+
+/** Reads the texts of pattern files for a netlist, one after the other. Throws as valueOf does. */
+export function readPatternSources(
+  sources: readonly Source[],
+  netlist: Netlist,
+  work: FileWork,
+): PatternReading {
+  const included: Source[] = []
+  const include = (name: string): Source | null => {
+    const source = sources[0] && includedSource(sources[0], name)
+    if (source) included.push(source)
+    return source ?? null
+  }
+  const onProgress = readingProgress(work, 'Reading the patterns')
+  const reading = readPatterns(sources, netlist, { include, onProgress })
+  return valueOf(work, reading, [...sources, ...included])
+}
