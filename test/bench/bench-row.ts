@@ -5,8 +5,8 @@ export type RowOrder = {
   readonly nPatterns: number
   readonly threads: number
   readonly runs: number
-  /** Where the native second opinion is, or null. */
-  readonly yardstick: string | null
+  /** Whether to run the native second opinion in turn. */
+  readonly yardstick: boolean
 }
 
 /** Medians over the runs. Ratios are ours to theirs in pairs a second: above 1 we are faster. */
@@ -22,7 +22,7 @@ export type RowResult = {
   readonly toOneThread: number | null
   /** Pairs a second of ours over those of the slow simulation, which ran on a sample of classes and patterns. */
   readonly toTwin: number
-  /** 1 where every fault's first pattern and count equal the yardstick's; null without it. */
+  /** True where every fault's first pattern and count equal the yardstick's; null without it. */
   readonly agrees: boolean | null
 }
 

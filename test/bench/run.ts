@@ -7,6 +7,7 @@ import { parseArgs } from 'node:util'
 import { createRandom } from '../../app/engine/source/random.ts'
 import { median, type RowOrder, type RowResult } from './bench-row.ts'
 import { CIRCUITS, MILLION } from './circuits.ts'
+import { hasYardstick } from './yardstick.ts'
 
 const HELP = `Measures the simulation kernel: npm run bench -- [options]
 
@@ -37,8 +38,6 @@ const MODES: readonly RowOrder['mode'][] = [
   'matrix',
 ]
 const root = join(import.meta.dirname, '../..')
-const yardstickPath = join(root, '../shared/tools/yardstick')
-const yardstick = existsSync(yardstickPath) ? yardstickPath : null
 
 type Row = RowOrder & RowResult
 type CommandRow = {
@@ -57,7 +56,7 @@ function bench(): void {
   const chosen =
     values.circuit ??
     (values.quick ? ['multiplier-24', names.includes('b21') ? 'b21' : 'random-20000'] : names)
-  const shared = { nPatterns, runs, yardstick }
+  const shared = { nPatterns, runs, yardstick: hasYardstick }
   const orders: RowOrder[] = chosen.flatMap((circuit) => [
     ...MODES.map((mode) => ({ ...shared, circuit, mode, threads: 1 })),
     { ...shared, circuit, mode: 'all counted' as const, threads: 2 },
@@ -70,7 +69,7 @@ function bench(): void {
       mode: 'first detection',
       threads: 2,
       runs: 1,
-      yardstick: null,
+      yardstick: false,
     })
   }
   const rows: Row[] = []
@@ -178,7 +177,7 @@ function tableOf(rows: readonly Row[], commands: readonly CommandRow[]): string 
     row.seconds.toFixed(2),
     row.peakMegabytes?.toFixed(0) ?? '–',
   ])
-  const note = yardstick === null ? 'No native second opinion was present; its columns are empty.\n\n' : ''
+  const note = !hasYardstick ? 'No native second opinion was present; its columns are empty.\n\n' : ''
   return (
     `# Simulation kernel\n\n${machine()}. Medians; random patterns; faults and pairs uncollapsed.\n\n${note}` +
     markdown(head, body) +
