@@ -135,7 +135,7 @@ async function patternFile(
   return {
     bytes: joined(parts),
     mediaType: format === 'patterns-csv' ? 'text/csv; charset=utf-8' : 'text/plain; charset=utf-8',
-    warnings: exportWarnings(selection, format === 'stil' ? 'stil' : 'plain'),
+    warnings: exportWarnings(selection),
   }
 }
 

@@ -44,11 +44,8 @@ export function expectedSign(
   return bitAt(response.one, row, pattern) ? 'H' : bitAt(response.zero, row, pattern) ? 'L' : 'X'
 }
 
-/**
- * What a user must know before an order and cut are exported, in sentences; empty where nothing is lost. Plain formats,
- * vectors and CSV, have no masks and no patterns without a capture.
- */
-export function exportWarnings(selection: ExportSelection, format: 'stil' | 'plain'): string[] {
+/** What a user must know before an order and cut are exported, in sentences; empty where nothing is lost. */
+export function exportWarnings(selection: ExportSelection): string[] {
   const { patterns, sequence } = selection
   const warnings: string[] = []
   const left = sequence.length - writablePatterns(selection).length
@@ -72,23 +69,8 @@ export function exportWarnings(selection: ExportSelection, format: 'stil' | 'pla
       `${moved === 1 ? '1 pattern depends' : `${moved} patterns depend`} on the state that the pattern before left, and no longer ${moved === 1 ? 'follows' : 'follow'} it: what ${moved === 1 ? 'it expects' : 'they expect'} may not hold.`,
     )
   }
-  if (format === 'plain' && hasMask(selection)) {
-    warnings.push(
-      'Some values are masked, and this format has no masks: read back, those outputs count as observed, and the coverage can come out too high.',
-    )
-  }
   if (patterns.expected === null && !selection.response) {
     warnings.push('The set expects nothing and no response was computed: the export compares no output.')
   }
   return warnings
-}
-
-/** Whether some response of a chosen pattern is not observed. */
-function hasMask(selection: ExportSelection): boolean {
-  const { observed } = selection.patterns
-  if (observed === null) return false
-  return writablePatterns(selection).some((pattern) => {
-    for (let row = 0; row < observed.rows; row++) if (!bitAt(observed, row, pattern)) return true
-    return false
-  })
 }

@@ -1,4 +1,11 @@
-import { emptyPlane, setBit, type BitPlane, type PatternBurst, type PatternSet } from './pattern-set.ts'
+import {
+  complement,
+  emptyPlane,
+  setBit,
+  type BitPlane,
+  type PatternBurst,
+  type PatternSet,
+} from './pattern-set.ts'
 
 /** Collects patterns one after the other, row by row of one pattern, and finishes them into a PatternSet. */
 export class PatternSetBuilder {
@@ -7,6 +14,7 @@ export class PatternSetBuilder {
   private readonly value: BitPlane
   private unknown: BitPlane | null = null
   private expected: { value: BitPlane; care: BitPlane } | null = null
+  private masked: BitPlane | null = null
   private cycles: Uint32Array | null = null
   private readonly capacity: number
   private count = 0
@@ -38,6 +46,12 @@ export class PatternSetBuilder {
     if (value === 1) setBit(this.expected.value, row, this.count)
   }
 
+  /** Takes a response row out of what this pattern observes. */
+  mask(row: number): void {
+    this.masked ??= emptyPlane(this.responseRows, this.capacity)
+    setBit(this.masked, row, this.count)
+  }
+
   setCycles(cycles: number): void {
     this.cycles ??= new Uint32Array(this.capacity)
     this.cycles[this.count] = cycles
@@ -57,7 +71,7 @@ export class PatternSetBuilder {
         value: trimmed(this.expected.value, n),
         care: trimmed(this.expected.care, n),
       },
-      observed: null,
+      observed: this.masked && (complement(trimmed(this.masked, n), n) ?? emptyPlane(this.responseRows, n)),
       cycles: this.cycles && this.cycles.slice(0, n),
       timeOnly: null,
       bursts: [{ name: burst, first: 0, count: n }],

@@ -18,6 +18,8 @@ export type PatternBurst = {
   readonly name: string
   readonly first: number
   readonly count: number
+  /** Cycles besides the patterns' own, such as the unload after the last, where the file tells them. */
+  readonly onceCycles?: number
 }
 
 /**
@@ -72,4 +74,18 @@ export function bitAt(plane: BitPlane, row: number, pattern: number): boolean {
 /** Sets pattern p of row r to 1. For builders: a finished plane is never written. */
 export function setBit(plane: BitPlane, row: number, pattern: number): void {
   plane.words[row * plane.wordsPerRow + (pattern >>> 5)] |= 1 << (pattern & 31)
+}
+
+/** Returns the plane with the bits of all patterns turned over; null where every one of them was 1. */
+export function complement(plane: BitPlane, nPatterns: number): BitPlane | null {
+  const words = new Uint32Array(plane.words.length)
+  let any = 0
+  const whole = nPatterns >>> 5
+  const rest = (1 << (nPatterns & 31)) - 1
+  for (let row = 0; row < plane.rows; row++) {
+    const first = row * plane.wordsPerRow
+    for (let word = 0; word < whole; word++) any |= words[first + word] = ~plane.words[first + word]
+    if (rest !== 0) any |= words[first + whole] = ~plane.words[first + whole] & rest
+  }
+  return any === 0 ? null : { rows: plane.rows, wordsPerRow: plane.wordsPerRow, words }
 }

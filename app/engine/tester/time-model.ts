@@ -30,7 +30,8 @@ export type BurstMeasure = {
  * run together, so that a burst's own cycles are paid once, with its first pattern.
  *
  * A scan pattern is one load and its captures; the unload after a burst's last pattern is the burst's own. A pattern
- * that gives its cycles takes those, at the shift rate where the circuit is scanned, else at the vector rate. Cycles
+ * that gives its cycles takes those, at the shift rate where the circuit is scanned, else at the vector rate, and a
+ * burst that gives its own takes those. Cycles
  * are kept by rate and as whole numbers, so that totals carry no rounding.
  * SOURCE: Bushnell & Agrawal 2000 for overlapped load and unload (from memory); different rates are common practice.
  */
@@ -99,6 +100,7 @@ export function buildTimeModel(
         plainCycles[p] = 1
       }
     }
+    if (burst.onceCycles !== undefined) burstCycles[b] = burst.onceCycles
   })
   return {
     isScan,

@@ -2,7 +2,6 @@ import { expect, it } from 'vitest'
 import { readBench } from '../../../app/engine/formats/bench/read-bench.ts'
 import { readPatternCsv } from '../../../app/engine/formats/csv/read-pattern-csv.ts'
 import { writePatternCsv } from '../../../app/engine/formats/csv/write-pattern-csv.ts'
-import { exportWarnings } from '../../../app/engine/formats/export-selection.ts'
 import { readVectors } from '../../../app/engine/formats/vectors/read-vectors.ts'
 import { writeVectors } from '../../../app/engine/formats/vectors/write-vectors.ts'
 import { simulateGood } from '../../../app/engine/simulate/good-machine.ts'
@@ -44,8 +43,14 @@ it('writes CSV that is read back as the same patterns', () => {
   )
 })
 
-it('says that plain formats lose masks', () => {
+it('keeps masks in plain formats: what is not observed is not observed when read back', () => {
   const observed = emptyPlane(3, 3)
-  const warnings = exportWarnings({ patterns: { ...patterns, observed }, circuit, sequence: [0] }, 'plain')
-  expect(warnings).toEqual([expect.stringContaining('no masks')])
+  observed.words[0] = 0b101
+  const text = writeVectors({ patterns: { ...patterns, observed }, circuit, sequence: [0, 1, 2] })
+  const reread = readVectors({ name: 'masked', text }, circuit).value!
+  expect([0, 1, 2].map((row) => reread.observed!.words[row * reread.observed!.wordsPerRow])).toEqual([
+    0b101 & (patterns.expected?.care.words[0] ?? 0),
+    0,
+    0,
+  ])
 })

@@ -39,6 +39,7 @@ describe('a vectors file', () => {
     expect(rowsOf(set.unknown!, 3)).toEqual(['000', '000', '100'])
     expect(rowsOf(set.expected!.care, 3)).toEqual(['100', '110'])
     expect(rowsOf(set.expected!.value, 3)).toEqual(['000', '100'])
+    expect(rowsOf(set.observed!, 3)).toEqual(['101', '111'])
     expect([...set.cycles!]).toEqual([7, 0, 0])
     expect(set.bursts).toEqual([{ name: 'p.vec', first: 0, count: 3 }])
   })
@@ -80,7 +81,7 @@ describe('a vectors file', () => {
 
 describe('a CSV file of patterns', () => {
   it('gives the same set as vectors, whatever the order of its columns', () => {
-    const text = 'q;expect y;b;cycles;a;expect q\nX;L;0;7;1;H\n1;;1;;0;L\n1;;1;;1;\n'
+    const text = 'q;expect y;b;cycles;a;expect q\nX;L;0;7;1;H\n1;X;1;;0;L\n1;;1;;1;\n'
     const fromVectors = vectors('10X LH @7\n011 XL\n111\n').value
     expect({ ...csv(text).value, bursts: null }).toEqual({ ...fromVectors, bursts: null })
   })

@@ -22,7 +22,7 @@ const PROGRESS_STEP = 4_000_000
 /**
  * Reads patterns from CSV (RFC 4180; comma, semicolon or tab). The header row names the signals, in any order: a primary
  * input or flip-flop (0, 1, X or empty for X), `expect NAME` for a primary output or the data of flip-flop NAME
- * (L, H, 0, 1, X or empty), `cycles` for the tester cycles. Every input and flip-flop needs a column.
+ * (L, H, 0, 1; X is not observed, empty says nothing), `cycles` for the tester cycles. Every input and flip-flop needs a column.
  * Errors: empty-file, no-patterns, unknown-signal, missing-signal, duplicate-declaration, pattern-width,
  * unknown-character, out-of-range, syntax.
  */
@@ -180,6 +180,6 @@ function readCell(
   }
   if (cell === 'H' || cell === '1') builder.expect(column.row, 1)
   else if (cell === 'L' || cell === '0') builder.expect(column.row, 0)
-  else if (cell !== 'X' && cell !== '')
-    report('unknown-character', field, `expected L, H or X, found "${field.text}"`)
+  else if (cell === 'X') builder.mask(column.row)
+  else if (cell !== '') report('unknown-character', field, `expected L, H or X, found "${field.text}"`)
 }

@@ -1,5 +1,6 @@
 import {
   WORDS_PER_BLOCK,
+  complement,
   type BitPlane,
   type PatternBurst,
   type PatternSet,
@@ -83,7 +84,7 @@ export class PatternAssembler {
   private readonly withoutCapture: number[] = []
   private readonly dependent: number[] = []
   private readonly bursts: PatternBurst[] = []
-  private burst = { name: '', first: 0 }
+  private burst = { name: '', first: 0, besides: 0 }
 
   private scanOpen = false
   private loading = false
@@ -156,7 +157,7 @@ export class PatternAssembler {
   }
 
   beginBurst(name: string): void {
-    this.burst = { name, first: this.nPatterns }
+    this.burst = { name, first: this.nPatterns, besides: this.cyclesBesides() }
     this.boundary = this.now()
     this.sawBoundary = false
     this.shiftClocks = null
@@ -176,7 +177,13 @@ export class PatternAssembler {
     }
     this.scanOpen = false
     const count = this.nPatterns - this.burst.first
-    if (count > 0) this.bursts.push({ name: this.burst.name, first: this.burst.first, count })
+    if (count === 0) return
+    const onceCycles = this.cyclesBesides() - this.burst.besides
+    this.bursts.push({ name: this.burst.name, first: this.burst.first, count, onceCycles })
+  }
+
+  private cyclesBesides(): number {
+    return this.counts.openingCycles + this.counts.closingCycles
   }
 
   beginLoad(): void {
@@ -673,18 +680,4 @@ function levelAt(table: CompiledTable, at: number, time: number): number {
   let found: number = Drive.Unknown
   for (const { time: from, level } of table.shapes[table.shape[at]].levels) if (from <= time) found = level
   return found
-}
-
-/** The inverse of a plane over the patterns of the set; null where nothing is left. */
-function complement(plane: BitPlane, nPatterns: number): BitPlane | null {
-  const words = new Uint32Array(plane.words.length)
-  let any = 0
-  const whole = nPatterns >>> 5
-  const rest = (1 << (nPatterns & 31)) - 1
-  for (let row = 0; row < plane.rows; row++) {
-    const first = row * plane.wordsPerRow
-    for (let word = 0; word < whole; word++) any |= words[first + word] = ~plane.words[first + word]
-    if (rest !== 0) any |= words[first + whole] = ~plane.words[first + whole] & rest
-  }
-  return any === 0 ? null : { rows: plane.rows, wordsPerRow: plane.wordsPerRow, words }
 }

@@ -34,7 +34,7 @@ const SMALL_H = 104
  *
  *     pattern = inputs [ outputs ] [ "@" cycles ]        parts separated by blanks
  *     inputs  = one of 0 1 X for each primary input, then for each flip-flop, in the netlist's order
- *     outputs = one of L H X for each primary output, then for each flip-flop's data
+ *     outputs = one of L H X for each primary output, then for each flip-flop's data; an X is not observed
  *     comment = "#" to the end of the line
  *
  * A width that does not fit and a character that is none of these are reported with their place; reading goes on with
@@ -155,7 +155,8 @@ class VectorsReader {
       if (row >= responses) continue
       if (code === BIG_H || code === SMALL_H) builder.expect(row, 1)
       else if (code === BIG_L || code === SMALL_L) builder.expect(row, 0)
-      else if (code !== BIG_X && code !== SMALL_X) {
+      else if (code === BIG_X || code === SMALL_X) builder.mask(row)
+      else {
         return this.unexpected('expected L, H or X for an output')
       }
     }

@@ -152,8 +152,8 @@ describe('bursts (clauses 16 and 17)', () => {
       PatternBurst all { PatList { first; inner; } } PatternBurst inner { PatList { second { } second; } }
       Pattern first ${vector} Pattern second { V { A=1; Y=H; } V { A=0; Y=L; } }`)
     expect(value?.bursts).toEqual([
-      { name: 'all', first: 0, count: 1 },
-      { name: 'inner', first: 1, count: 4 },
+      { name: 'all', first: 0, count: 1, onceCycles: 0 },
+      { name: 'inner', first: 1, count: 4, onceCycles: 0 },
     ])
   })
 

@@ -1,7 +1,10 @@
 import { describe, expect, it } from 'vitest'
 import { readBench } from '../../../../app/engine/formats/bench/read-bench.ts'
 import { proposeTestPins, readStil, surveyStil } from '../../../../app/engine/formats/stil/read-stil.ts'
+import { DEFAULT_PRODUCT } from '../../../../app/engine/quality/product.ts'
 import { compareResponse } from '../../../../app/engine/simulate/compare-response.ts'
+import { DEFAULT_TESTER } from '../../../../app/engine/tester/tester.ts'
+import { buildTimeModel, timeColumns } from '../../../../app/engine/tester/time-model.ts'
 import { hasData, readData } from '../../../helpers/data.ts'
 import { readScanNetlist } from './scan-netlists.ts'
 
@@ -50,6 +53,20 @@ describe.skipIf(!hasData)('the open STIL files', () => {
         /reference (\d+) V statements, generating (\d+) test cycles/.exec(source.text) ?? []
       const { report } = surveyStil(source).value!
       expect([report.vectorStatements, report.cycles.total]).toEqual([Number(vectors), Number(cycles)])
+    },
+  )
+
+  it.each(['s27_scan', 's15850_scan1', 's13207_scan10'])(
+    'plans the whole of %s, unloads included, at the cycles that its file takes',
+    (name) => {
+      const source = readData(`stil/${name === 's15850_scan1' ? 's15850_scan1_171' : name}.stil`)
+      const netlist = readScanNetlist(name, source)
+      const { patterns, report } = readStil(source, netlist).value!
+      const scan = { flipFlops: netlist.circuit.flipFlops.length, tracedChains: null, tracedLongest: null }
+      const time = buildTimeModel(DEFAULT_TESTER, DEFAULT_PRODUCT, patterns, scan)
+      const everyPattern = Uint32Array.from({ length: patterns.nPatterns }, (_, pattern) => pattern)
+      const { cycles } = timeColumns(time, everyPattern, false, 0)
+      expect(cycles.at(-1)).toBe(report.cycles.total + time.onceCycles)
     },
   )
 
