@@ -1,10 +1,9 @@
-import { readFileSync } from 'node:fs'
 import { availableParallelism } from 'node:os'
 import { join } from 'node:path'
 import { fileURLToPath } from 'node:url'
 import { userFile } from '../db/user-file.ts'
 import type { Handlers } from './contract/handlers.ts'
-import type { Installation } from './installation.ts'
+import { versionOf, type Installation } from './installation.ts'
 import { createBudgets } from './services/budgets.ts'
 import { createDemo } from './services/demo.ts'
 import { createDispatch, type Dispatch } from './services/dispatch.ts'
@@ -50,9 +49,7 @@ export type Application = {
 /** Builds the application: the only place where database, threads and services meet. */
 export function createApplication(config: ApplicationConfig): Application {
   const { installation, door, projectFolder, onFault, now = Date.now } = config
-  const { version } = JSON.parse(readFileSync(join(installation.root, 'package.json'), 'utf8')) as {
-    version: string
-  }
+  const version = versionOf(installation)
   const engine = `Tallycut ${version}`
   const userState = userFile(join(config.userFolder, 'tallycut.json'), parseUserState)
   const threads = {

@@ -1,4 +1,4 @@
-import { existsSync } from 'node:fs'
+import { existsSync, readFileSync } from 'node:fs'
 import { homedir } from 'node:os'
 import { extname, join, resolve } from 'node:path'
 import { fileURLToPath, pathToFileURL } from 'node:url'
@@ -30,6 +30,12 @@ export function findInstallation(entryUrl: string): Installation {
         isSource ? join(root, 'app/workers', `${name}.ts`) : join(root, 'out/node', `${name}.js`),
       ),
   }
+}
+
+/** The version of the program, such as 0.1.0. */
+export function versionOf({ root }: Installation): string {
+  const { version } = JSON.parse(readFileSync(join(root, 'package.json'), 'utf8')) as { version: string }
+  return version
 }
 
 /** The folder for what a user's programs keep of their own, by the custom of the system. */

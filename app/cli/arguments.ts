@@ -4,6 +4,8 @@ import type { OptionTable } from './command.ts'
 
 /** The arguments of one command, read by its table of options. */
 export type Arguments = {
+  /** All of them, as they were given. */
+  readonly words: readonly string[]
   readonly operands: readonly string[]
   has(name: string): boolean
   /** The value of an option, or null where it was not given. */
@@ -68,6 +70,7 @@ export function readArguments(args: readonly string[], options: OptionTable): Ar
   }
   const text = (name: string): string | null => given.get(name)?.[0] ?? null
   return {
+    words: args,
     operands,
     has: (name) => given.has(name),
     text,

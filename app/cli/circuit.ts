@@ -8,7 +8,7 @@ import { aligned, formats } from './print-text.ts'
 export const circuit: Command = {
   usage: ['NETLIST [--library LIB…] [--top NAME] [--json]'],
   options: { ...NETLIST_OPTIONS, ...JSON_OPTION },
-  details: [NETLIST_DETAILS],
+  details: () => [NETLIST_DETAILS],
   examples: ['assets/demo/fern.bench', 'chip.v --library cells.lib --top chip --json'],
   async run(args, terminal, { stdout }) {
     const { netlist, others } = netlistArguments(args)

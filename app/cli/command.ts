@@ -18,7 +18,7 @@ export type Command = {
   readonly usage: readonly string[]
   readonly options: OptionTable
   /** What help says below the options, paragraph by paragraph. */
-  readonly details: readonly string[]
+  details(): readonly string[]
   /** What may stand after the command's name. */
   readonly examples: readonly string[]
   /** Does the work and returns the exit code. Throws UsageError, and AppError as services do. */

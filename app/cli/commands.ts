@@ -22,6 +22,10 @@ export const COMMANDS: Readonly<Record<string, CommandEntry | PlainEntry>> = {
     summary: 'simulates patterns; fault coverage and its curve',
     load: async () => (await import('./coverage.ts')).coverage,
   },
+  plan: {
+    summary: 'orders and cuts the set under limits or for a goal, and prices the cut',
+    load: async () => (await import('./plan.ts')).plan,
+  },
   serve: {
     summary: 'the application on loopback, in a browser',
     loadPlain: async () => (await import('./serve.ts')).serve,

@@ -3,7 +3,12 @@ import type { ResponseComparison } from '../engine/simulate/compare-response.ts'
 import { findInstallation } from '../installation.ts'
 import { csvRow } from '../report/csv-row.ts'
 import { faultRows } from '../services/on-files/fault-rows.ts'
-import { coverageOfFiles, detectedCurve, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
+import {
+  detectedCurve,
+  readRunFiles,
+  simulateFiles,
+  type CoverageRun,
+} from '../services/on-files/coverage-of-files.ts'
 import { startSimulator, type Simulator } from '../services/on-files/simulator.ts'
 import { UsageError, type Arguments } from './arguments.ts'
 import { circuitJson, circuitText } from './circuit.ts'
@@ -34,7 +39,7 @@ const OPTIONS = {
 export const coverage: Command = {
   usage: ['NETLIST PATTERNS… [--detections N|all] [--faults FILE.csv] [--curve FILE.csv] [--json]'],
   options: OPTIONS,
-  details: [
+  details: () => [
     NETLIST_DETAILS,
     'PATTERNS are vectors (one pattern a line), CSV or STIL files; several are applied one after the other.\n' +
       'Values that they expect are compared with the fault-free circuit; differences are warned of.',
@@ -57,11 +62,8 @@ export const coverage: Command = {
     const detectionLimit = detectionsOf(args)
     const simulator = simulatorOf(args, io)
     try {
-      const run = await coverageOfFiles(
-        { netlist, patterns, detectionLimit, wantMatrix: false },
-        simulator,
-        terminal,
-      )
+      const files = await readRunFiles(netlist, patterns, terminal)
+      const run = await simulateFiles(files, { detectionLimit, wantMatrix: false }, simulator, terminal)
       terminal.clear()
       warnOfMismatches(run, terminal)
       const curve = detectedCurve(run)
@@ -109,7 +111,7 @@ export function simulatorOf(args: Arguments, { entryUrl }: Io): Simulator {
 
 /** What JSON says of a netlist under its patterns. */
 export function coverageJson(run: CoverageRun, curve: readonly number[]): object {
-  const { faults, patterns, report, states, seconds, comparison } = run
+  const { faults, patterns, report, states, readSeconds, simulateSeconds, comparison } = run
   const { nPatterns } = patterns
   return {
     ...circuitJson(run),
@@ -127,8 +129,8 @@ export function coverageJson(run: CoverageRun, curve: readonly number[]): object
     },
     coverage: faults.nFaults > 0 ? states.detected / faults.nFaults : 0,
     curve,
-    seconds,
-    pairsPerSecond: seconds.simulate > 0 ? (faults.nFaults * nPatterns) / seconds.simulate : 0,
+    seconds: { read: readSeconds, simulate: simulateSeconds },
+    pairsPerSecond: pairsPerSecond(run),
     expected: comparison === null ? null : expectedJson(comparison),
   }
 }
@@ -172,10 +174,9 @@ function* curveRows(curve: readonly number[], nFaults: number): Generator<string
 
 /** The same for people. */
 export function coverageText(run: CoverageRun): string {
-  const { faults, patterns, states, seconds } = run
+  const { faults, patterns, states, readSeconds, simulateSeconds } = run
   const { count, coverage: share, duration } = formats
   const { nFaults, nClasses } = faults
-  const rate = seconds.simulate > 0 ? (nFaults * patterns.nPatterns) / seconds.simulate : 0
   const rows: [string, string][] = [
     ['Patterns', count(patterns.nPatterns).value],
     [
@@ -192,7 +193,12 @@ export function coverageText(run: CoverageRun): string {
   if (states.byChainTest > 0) rows.push(['By the chain test', `${count(states.byChainTest).value} faults`])
   rows.push([
     'Time',
-    `read ${textOf(duration(seconds.read))}, simulated ${seconds.simulate.toFixed(3)} s (${rate.toExponential(2)} faults × patterns a second)`,
+    `read ${textOf(duration(readSeconds))}, simulated ${simulateSeconds.toFixed(3)} s (${pairsPerSecond(run).toExponential(2)} faults × patterns a second)`,
   ])
   return `${circuitText(run)}\n${aligned(rows)}`
+}
+
+/** Uncollapsed faults × patterns by the seconds of the simulation alone. */
+function pairsPerSecond({ faults, patterns, simulateSeconds }: CoverageRun): number {
+  return simulateSeconds > 0 ? (faults.nFaults * patterns.nPatterns) / simulateSeconds : 0
 }

@@ -1,8 +1,8 @@
 import type { Command, OptionTable } from './command.ts'
 import { COMMANDS } from './commands.ts'
+import { columns } from './print-text.ts'
 
 const PROGRAM = 'tallycut'
-const WIDTH = 100
 
 /** Returns the list of commands. */
 export function overview(): string {
@@ -11,7 +11,7 @@ export function overview(): string {
 
 Usage: ${PROGRAM} COMMAND …      ${PROGRAM} help COMMAND tells all options of one
 
-${table(rows)}
+${columns(rows)}
 
 --json prints one JSON object on standard output and nothing else there. Files may be gzip-compressed;
 "-" is standard input. Exit codes: 0 done; 1 the answer is no; 2 bad input or usage, with the reason on
@@ -24,8 +24,8 @@ export function commandHelp(name: string, { usage, options, details, examples }:
   const parts = [
     usage.map((line, at) => `${at === 0 ? 'Usage:' : '      '} ${PROGRAM} ${name} ${line}`).join('\n'),
     COMMANDS[name]?.summary.replace(/^./, (letter) => letter.toUpperCase()) + '.',
-    table(optionRows(options)),
-    ...details,
+    columns(optionRows(options)),
+    ...details(),
     `Examples:\n${examples.map((line) => `  ${PROGRAM} ${name} ${line}`).join('\n')}`,
   ]
   return `${parts.join('\n\n')}\n`
@@ -36,27 +36,4 @@ function optionRows(options: OptionTable): (readonly [string, string])[] {
     `--${name}${value === undefined ? '' : ` ${value}`}`,
     help,
   ])
-}
-
-/** Two columns, the second one wrapped. */
-function table(rows: readonly (readonly [string, string])[]): string {
-  const left = Math.max(...rows.map(([first]) => first.length)) + 2
-  return rows
-    .map(
-      ([first, second]) =>
-        `  ${first.padEnd(left)}${wrapped(second, WIDTH - left - 2).join(`\n${' '.repeat(left + 2)}`)}`,
-    )
-    .join('\n')
-}
-
-function wrapped(text: string, width: number): string[] {
-  const lines: string[] = []
-  let line = ''
-  for (const word of text.split(' ')) {
-    if (line !== '' && line.length + 1 + word.length > width) {
-      lines.push(line)
-      line = word
-    } else line = line === '' ? word : `${line} ${word}`
-  }
-  return [...lines, line]
 }

@@ -16,4 +16,5 @@ process.exitCode = await main(process.argv.slice(2), {
   stderr: process.stderr,
   env: process.env,
   signal: interrupted.signal,
+  isInterrupted: () => interrupted.signal.aborted,
 })

@@ -10,4 +10,6 @@ export type Io = {
   readonly env: Readonly<Record<string, string | undefined>>
   /** Aborted when the user interrupts; what is under way then ends without a trace. */
   readonly signal: AbortSignal
+  /** The same for a loop that hears no events. */
+  readonly isInterrupted: () => boolean
 }

@@ -21,7 +21,7 @@ export type Terminal = FileWork & {
   clear(): void
 }
 
-export function openTerminal({ stderr, stdin, env, signal }: Io): Terminal {
+export function openTerminal({ stderr, stdin, env, signal, isInterrupted }: Io): Terminal {
   const isTerminal = stderr.isTTY === true
   const isColoured = isTerminal && !env['NO_COLOR'] && env['TERM'] !== 'dumb'
   const paint = (text: string, colour: number): string =>
@@ -44,6 +44,7 @@ export function openTerminal({ stderr, stdin, env, signal }: Io): Terminal {
   }
   return {
     signal,
+    isCancelled: isInterrupted,
     stdin,
     get warnings() {
       return warnings

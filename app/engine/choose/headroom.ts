@@ -35,9 +35,10 @@ function boundUnder(stop: Stop | null, patterns: number, headroom: Headroom): nu
 }
 
 /** The costs of patterns, and what is left for them once the cheapest burst is paid. */
-type Spending = { readonly costs: Float64Array; readonly budget: number }
+export type Spending = { readonly costs: Float64Array; readonly budget: number }
 
-function spendingUnder(stop: Stop, pricing: Pricing): Spending | null {
+/** Returns what patterns cost under a limit and what is left for them; null where the limit is no sum over patterns. */
+export function spendingUnder(stop: Stop, pricing: Pricing): Spending | null {
   const { time, tester, product, restMs } = pricing
   switch (stop.kind) {
     case 'patterns':

@@ -10,57 +10,55 @@ import { readPatternSources } from './read-pattern-sources.ts'
 import { readSources } from './read-sources.ts'
 import type { Simulator } from './simulator.ts'
 
-/** A netlist and a pattern set, simulated. */
-export type CoverageRun = PatternReading & {
+/** A netlist and a pattern set, as read. */
+export type ReadFiles = PatternReading & {
   readonly netlist: Netlist
   readonly faults: FaultList
+  /** How long reading took, in seconds. */
+  readonly readSeconds: number
+}
+
+/** The same, simulated. */
+export type CoverageRun = ReadFiles & {
   readonly result: SimulationResult
   readonly states: StateCounts
   /** Null where the patterns expect nothing. */
   readonly comparison: ResponseComparison | null
-  readonly seconds: { readonly read: number; readonly simulate: number }
+  /** The simulation alone. */
+  readonly simulateSeconds: number
 }
 
-export type CoverageRequest = {
-  readonly netlist: NetlistFiles
-  readonly patterns: readonly string[]
-  /** 1 first detection, N up to N, 0 all. */
-  readonly detectionLimit: number
-  readonly wantMatrix: boolean
+/** Reads a netlist and patterns for it. Throws as valueOf does. */
+export async function readRunFiles(
+  netlistFiles: NetlistFiles,
+  patternFiles: readonly string[],
+  work: FileWork,
+): Promise<ReadFiles> {
+  const startedAt = performance.now()
+  const sources = await readSources(patternFiles, work)
+  const { netlist, faults } = await readNetlistFiles(netlistFiles, sources, work)
+  const reading = readPatternSources(sources, netlist, work)
+  return { ...reading, netlist, faults, readSeconds: (performance.now() - startedAt) / 1000 }
 }
 
-/** Reads a netlist and patterns and simulates them. Throws as valueOf does. */
-export async function coverageOfFiles(
-  request: CoverageRequest,
+/** Simulates what was read: up to so many detections of each fault, 0 for all. Throws AppError 'cancelled'. */
+export async function simulateFiles(
+  files: ReadFiles,
+  options: { readonly detectionLimit: number; readonly wantMatrix: boolean },
   simulator: Simulator,
   work: FileWork,
 ): Promise<CoverageRun> {
-  const startedAt = performance.now()
-  const sources = await readSources(request.patterns, work)
-  const { netlist, faults } = await readNetlistFiles(request.netlist, sources, work)
-  const reading = readPatternSources(sources, netlist, work)
-  const read = (performance.now() - startedAt) / 1000
-  const { patterns } = reading
+  const { netlist, faults, patterns } = files
+  const task = { circuit: netlist.circuit, faults, patterns, classes: null, ...options }
+  const running = simulator.run(task, work)
   const comparison = patterns.expected === null ? null : compareResponse(netlist, patterns)
-  const { result, kernelSeconds } = await simulator.run(
-    {
-      circuit: netlist.circuit,
-      faults,
-      patterns,
-      detectionLimit: request.detectionLimit,
-      classes: null,
-      wantMatrix: request.wantMatrix,
-    },
-    work,
-  )
+  const { result, kernelSeconds } = await running
   return {
-    ...reading,
-    netlist,
-    faults,
+    ...files,
     result,
     states: countStates(faults, result.profile),
     comparison,
-    seconds: { read, simulate: kernelSeconds },
+    simulateSeconds: kernelSeconds,
   }
 }
 

@@ -7,6 +7,8 @@ import type { Source } from '../../engine/source/source.ts'
 /** What work on files, without a project, needs of its caller. */
 export type FileWork = {
   readonly signal: AbortSignal
+  /** True once the work is to stop; also in the middle of a loop that hears no events. */
+  isCancelled(): boolean
   /** What the file name `-` stands for. */
   readonly stdin: Readable
   report(progress: { readonly phase: string; readonly share: number | null }): void
@@ -25,14 +27,20 @@ export function valueOf<T>(work: FileWork, reading: Reading<T>, sources: readonl
   return reading.value
 }
 
-export function throwIfCancelled({ signal }: FileWork): void {
-  if (signal.aborted) throw new AppError('cancelled')
+export function throwIfCancelled(work: FileWork): void {
+  if (work.isCancelled()) throw new AppError('cancelled')
 }
 
-/** Returns what readers report to: progress of the phase, and whether to go on. */
-export function readingProgress(work: FileWork, phase: string): ReadingProgress {
+/** Returns what readers and long choices report to: progress of the phase, and whether to go on. */
+export function progressOf(work: FileWork, phase: string): ReadingProgress {
   return (done, total) => {
     work.report({ phase, share: total > 0 ? Math.min(1, done / total) : null })
-    return !work.signal.aborted
+    return !work.isCancelled()
   }
+}
+
+/** Returns what a long choice returned; null of one that was cancelled throws. */
+export function wholeOf<T>(value: T | null): T {
+  if (value === null) throw new AppError('cancelled')
+  return value
 }

@@ -6,7 +6,7 @@ import { proposeTestPins } from '../../engine/formats/stil/read-stil.ts'
 import { declaredInputs } from '../../engine/formats/verilog/declared-inputs.ts'
 import type { Source } from '../../engine/source/source.ts'
 import { netlistOf } from '../../workers/load-netlist.ts'
-import { readingProgress, valueOf, type FileWork } from './file-work.ts'
+import { progressOf, valueOf, type FileWork } from './file-work.ts'
 import { includedSource } from './included-source.ts'
 import { readSources } from './read-sources.ts'
 
@@ -35,7 +35,7 @@ export async function readNetlistFiles(
   const libraries = await readSources(files.libraries, work)
   const { top, assumeScanned } = files
   const testPins = [...files.testPins, ...pinsOfPatterns(sources, patterns, files.testPins)]
-  const onProgress = readingProgress(work, 'Reading the netlist')
+  const onProgress = progressOf(work, 'Reading the netlist')
   const reading = netlistOf(sources, libraries, { top, testPins, assumeScanned }, onProgress)
   const netlist = valueOf(work, reading, [...sources, ...libraries])
   work.report({ phase: 'Listing faults', share: null })

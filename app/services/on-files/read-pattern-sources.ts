@@ -1,7 +1,7 @@
 import type { Netlist } from '../../engine/circuit/netlist.ts'
 import { readPatterns, type PatternReading } from '../../engine/formats/registry.ts'
 import type { Source } from '../../engine/source/source.ts'
-import { readingProgress, valueOf, type FileWork } from './file-work.ts'
+import { progressOf, valueOf, type FileWork } from './file-work.ts'
 import { includedSource } from './included-source.ts'
 
 /** Reads the texts of pattern files for a netlist, one after the other. Throws as valueOf does. */
@@ -16,7 +16,7 @@ export function readPatternSources(
     if (source) included.push(source)
     return source ?? null
   }
-  const onProgress = readingProgress(work, 'Reading the patterns')
+  const onProgress = progressOf(work, 'Reading the patterns')
   const reading = readPatterns(sources, netlist, { include, onProgress })
   return valueOf(work, reading, [...sources, ...included])
 }

@@ -1,0 +1,67 @@
+import { textOf } from '../contract/format-number.ts'
+import { answerPhrases, countedWords } from '../contract/plan-words.ts'
+import type { CoverageRun } from '../services/on-files/coverage-of-files.ts'
+import type { PlanOfFiles } from '../services/on-files/plan-of-files.ts'
+import { aligned, formats } from './print-text.ts'
+
+/** A plan for people: the answer in a sentence, and the figures of the cut. */
+export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): string {
+  const { result, pricing } = plan
+  const { budget, ceiling, gap, smallest } = result
+  const { count, coverage, milliseconds, dppm, costPerThousand } = formats
+  const bound = ceiling[budget.patterns - 1]
+  const rows: [string, string][] = [
+    [
+      'Circuit',
+      `${run.netlist.circuit.name}, ${count(run.faults.nFaults).value} faults on ${run.faults.base}`,
+    ],
+    ['Patterns', `${count(budget.patterns).value} of ${count(result.order.length).value}`],
+    [
+      'Detected',
+      `${count(budget.detected).value} of ${count(result.total).value} ${countedWords(result)}, ${textOf(coverage(budget.coverage))}`,
+    ],
+  ]
+  if (bound !== undefined) {
+    rows.push([
+      'Ceiling',
+      `no choice of ${count(budget.patterns).value} of these patterns detects more than ${count(bound).value}`,
+    ])
+  }
+  if (gap !== null && gap > 0)
+    rows.push(['Gap', `${count(gap).value} below the ceiling under what ends the cut`])
+  if (smallest !== undefined) {
+    rows.push([
+      'Smallest set',
+      `${count(smallest.patterns).value} patterns${smallest.proven ? ', proven' : `, at least ${count(smallest.lowerBound).value}`}`,
+    ])
+  }
+  if (improvement !== null) {
+    rows.push([
+      'Improvement',
+      improvement.patternsSaved > 0
+        ? `${count(improvement.patternsSaved).value} patterns fewer than the order alone`
+        : `${count(improvement.gained).value} more than the order alone`,
+    ])
+  }
+  const { currency } = pricing.tester
+  rows.push(
+    ['Tester cycles', count(budget.cycles).value],
+    [
+      'Time',
+      `${textOf(milliseconds(budget.milliseconds))} on one site; ${textOf(milliseconds(budget.perDeviceMilliseconds))} a device for the whole program`,
+    ],
+    [
+      'Vector memory',
+      `${count(budget.vectorMemory).value} cycles a pin, ${count(budget.reloads).value} reloads`,
+    ],
+    [
+      'Escapes',
+      `${textOf(dppm(budget.dppm))}, ${dppm(budget.dppmLow).value} to ${textOf(dppm(budget.dppmHigh))} over models and inputs`,
+    ],
+    ['Cost of test', textOf(costPerThousand(budget.costPerDevice, currency))],
+  )
+  const answer = answerPhrases(result, formats)
+    .map(({ text }) => text)
+    .join('')
+  return `${answer}\n\n${aligned(rows)}\n\nEscapes and cost are estimates of models, no safety case.`
+}

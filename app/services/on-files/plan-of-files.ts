@@ -1,0 +1,160 @@
+import { AppError } from '../../contract/errors.ts'
+import type { Plan, PlanInput } from '../../engine/choose/build-plan.ts'
+import { ceilingOf, patternBudgets, type Ceiling } from '../../engine/choose/ceiling.ts'
+import {
+  choiceBasis,
+  orderOfChoice,
+  scanFactsOf,
+  type ChoiceBasis,
+} from '../../engine/choose/choice-basis.ts'
+import type { ChoiceTask } from '../../engine/choose/choice-task.ts'
+import { constraintCosts, type ConstraintCost } from '../../engine/choose/constraint-costs.ts'
+import { deliveredOrder } from '../../engine/choose/delivered-order.ts'
+import { lostBlocks, type LostBlock } from '../../engine/choose/lost-blocks.ts'
+import type { MipSolver } from '../../engine/choose/mip.ts'
+import type { Order } from '../../engine/choose/order.ts'
+import type { PlanResult } from '../../engine/choose/plan-result.ts'
+import { smallestCompleteSet } from '../../engine/choose/smallest-complete-set.ts'
+import { steepestFirst } from '../../engine/choose/steepest-first.ts'
+import { buildTimeModel } from '../../engine/tester/time-model.ts'
+import type { CoverageRun } from './coverage-of-files.ts'
+import { progressOf, valueOf, wholeOf, type FileWork } from './file-work.ts'
+import { improvePlan, type Improvement } from './improve-plan.ts'
+import { requirePlan, untilLater, withEvenCosts, type PlanChoice } from './plan-choice.ts'
+import { withProgram } from './program-constraints.ts'
+import type { FileAssumptions } from './read-assumptions.ts'
+
+export type PlanOfFiles = {
+  readonly plan: Plan
+  readonly basis: ChoiceBasis
+  readonly order: Order
+  /** By number of patterns. */
+  readonly ceiling: Ceiling
+  readonly lost: readonly LostBlock[]
+  /** What each constraint costs at the cut; empty where there are none. */
+  readonly constraintCosts: readonly ConstraintCost[]
+  /** Null where none was asked for. */
+  readonly improvement: Improvement | null
+}
+
+/** Chooses an order and a cut of a simulated set. Throws AppError 'bad-file', 'bad-input', 'cancelled'. */
+export function planOfFiles(
+  run: CoverageRun,
+  assumptions: FileAssumptions,
+  choice: PlanChoice,
+  solveMip: MipSolver,
+  patternFile: string,
+  work: FileWork,
+): PlanOfFiles {
+  const { tester, product, program } = assumptions
+  const { netlist, faults, patterns } = run
+  const scan = scanFactsOf(netlist)
+  const basis = basisOf(run, assumptions, choice.detections, patternFile, work)
+  const { task, total } = basis
+  const ceiling = wholeOf(
+    ceilingOf(withEvenCosts(task), patternBudgets(patterns.nPatterns), {
+      onProgress: progressOf(work, 'Proving the ceiling'),
+    }),
+  )
+  const { order, smallest } = orderOf(basis, choice, solveMip, work)
+  const input: PlanInput = {
+    faults,
+    untestable: null,
+    task,
+    total,
+    order,
+    patterns,
+    patternFile,
+    scan,
+    tester,
+    product,
+    program,
+    limits: choice.limits,
+    goals: choice.goals,
+    ceiling: ceiling.bounds,
+    ceilingWithin: (costs, budget) => ceilingWithin({ ...task, costs }, budget, work),
+    smallest,
+  }
+  const first = requirePlan(input)
+  const improved = improvePlan(input, first, basis, choice, solveMip, work)
+  const plan = improved?.plan ?? first
+  const chosen = plan.result.budget.chosen.map((pattern) => pattern - 1)
+  const constraints = basis.constraints
+  return {
+    plan,
+    basis,
+    order: improved?.order ?? order,
+    ceiling,
+    lost: lostBlocks(task, faults, chosen),
+    constraintCosts:
+      constraints === null || constraints.parts.length === 0
+        ? []
+        : wholeOf(
+            constraintCosts(
+              task,
+              constraints.constraints,
+              constraints.parts,
+              chosen.reduce((sum, pattern) => sum + (task.costs[pattern] ?? 0), 0),
+              progressOf(work, 'Pricing constraints'),
+            ),
+          ),
+    improvement: improved?.improvement ?? null,
+  }
+}
+
+function basisOf(
+  { netlist, faults, patterns, result: { matrix } }: CoverageRun,
+  { tester, product, program, constraints, weights }: FileAssumptions,
+  detections: number,
+  patternFile: string,
+  work: FileWork,
+): ChoiceBasis {
+  if (matrix === null) throw new Error('a plan needs the matrix of detections')
+  const costs = buildTimeModel(tester, product, patterns, scanFactsOf(netlist)).patternCycles
+  const reading = choiceBasis({ faults, matrix, costs, constraints, weights, detections })
+  const sources = [constraints, weights].filter((source) => source !== null)
+  return withProgram(valueOf(work, reading, sources), program, patterns, patternFile)
+}
+
+function orderOf(
+  basis: ChoiceBasis,
+  choice: PlanChoice,
+  solveMip: MipSolver,
+  work: FileWork,
+): { readonly order: Order; readonly smallest: NonNullable<PlanResult['smallest']> | null } {
+  const { task } = basis
+  switch (choice.order) {
+    case 'as-delivered':
+      return { order: deliveredOrder(task.rules), smallest: null }
+    case 'steepest':
+      return { order: wholeOf(steepestFirst(task, progressOf(work, 'Ordering'))), smallest: null }
+    case 'smallest': {
+      const onProgress = untilLater(work, 'Looking for the smallest complete set', choice.searchSeconds)
+      const found = smallestCompleteSet(withEvenCosts(task), { solveMip, onProgress })
+      if (work.isCancelled()) throw new AppError('cancelled')
+      if (found === null) {
+        throw new AppError(
+          'bad-input',
+          `No complete set was found in ${choice.searchSeconds} s. Give the search longer with --search-seconds, or take --order steepest, which detects as much.`,
+        )
+      }
+      const { patterns, lowerBound, proven } = found
+      return {
+        order: orderOfChoice(basis, patterns),
+        smallest: { patterns: patterns.length, lowerBound, proven },
+      }
+    }
+  }
+}
+
+/** The bound at one budget; smaller budgets on the way to it bring the multipliers near. */
+const STEPS = 12
+const STEP_RATIO = 0.7
+const EFFORT = 6e8
+
+function ceilingWithin(task: ChoiceTask, budget: number, work: FileWork): number {
+  const budgets = Float64Array.from({ length: STEPS }, (_, at) => budget * STEP_RATIO ** (STEPS - 1 - at))
+  const onProgress = progressOf(work, 'Proving the ceiling at the cut')
+  const { bounds } = wholeOf(ceilingOf(task, budgets, { effort: EFFORT, onProgress }))
+  return bounds[STEPS - 1] ?? 0
+}
