@@ -67,6 +67,16 @@ export function openDatabase(path: string): OpenedDatabase {
   }
 }
 
+/**
+ * Opens a project's database to be read and left as it is. Throws AppError 'not-found', 'not-a-project', 'damaged-project',
+ * 'in-use', or 'read-only' where it would have to be brought to this version first.
+ */
+export function openForReading(path: string): OpenedDatabase {
+  checkHeader(path)
+  if (probe(path) < migrations.length) throw new AppError('read-only', cannotMigrate(path))
+  return { db: connectReadOnly(path), readOnly: true, notice: null }
+}
+
 /** Writes what is left of the log into the file and closes it. */
 export function closeDatabase({ db, readOnly }: OpenedDatabase): void {
   if (!readOnly) {

@@ -1,4 +1,10 @@
-import { closeDatabase, createDatabase, openDatabase, type OpenedDatabase } from './open-database.ts'
+import {
+  closeDatabase,
+  createDatabase,
+  openDatabase,
+  openForReading,
+  type OpenedDatabase,
+} from './open-database.ts'
 import { createBudgetRepository } from './repositories/budget-repository.ts'
 import { createNetlistRepository } from './repositories/netlist-repository.ts'
 import { createPackedRepository } from './repositories/packed-repository.ts'
@@ -33,6 +39,11 @@ export function openProject(path: string): ProjectStore {
     store.trash.empty()
   }
   return store
+}
+
+/** Opens a project file to be read and left as it is; throws as openForReading does. */
+export function readProject(path: string): ProjectStore {
+  return storeOf(path, openForReading(path))
 }
 
 function storeOf(path: string, opened: OpenedDatabase) {

@@ -26,6 +26,10 @@ export const COMMANDS: Readonly<Record<string, CommandEntry | PlainEntry>> = {
     summary: 'orders and cuts the set under limits or for a goal, and prices the cut',
     load: async () => (await import('./plan.ts')).plan,
   },
+  compare: {
+    summary: 'what one pattern set detects and another does not, at equal time and at equal coverage',
+    load: async () => (await import('./compare.ts')).compare,
+  },
   serve: {
     summary: 'the application on loopback, in a browser',
     loadPlain: async () => (await import('./serve.ts')).serve,

@@ -1,14 +1,10 @@
 import { textOf } from '../contract/format-number.ts'
 import type { ResponseComparison } from '../engine/simulate/compare-response.ts'
+import { detectedAfter } from '../engine/simulate/detected-after.ts'
 import { findInstallation } from '../installation.ts'
 import { csvRow } from '../report/csv-row.ts'
 import { faultRows } from '../services/on-files/fault-rows.ts'
-import {
-  detectedCurve,
-  readRunFiles,
-  simulateFiles,
-  type CoverageRun,
-} from '../services/on-files/coverage-of-files.ts'
+import { readRunFiles, simulateFiles, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
 import { startSimulator, type Simulator } from '../services/on-files/simulator.ts'
 import { UsageError, type Arguments } from './arguments.ts'
 import { circuitJson, circuitText } from './circuit.ts'
@@ -66,7 +62,7 @@ export const coverage: Command = {
       const run = await simulateFiles(files, { detectionLimit, wantMatrix: false }, simulator, terminal)
       terminal.clear()
       warnOfMismatches(run, terminal)
-      const curve = detectedCurve(run)
+      const curve = Array.from(detectedAfter(run.faults, run.result.profile).subarray(1))
       const faultsFile = args.text('faults')
       if (faultsFile !== null) await writeFile(faultsFile, faultRows(run.faults, run.result.profile))
       const curveFile = args.text('curve')

@@ -41,6 +41,17 @@ export async function readRunFiles(
   return { ...reading, netlist, faults, readSeconds: (performance.now() - startedAt) / 1000 }
 }
 
+/** Reads another pattern set for a netlist that was read. */
+export async function readOtherPatterns(
+  { netlist, faults }: ReadFiles,
+  patternFiles: readonly string[],
+  work: FileWork,
+): Promise<ReadFiles> {
+  const startedAt = performance.now()
+  const reading = readPatternSources(await readSources(patternFiles, work), netlist, work)
+  return { ...reading, netlist, faults, readSeconds: (performance.now() - startedAt) / 1000 }
+}
+
 /** Simulates what was read: up to so many detections of each fault, 0 for all. Throws AppError 'cancelled'. */
 export async function simulateFiles(
   files: ReadFiles,
@@ -60,16 +71,4 @@ export async function simulateFiles(
     comparison,
     simulateSeconds: kernelSeconds,
   }
-}
-
-/** Returns the faults, uncollapsed, that are detected after each pattern in file order. */
-export function detectedCurve({ faults, result: { profile } }: CoverageRun): number[] {
-  const { lines, nFaults, classOf } = faults
-  const gains = new Array<number>(profile.nPatterns).fill(0)
-  for (let fault = 0; fault < nFaults; fault++) {
-    const first = profile.first[classOf[fault] ?? 0] ?? -1
-    if (first >= 0 && lines.byChainTest[fault >>> 1] === 0) gains[first] = (gains[first] ?? 0) + 1
-  }
-  let detected = 0
-  return gains.map((gain) => (detected += gain))
 }
