@@ -1,6 +1,11 @@
 import { textOf } from '../contract/format-number.ts'
 import type { SetPoint } from '../engine/compare/compare-at-cuts.ts'
-import { readOtherPatterns, readRunFiles, simulateFiles } from '../services/on-files/coverage-of-files.ts'
+import {
+  readOtherPatterns,
+  readRunFiles,
+  simulateFiles,
+  type ReadFiles,
+} from '../services/on-files/coverage-of-files.ts'
 import { compareSets, type MeasuredSet, type SetComparison } from '../services/on-files/compare-sets.ts'
 import { readAssumptionFiles } from '../services/on-files/read-assumptions.ts'
 import { runsOfProject } from '../services/on-files/runs-of-project.ts'

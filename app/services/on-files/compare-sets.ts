@@ -31,7 +31,12 @@ export type SetComparison = {
   readonly sets: readonly (SetPoint & { readonly name: string })[]
   /** The first set against each of the others. */
   readonly pairs: readonly (DetectionComparison &
-    CutComparison & { readonly first: string; readonly second: string })[]
+    CutComparison & {
+      readonly first: string
+      readonly second: string
+      /** True where the second covers less than the first. */
+      readonly isWorse: boolean
+    })[]
 }
 
 /** Compares the first set with each of the others. Throws RangeError where their faults are counted on different bases. */
