@@ -1,8 +1,9 @@
 #!/usr/bin/env node
 // Builds what is stale, then runs what was asked for: `start`, `build`, or a command of the command line.
-import { spawnSync } from 'node:child_process'
+import { spawn, spawnSync } from 'node:child_process'
 import { existsSync } from 'node:fs'
 import module from 'node:module'
+import { constants } from 'node:os'
 import { dirname, join } from 'node:path'
 import { fileURLToPath, pathToFileURL } from 'node:url'
 import { buildStale } from './launch/build.mjs'
@@ -18,8 +19,7 @@ if (Number.parseInt(process.versions.node, 10) < OLDEST_NODE) {
     )
     process.exit(2)
   }
-  const { status } = spawnSync(own, process.argv.slice(1), { stdio: 'inherit' })
-  process.exit(status ?? 130)
+  await runOwnNode()
 }
 
 const [command, ...rest] = process.argv.slice(2)
@@ -41,6 +41,15 @@ if (command === 'build') {
 } else {
   await buildStale(command === 'serve' ? ['kernel', 'node', 'renderer'] : ['kernel', 'node'])
   await runCommandLine(process.argv.slice(2))
+}
+
+/** Hands over to the Node that comes with the packages, passes signals on to it and ends as it ends. */
+function runOwnNode() {
+  const child = spawn(own, process.argv.slice(1), { stdio: 'inherit' })
+  for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP']) process.on(signal, () => child.kill(signal))
+  return new Promise(() => {
+    child.on('exit', (code, signal) => process.exit(code ?? 128 + constants.signals[signal]))
+  })
 }
 
 async function runCommandLine(args) {

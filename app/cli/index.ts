@@ -1,20 +1,40 @@
+import { isMainThread } from 'node:worker_threads'
+import { runInThread, runOnThread, wantsThread } from './command-thread.ts'
+import { ExitCode } from './command.ts'
 import { main } from './main.ts'
 
-const interrupted = new AbortController()
-// Once: a second Ctrl-C ends the process whatever it does.
-process.once('SIGINT', () => interrupted.abort())
-// Whoever reads the output may stop early, as `head` does.
-process.stdout.on('error', (error: NodeJS.ErrnoException) => {
-  if (error.code !== 'EPIPE') throw error
-  process.exit(0)
-})
+/** A terminal and the launcher may both pass one Ctrl-C on: what comes so soon after the first is the same. */
+const SAME_INTERRUPT_MILLISECONDS = 500
 
-process.exitCode = await main(process.argv.slice(2), {
-  entryUrl: import.meta.url,
-  stdin: process.stdin,
-  stdout: process.stdout,
-  stderr: process.stderr,
-  env: process.env,
-  signal: interrupted.signal,
-  isInterrupted: () => interrupted.signal.aborted,
-})
+if (isMainThread) {
+  const interrupted = new AbortController()
+  let interruptedAt: number | null = null
+  process.on('SIGINT', () => {
+    const now = performance.now()
+    if (interruptedAt !== null && now - interruptedAt > SAME_INTERRUPT_MILLISECONDS) {
+      process.exit(ExitCode.Interrupted)
+    }
+    interruptedAt ??= now
+    interrupted.abort()
+  })
+  // Whoever reads the output may stop early, as `head` does.
+  process.stdout.on('error', (error: NodeJS.ErrnoException) => {
+    if (error.code !== 'EPIPE') throw error
+    process.exit(ExitCode.Done)
+  })
+  const argv = process.argv.slice(2)
+  const { signal } = interrupted
+  const exitCode = wantsThread(argv)
+    ? await runOnThread(argv, import.meta.url, signal)
+    : await main(argv, {
+        entryUrl: import.meta.url,
+        stdin: process.stdin,
+        stdout: process.stdout,
+        stderr: process.stderr,
+        env: process.env,
+        signal,
+        isInterrupted: () => signal.aborted,
+      })
+  process.exitCode = exitCode
+  if (exitCode === ExitCode.Interrupted) process.exit()
+} else await runInThread(import.meta.url)
