@@ -1,4 +1,4 @@
-import { open, rename, rm, stat } from 'node:fs/promises'
+import { open, realpath, rename, rm, stat, type FileHandle } from 'node:fs/promises'
 import { basename, dirname, join, resolve } from 'node:path'
 import { UsageError } from './arguments.ts'
 
@@ -14,17 +14,28 @@ export async function checkOutput(option: string, path: string, inputs: readonly
   if ((await stat(path).catch(() => null))?.isDirectory() === true) refuse('this is a folder.')
 }
 
-/** Writes a file under another name beside its place and moves it there once it is whole. */
+/**
+ * Writes a file under another name beside its place and moves it there once it is whole. What is no ordinary file, such as
+ * a device or a pipe, is written to as it stands.
+ */
 export async function writeFile(path: string, parts: Iterable<string | Uint8Array>): Promise<void> {
-  const temporary = join(dirname(path), `.${basename(path)}.${process.pid}.part`)
-  const file = await open(temporary, 'w')
+  const found = await stat(path).catch(() => null)
+  if (found !== null && !found.isFile()) return writeInto(await open(path, 'w'), parts)
+  const target = found === null ? path : await realpath(path)
+  const temporary = join(dirname(target), `.${basename(target)}.${process.pid}.part`)
   try {
-    await file.writeFile(parts)
-    await file.close()
-    await rename(temporary, path)
+    await writeInto(await open(temporary, 'w'), parts)
+    await rename(temporary, target)
   } catch (error) {
-    await file.close().catch(() => undefined)
     await rm(temporary, { force: true })
     throw error
+  }
+}
+
+async function writeInto(file: FileHandle, parts: Iterable<string | Uint8Array>): Promise<void> {
+  try {
+    await file.writeFile(parts)
+  } finally {
+    await file.close()
   }
 }
