@@ -51,6 +51,11 @@ function exitCodeOf(error: unknown, name: string, terminal: Terminal): number {
     terminal.fail(error.message, error.hint ?? `"tallycut help ${name}" tells all options.`)
     return ExitCode.BadInput
   }
+  const fileProblem = fileProblemOf(error)
+  if (fileProblem !== null) {
+    terminal.fail(fileProblem)
+    return ExitCode.BadInput
+  }
   if (!(error instanceof AppError) || error.code === 'internal') {
     const trace = error instanceof Error ? (error.stack ?? error.message) : String(error)
     terminal.fail('A fault in Tallycut itself.', `Please report it with the lines that follow.\n${trace}`)
@@ -62,4 +67,19 @@ function exitCodeOf(error: unknown, name: string, terminal: Terminal): number {
   }
   if (error.code !== 'bad-file') terminal.fail(error.message)
   return error.code === 'out-of-reach' ? ExitCode.No : ExitCode.BadInput
+}
+
+const FILE_PROBLEMS: Readonly<Record<string, string>> = {
+  ENOSPC: 'there is no room left on the disk',
+  EACCES: 'there is no permission to write there',
+  EPERM: 'there is no permission to write there',
+  EROFS: 'the disk is for reading only',
+  ENOENT: 'there is no such folder',
+}
+
+/** What keeps a file from being written, or null where the error is another. */
+function fileProblemOf(error: unknown): string | null {
+  const { code, path } = error as NodeJS.ErrnoException
+  const words = code === undefined ? undefined : FILE_PROBLEMS[code]
+  return words === undefined ? null : `${path ?? 'A file'} could not be written: ${words}.`
 }

@@ -75,11 +75,9 @@ function fieldTable(fields: readonly Field[]): string {
   return columns(
     fields.map(({ key, unit, shape, default: value, nullMeans, explanation }) => {
       const range = [rangeWords(shape), unit].filter((part) => part !== '').join(' ')
-      const otherwise = value === null ? `null: ${nullMeans}` : JSON.stringify(value)
-      return [
-        key,
-        `${explanation} ${range === '' ? '' : `${range[0]?.toUpperCase()}${range.slice(1)}; `}default ${otherwise}.`,
-      ]
+      const otherwise = `default ${value === null ? `null: ${nullMeans}` : JSON.stringify(value)}`
+      const rule = range === '' ? otherwise : `${range}; ${otherwise}`
+      return [key, `${explanation} ${rule.replace(/^[a-z]/, (letter) => letter.toUpperCase())}.`]
     }),
   )
 }

@@ -1,3 +1,4 @@
+import { AppError } from '../../contract/errors.ts'
 import {
   compareAtCuts,
   wholeSet,
@@ -39,12 +40,19 @@ export type SetComparison = {
     })[]
 }
 
-/** Compares the first set with each of the others. Throws RangeError where their faults are counted on different bases. */
+/** Compares the first set with each of the others. Throws AppError 'bad-input' where their faults stand on different bases. */
 export function compareSets(sets: readonly MeasuredSet[]): SetComparison {
   const all = sets.map((set) => ({ set, delivered: deliveredSet(set) }))
   const points = all.map(({ set, delivered }) => ({ name: set.name, ...wholeSet(delivered) }))
   const [first, ...others] = all
   if (first === undefined) return { sets: [], pairs: [] }
+  const odd = sets.find(({ faults }) => faults.base !== first.set.faults.base)
+  if (odd !== undefined) {
+    throw new AppError(
+      'bad-input',
+      `${first.set.name} counts faults on ${first.set.faults.base}, ${odd.name} on ${odd.faults.base}: the two are never compared.`,
+    )
+  }
   return {
     sets: points,
     pairs: others.map(({ set, delivered }) => ({

@@ -9,6 +9,7 @@ import { netlistOf } from '../../workers/load-netlist.ts'
 import { progressOf, valueOf, type FileWork } from './file-work.ts'
 import { includedSource } from './included-source.ts'
 import { readSources } from './read-sources.ts'
+import { refuseWrongType } from './wrong-file-type.ts'
 
 /** A netlist as its files and the user describe it. */
 export type NetlistFiles = {
@@ -32,6 +33,7 @@ export async function readNetlistFiles(
   work: FileWork,
 ): Promise<NetlistOfFiles> {
   const sources = await readSources(files.netlist, work)
+  refuseWrongType(sources, 'netlist', work)
   const libraries = await readSources(files.libraries, work)
   const { top, assumeScanned } = files
   const testPins = [...files.testPins, ...pinsOfPatterns(sources, patterns, files.testPins)]

@@ -3,6 +3,7 @@ import { readPatterns, type PatternReading } from '../../engine/formats/registry
 import type { Source } from '../../engine/source/source.ts'
 import { progressOf, valueOf, type FileWork } from './file-work.ts'
 import { includedSource } from './included-source.ts'
+import { refuseWrongType } from './wrong-file-type.ts'
 
 /** Reads the texts of pattern files for a netlist, one after the other. Throws as valueOf does. */
 export function readPatternSources(
@@ -10,6 +11,7 @@ export function readPatternSources(
   netlist: Netlist,
   work: FileWork,
 ): PatternReading {
+  refuseWrongType(sources, 'patterns', work)
   const included: Source[] = []
   const include = (name: string): Source | null => {
     const source = sources[0] && includedSource(sources[0], name)
