@@ -1,0 +1,89 @@
+import { computed } from 'vue'
+import { useBudget } from '../../stores/budget.ts'
+import { useCeiling } from '../../stores/ceiling.ts'
+import { formats } from '../../formats.ts'
+import { figuresAt } from './cut-figures.ts'
+import { brokenLimits, fewestForGoal, limitsOf, mostInside } from './cut-limits.ts'
+import { brokenWords, ceilingWords, cutSentence, keptWords } from './cut-words.ts'
+
+/** Patterns to either side of the cut of which gain and price are shown. */
+export const NEIGHBOURS = 10
+
+/** What the Budget screen's parts say of the cut: all of it follows from the columns, nothing is asked of the host. */
+export function useCut() {
+  const budget = useBudget()
+  const ceiling = useCeiling()
+  const n = computed(() => budget.assumptions?.n ?? 1)
+  const marks = computed(() => budget.view?.markers.find(({ order }) => order === budget.order)?.marks ?? [])
+  const limits = computed(() =>
+    budget.view && budget.columns ? limitsOf(budget.view, budget.columns, n.value) : null,
+  )
+  const figures = computed(() => figuresOf(budget.cut))
+  const before = computed(() => figuresOf(Math.max(0, budget.cut - NEIGHBOURS)))
+  const after = computed(() => figuresOf(Math.min(budget.patterns, budget.cut + NEIGHBOURS)))
+  const broken = computed(() =>
+    budget.view && figures.value ? brokenLimits(budget.view, figures.value) : null,
+  )
+  const sentence = computed(() =>
+    budget.view && figures.value && after.value
+      ? cutSentence(figures.value, after.value, budget.view.total, formats, n.value)
+      : [],
+  )
+  const state = computed(() => {
+    const { view } = budget
+    if (!view || !figures.value || !broken.value) return null
+    const trouble = brokenWords(broken.value, formats)
+    const has = {
+      time: view.limits.maxMilliseconds !== null,
+      memory: view.vectorMemory !== null,
+      goal: view.limits.minCoverage !== null || view.limits.maxDppm !== null,
+    }
+    const bound = ceiling.ceiling?.ceiling[budget.cut]
+    const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view.total, formats)
+    return {
+      isBroken: trouble !== '',
+      text: [trouble === '' ? keptWords(has) : trouble, proof].join(' ').trim(),
+    }
+  })
+  const ownBudgets = computed(() =>
+    budget.budgets.filter(({ runId, order }) => runId === budget.runId && order === budget.order),
+  )
+  const stops = computed(() => {
+    const cuts = [
+      ...ownBudgets.value.map(({ cut }) => cut),
+      ...marks.value.map(({ cut }) => cut),
+      ...(limits.value
+        ? [limits.value.time, limits.value.memory, limits.value.goal, limits.value.escapes]
+        : []),
+    ].filter((cut): cut is number => cut !== null && Number.isFinite(cut) && cut >= 0)
+    return [...new Set(cuts)].sort((a, b) => a - b)
+  })
+  const ends = computed(() => ({
+    fewest: limits.value ? (fewestForGoal(limits.value) ?? 0) : 0,
+    most: limits.value
+      ? Math.min(mostInside(limits.value, budget.patterns), budget.patterns)
+      : budget.patterns,
+  }))
+
+  function figuresOf(cut: number) {
+    return budget.view && budget.columns ? figuresAt(budget.view, budget.columns, cut, n.value) : null
+  }
+
+  return {
+    n,
+    marks,
+    limits,
+    figures,
+    before,
+    after,
+    broken,
+    sentence,
+    state,
+    ownBudgets,
+    stops,
+    ends,
+    figuresOf,
+  }
+}
+
+export type Cut = ReturnType<typeof useCut>
