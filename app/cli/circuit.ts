@@ -3,7 +3,7 @@ import { UsageError } from './arguments.ts'
 import { ExitCode, type Command } from './command.ts'
 import { NETLIST_DETAILS, NETLIST_OPTIONS, netlistArguments } from './netlist-arguments.ts'
 import { JSON_OPTION, printJson } from './print-json.ts'
-import { aligned, formats } from './print-text.ts'
+import { aligned, formats, printText } from './print-text.ts'
 
 export const circuit: Command = {
   usage: ['NETLIST [--library LIB…] [--top NAME] [--json]'],
@@ -16,7 +16,7 @@ export const circuit: Command = {
     const read = await readNetlistFiles(netlist, [], terminal)
     terminal.clear()
     if (args.has('json')) printJson({ ...circuitJson(read), warnings: terminal.warnings }, stdout)
-    else stdout.write(`${circuitText(read)}\n`)
+    else printText(circuitText(read), stdout)
     return ExitCode.Done
   },
 }

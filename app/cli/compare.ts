@@ -16,7 +16,7 @@ import { simulatorOf, warnOfMismatches } from './coverage.ts'
 import type { Io } from './io.ts'
 import { NETLIST_DETAILS, NETLIST_OPTIONS, netlistArguments } from './netlist-arguments.ts'
 import { JSON_OPTION, printJson } from './print-json.ts'
-import { aligned, formats } from './print-text.ts'
+import { aligned, formats, printText } from './print-text.ts'
 import type { Terminal } from './terminal.ts'
 
 /** How many names of gained and lost faults are shown to people, and listed in JSON. */
@@ -62,7 +62,7 @@ export const compare: Command = {
     const worse = comparison.pairs.filter(({ isWorse }) => isWorse)
     if (args.has('json'))
       printJson({ ...head, ...comparisonJson(comparison), warnings: terminal.warnings }, io.stdout)
-    else io.stdout.write(`${comparisonText(comparison)}\n`)
+    else printText(comparisonText(comparison), io.stdout)
     if (worse.length === 0 || !args.has('fail-if-worse')) return ExitCode.Done
     for (const { first, second } of worse) terminal.fail(`${second} covers less than ${first}.`)
     return ExitCode.No

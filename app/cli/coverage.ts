@@ -12,7 +12,7 @@ import { ExitCode, type Command, type OptionTable } from './command.ts'
 import type { Io } from './io.ts'
 import { NETLIST_DETAILS, NETLIST_OPTIONS, netlistArguments } from './netlist-arguments.ts'
 import { JSON_OPTION, printJson } from './print-json.ts'
-import { aligned, formats } from './print-text.ts'
+import { aligned, formats, printText } from './print-text.ts'
 import type { Terminal } from './terminal.ts'
 import { checkOutput, writeFile } from './write-file.ts'
 
@@ -68,7 +68,7 @@ export const coverage: Command = {
       const curveFile = args.text('curve')
       if (curveFile !== null) await writeFile(curveFile, curveRows(curve, run.faults.nFaults))
       if (args.has('json')) printJson({ ...coverageJson(run, curve), warnings: terminal.warnings }, io.stdout)
-      else io.stdout.write(`${coverageText(run)}\n`)
+      else printText(coverageText(run), io.stdout)
       return ExitCode.Done
     } finally {
       await simulator.close()

@@ -23,7 +23,7 @@ import { planJson } from './plan-json.ts'
 import { PLAN_OPTIONS, planDetails } from './plan-options.ts'
 import { planText } from './plan-text.ts'
 import { printJson } from './print-json.ts'
-import { formats } from './print-text.ts'
+import { formats, printText } from './print-text.ts'
 import type { Terminal } from './terminal.ts'
 import { checkOutput, writeFile } from './write-file.ts'
 
@@ -63,7 +63,7 @@ export const plan: Command = {
       if (args.has('json')) {
         const json = { ...coverageJson(run, []), ...planJson(planned), warnings: terminal.warnings }
         printJson(json, io.stdout)
-      } else io.stdout.write(`${planText(run, planned)}\n`)
+      } else printText(planText(run, planned), io.stdout)
       const shortfalls = shortfallsOf(planned.plan.result, formats)
       for (const shortfall of shortfalls) terminal.fail(shortfall)
       return shortfalls.length > 0 ? ExitCode.No : ExitCode.Done

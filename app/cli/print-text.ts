@@ -1,7 +1,18 @@
+import type { Writable } from 'node:stream'
 import { numberFormats } from '../contract/format-number.ts'
 
 /** Figures as the command line shows them to people. */
 export const formats = numberFormats('en')
+
+/** Prints text for people. */
+export function printText(text: string, stdout: Writable): void {
+  stdout.write(`${plainSpaces(text)}\n`)
+}
+
+/** Terminals and those who search their output want spaces that are no others. */
+export function plainSpaces(text: string): string {
+  return text.replaceAll('\u00a0', ' ')
+}
 
 /** Returns labels and what they stand for as two columns. */
 export function aligned(rows: readonly (readonly [string, string])[]): string {

@@ -2,6 +2,7 @@ import type { Diagnostic } from '../engine/source/diagnostic.ts'
 import { formatDiagnostic, placeDiagnostics } from '../engine/source/caret-frame.ts'
 import type { FileWork } from '../services/on-files/file-work.ts'
 import type { Io } from './io.ts'
+import { plainSpaces } from './print-text.ts'
 
 /** How many warnings of one reading are shown; errors are shown all. */
 const WARNINGS_SHOWN = 10
@@ -36,7 +37,7 @@ export function openTerminal({ stderr, stdin, env, signal, isInterrupted }: Io):
   }
   const say = (text: string): void => {
     clear()
-    stderr.write(`${text}\n`)
+    stderr.write(`${plainSpaces(text)}\n`)
   }
   const show = (diagnostic: Diagnostic, text: string): void => {
     const colour = diagnostic.severity === 'error' ? RED : YELLOW
