@@ -124,7 +124,8 @@ function within(points: readonly Point[], { y }: Window): Point[] {
   return points.map(([x, coverage]) => [x, Math.min(coverage, y.to)])
 }
 
+/** A tile of slanted lines; ECharts takes it where its types know of colours alone. */
 function hatch(colour: string): string {
   const stroke = { d: 'M-1 1L1 -1M0 6L6 0M5 7L7 5', stroke: colour, 'stroke-width': 1.1, fill: 'none' }
-  return { svgElement: { tag: 'path', attrs: stroke }, svgWidth: 6, svgHeight: 6 } as never
+  return { svgElement: { tag: 'path', attrs: stroke }, svgWidth: 6, svgHeight: 6 } as unknown as string
 }
