@@ -1,6 +1,6 @@
 import { isAscii, isUtf8 } from 'node:buffer'
 import { createReadStream } from 'node:fs'
-import { stat } from 'node:fs/promises'
+import { open, stat } from 'node:fs/promises'
 import { Readable } from 'node:stream'
 import { createGunzip } from 'node:zlib'
 import type { Diagnostic, DiagnosticCode, Reading } from '../engine/source/diagnostic.ts'
@@ -12,6 +12,8 @@ export const MAX_SOURCE_BYTES = 500_000_000
 
 /** How much of a file is looked at to tell text from noise. */
 const HEAD_BYTES = 65_536
+/** How much is read between two looks at whether to go on. */
+const WHOLE_STEP = 2 << 20
 
 export type SourceFileOptions = {
   /** The file's name as the user knows it; else the path. */
@@ -41,13 +43,51 @@ export async function readSourceFile(
     if (found.isDirectory()) {
       return failed(name, 'wrong-file-type', 'this is a folder', 'Choose a file in it.')
     }
+    if (found.isFIFO()) return readStream(createReadStream(path), name, 0, options)
     if (!found.isFile()) return failed(name, 'wrong-file-type', 'this is no ordinary file')
     size = found.size
   } catch (reason) {
     return failed(name, 'unknown-name', openingProblem(reason))
   }
   if (size > maxBytes) return failed(name, 'limit', tooLarge(size, maxBytes))
-  return readStream(createReadStream(path, { highWaterMark: 1 << 20 }), name, size, options)
+  return (
+    (await readUnpacked(path, name, size, options)) ??
+    readStream(createReadStream(path, { highWaterMark: 1 << 20 }), name, size, options)
+  )
+}
+
+/** Reads a file that is not packed into one buffer of its size, in fewer copies than a stream; null where it is packed. */
+async function readUnpacked(
+  path: string,
+  name: string,
+  size: number,
+  { onProgress, signal }: SourceFileOptions,
+): Promise<Reading<Source> | null> {
+  const bytes = Buffer.allocUnsafeSlow(size)
+  let done = 0
+  try {
+    const file = await open(path)
+    try {
+      while (done < size) {
+        const { bytesRead } = await file.read(bytes, done, Math.min(WHOLE_STEP, size - done), done)
+        if (bytesRead === 0) break
+        if (done === 0 && isGzip(bytes)) return null
+        done += bytesRead
+        if (signal?.aborted === true || onProgress?.(done, size) === false) {
+          return { value: null, diagnostics: [] }
+        }
+      }
+    } finally {
+      await file.close()
+    }
+  } catch (reason) {
+    return failed(name, 'unknown-name', openingProblem(reason))
+  }
+  return decode(bytes.subarray(0, done), name)
+}
+
+function isGzip(bytes: Uint8Array): boolean {
+  return bytes[0] === 0x1f && bytes[1] === 0x8b
 }
 
 /** The same for bytes that are at hand, such as a file that was dropped on a browser window. */
@@ -107,7 +147,7 @@ async function readStream(
     const iterator = (stream as AsyncIterable<Buffer>)[Symbol.asyncIterator]()
     const start = await iterator.next()
     if (start.done === true) return failed(name, 'empty-file', 'the file is empty')
-    isPacked = start.value[0] === 0x1f && start.value[1] === 0x8b
+    isPacked = isGzip(start.value)
     const parts = watched(start.value, iterator)
     if (isPacked) {
       const packed = Readable.from(parts)

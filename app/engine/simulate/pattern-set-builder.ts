@@ -37,6 +37,15 @@ export class PatternSetBuilder {
     setBit(this.unknown, row, this.count)
   }
 
+  /** The values of one row in the next 32 patterns, one a bit; so far whole words must be filled. */
+  setInputs(row: number, ones: number, unknown: number): void {
+    const word = row * this.value.wordsPerRow + (this.count >>> 5)
+    this.value.words[word] = ones
+    if (unknown === 0) return
+    this.unknown ??= emptyPlane(this.inputRows, this.capacity)
+    this.unknown.words[word] = unknown
+  }
+
   expect(row: number, value: 0 | 1): void {
     this.expected ??= {
       value: emptyPlane(this.responseRows, this.capacity),
@@ -59,6 +68,10 @@ export class PatternSetBuilder {
 
   endPattern(): void {
     this.count++
+  }
+
+  endPatterns(count: number): void {
+    this.count += count
   }
 
   finish(burst: string): PatternSet {

@@ -44,6 +44,30 @@ describe('a vectors file', () => {
     expect(set.bursts).toEqual([{ name: 'p.vec', first: 0, count: 3 }])
   })
 
+  it.each(['\n', '\r\n'])(
+    'reads long runs of plain lines as it reads lines one by one, ended by %j',
+    (end) => {
+      const characters = ['0', '1', 'X', 'x', '1', '0', '0']
+      const lines = Array.from({ length: 300 }, (_, at) =>
+        [0, 1, 2].map((row) => characters[(at * at + 3 * row + (at >> 3)) % (at < 100 ? 2 : 7)]).join(''),
+      )
+      const commented = lines.map((line, at) => (at % 97 === 40 ? `${line} # aside` : line))
+      const set = vectors(commented.join(end) + end).value as PatternSet
+      const rowsWhere = (isMeant: (character: string) => boolean): string[] =>
+        [0, 1, 2].map((row) => lines.map((line) => (isMeant(line[row]) ? 1 : 0)).join(''))
+      expect(set.nPatterns).toBe(300)
+      expect(rowsOf(set.value, 300)).toEqual(rowsWhere((character) => character === '1'))
+      expect(rowsOf(set.unknown!, 300)).toEqual(rowsWhere((character) => /x/i.test(character)))
+    },
+  )
+
+  it('finds a broken line in the middle of plain ones', () => {
+    const text = `${'101\n'.repeat(40)}1z1\n${'101\n'.repeat(40)}`
+    expect(places(vectors(text), text)).toEqual(['unknown-character 41:2'])
+    const short = `${'101\n'.repeat(40)}11\n${'101\n'.repeat(40)}`
+    expect(places(vectors(short), short)).toEqual(['pattern-width 41:1'])
+  })
+
   it('keeps one plane where no X occurs', () => {
     expect(vectors('101\n').value!.unknown).toBeNull()
   })

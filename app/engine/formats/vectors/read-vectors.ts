@@ -12,6 +12,8 @@ import type { Source } from '../../source/source.ts'
 
 const MAX_CYCLES = 0xffffffff
 const PROGRESS_STEP = 4_000_000
+/** Patterns in a word of a plane. */
+const BLOCK_LINES = 32
 
 const NEWLINE = 10
 const RETURN = 13
@@ -86,7 +88,7 @@ class VectorsReader {
       const code = text.charCodeAt(this.at)
       if (code === NEWLINE || code === RETURN) this.at++
       else if (code === HASH) this.skipLine()
-      else if (this.at < text.length && !this.readPattern()) this.skipLine()
+      else if (this.at < text.length && !this.readPlainBlock() && !this.readPattern()) this.skipLine()
       if (this.diagnostics.length >= MAX_DIAGNOSTICS) {
         this.report('too-many', this.at, this.at, `${MAX_DIAGNOSTICS} errors found; reading stopped here`)
         return this.result(null)
@@ -105,6 +107,51 @@ class VectorsReader {
       return this.result(null)
     }
     return this.result(this.builder.finish(this.file))
+  }
+
+  /**
+   * 32 lines at once that hold nothing but input characters, all of the right width; false where they are not such, or the
+   * patterns so far do not fill whole words. Bits that it has written by then are written again by the lines one by one.
+   */
+  private readPlainBlock(): boolean {
+    const { text, builder, width, at } = this
+    if (builder.nPatterns % BLOCK_LINES !== 0) return false
+    const stride = text.charCodeAt(at + width) === RETURN ? width + 2 : width + 1
+    const end = at + BLOCK_LINES * stride
+    if (end > text.length) return false
+    for (let lineEnd = at + width; lineEnd < end; lineEnd += stride) {
+      if (stride === width + 2 && text.charCodeAt(lineEnd) !== RETURN) return false
+      if (text.charCodeAt(lineEnd + stride - width - 1) !== NEWLINE) return false
+    }
+    for (let row = 0; row < width; row++) {
+      let ones = 0
+      let odd = 0
+      for (let line = 0, place = at + row; line < BLOCK_LINES; line++, place += stride) {
+        const code = text.charCodeAt(place) ^ ZERO
+        odd |= code
+        ones |= code << line
+      }
+      if (odd <= 1) builder.setInputs(row, ones, 0)
+      else if (!this.readPlainColumn(row, stride)) return false
+    }
+    builder.endPatterns(BLOCK_LINES)
+    this.at = end
+    return true
+  }
+
+  /** One input's character in 32 lines, some of them X; false where one is neither 0, 1 nor X. */
+  private readPlainColumn(row: number, stride: number): boolean {
+    const { text, builder, at } = this
+    let ones = 0
+    let unknown = 0
+    for (let line = 0, place = at + row; line < BLOCK_LINES; line++, place += stride) {
+      const code = text.charCodeAt(place)
+      if (code === ONE) ones |= 1 << line
+      else if (code === BIG_X || code === SMALL_X) unknown |= 1 << line
+      else if (code !== ZERO) return false
+    }
+    builder.setInputs(row, ones, unknown)
+    return true
   }
 
   /** One line; false where it is broken and its rest is to be skipped. */
