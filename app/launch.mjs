@@ -6,7 +6,6 @@ import module from 'node:module'
 import { constants } from 'node:os'
 import { dirname, join } from 'node:path'
 import { fileURLToPath, pathToFileURL } from 'node:url'
-import { buildStale } from './launch/build.mjs'
 
 const OLDEST_NODE = 24
 const root = join(dirname(fileURLToPath(import.meta.url)), '..')
@@ -22,6 +21,7 @@ if (Number.parseInt(process.versions.node, 10) < OLDEST_NODE) {
   await runOwnNode()
 }
 
+const { buildStale } = await import('./launch/build.mjs')
 const [command, ...rest] = process.argv.slice(2)
 if (command === 'build') {
   await buildStale(['kernel', 'node', 'renderer', 'electron'])

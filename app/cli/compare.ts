@@ -100,7 +100,7 @@ async function compareFiles(args: Arguments, terminal: Terminal, io: Io): Promis
     }
     return { comparison: compareSets(sets), head: first === null ? {} : circuitJson(first) }
   } finally {
-    await simulator.close()
+    simulator.close()
   }
 }
 

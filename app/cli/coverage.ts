@@ -71,7 +71,7 @@ export const coverage: Command = {
       else printText(coverageText(run), io.stdout)
       return ExitCode.Done
     } finally {
-      await simulator.close()
+      simulator.close()
     }
   },
 }

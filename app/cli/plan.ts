@@ -68,7 +68,7 @@ export const plan: Command = {
       for (const shortfall of shortfalls) terminal.fail(shortfall)
       return shortfalls.length > 0 ? ExitCode.No : ExitCode.Done
     } finally {
-      await simulator.close()
+      simulator.close()
     }
   },
 }
