@@ -9,7 +9,7 @@ import { budgetRows } from '../services/on-files/fault-rows.ts'
 import { inputFile } from '../services/on-files/input-file.ts'
 import { PATTERN_EXTENSIONS, patternParts } from '../services/on-files/pattern-parts.ts'
 import type { PlanChoice } from '../services/on-files/plan-choice.ts'
-import { planOfFiles, type PlanOfFiles } from '../services/on-files/plan-of-files.ts'
+import { planOfFiles, refuseTooLarge, type PlanOfFiles } from '../services/on-files/plan-of-files.ts'
 import { planReport, type ReportOrigin } from '../services/on-files/plan-report.ts'
 import { checkConstraints, readAssumptionFiles } from '../services/on-files/read-assumptions.ts'
 import type { NetlistFiles } from '../services/on-files/read-netlist-files.ts'
@@ -52,6 +52,7 @@ export const plan: Command = {
     try {
       const assumptions = await readAssumptionFiles(request.assumptions, terminal)
       const files = await readRunFiles(request.netlist, request.patterns, terminal)
+      refuseTooLarge(files)
       checkConstraints(assumptions, files.patterns.nPatterns, terminal)
       const run = await simulateFiles(files, { detectionLimit: 0, wantMatrix: true }, simulator, terminal)
       warnOfMismatches(run, terminal)

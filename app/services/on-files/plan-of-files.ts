@@ -17,7 +17,7 @@ import type { PlanResult } from '../../engine/choose/plan-result.ts'
 import { smallestCompleteSet } from '../../engine/choose/smallest-complete-set.ts'
 import { steepestFirst } from '../../engine/choose/steepest-first.ts'
 import { buildTimeModel } from '../../engine/tester/time-model.ts'
-import type { CoverageRun } from './coverage-of-files.ts'
+import type { CoverageRun, ReadFiles } from './coverage-of-files.ts'
 import { progressOf, valueOf, wholeOf, type FileWork } from './file-work.ts'
 import { improvePlan, type Improvement } from './improve-plan.ts'
 import { requirePlan, untilLater, withEvenCosts, type PlanChoice } from './plan-choice.ts'
@@ -35,6 +35,20 @@ export type PlanOfFiles = {
   readonly constraintCosts: readonly ConstraintCost[]
   /** Null where none was asked for. */
   readonly improvement: Improvement | null
+}
+
+/** The most that the record of which pattern detects which fault may take. */
+const MOST_MATRIX_BYTES = 1024 ** 3
+
+/** Throws AppError 'bad-input' where a plan would need more memory than it may take; said before anything is simulated. */
+export function refuseTooLarge({ faults, patterns }: ReadFiles): void {
+  const bytes = (faults.nClasses * patterns.nPatterns) / 8
+  if (bytes <= MOST_MATRIX_BYTES) return
+  const gigabytes = (bytes / 1024 ** 3).toFixed(1)
+  throw new AppError(
+    'bad-input',
+    `A plan keeps which of ${patterns.nPatterns} patterns detect which of ${faults.nClasses} collapsed faults; that would take ${gigabytes} GB, and 1 GB is the most. Plan fewer patterns; "coverage" has no such limit.`,
+  )
 }
 
 /** Chooses an order and a cut of a simulated set. Throws AppError 'bad-file', 'bad-input', 'cancelled'. */
