@@ -8,7 +8,11 @@ const day = new Intl.DateTimeFormat(navigator.language || 'en', {
   month: 'short',
   year: 'numeric',
 })
-const minute = new Intl.DateTimeFormat(navigator.language || 'en', { hour: '2-digit', minute: '2-digit' })
+const minute = new Intl.DateTimeFormat(navigator.language || 'en', {
+  hour: '2-digit',
+  minute: '2-digit',
+  hourCycle: 'h23',
+})
 
 /** Returns a date as people say it: "today, 08:12", else day, month and year. */
 export function dayText(atMs: number, now: number = Date.now()): string {
