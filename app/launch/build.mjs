@@ -47,7 +47,7 @@ export async function buildStale(names) {
 
 async function viteBuild(configFile) {
   const { build } = await import('vite')
-  await build({ root, configFile: join(root, configFile), logLevel: 'warn' })
+  await build({ configFile: join(root, configFile), logLevel: 'warn' })
 }
 
 function newest(paths) {
