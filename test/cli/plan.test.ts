@@ -98,6 +98,7 @@ describe('plan', () => {
     expect(improved.budget.patterns).toBeLessThanOrEqual(3)
     expect(improved.budget.detected).toBeGreaterThanOrEqual(plain.budget.detected)
     expect(improved.budget.detected).toBeLessThanOrEqual(improved.ceiling[2] ?? 0)
+    expect(improved.gap).toBe((improved.ceiling[2] ?? 0) - improved.budget.detected)
     const goal = await planJson(c17, all32, '--min-coverage', '1', '--improve')
     expect(goal.budget).toMatchObject({ patterns: 4, detected: 34 })
   })

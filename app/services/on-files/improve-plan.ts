@@ -3,10 +3,10 @@ import { bestPrefixOrSingle } from '../../engine/choose/best-prefix-or-single.ts
 import { meets } from '../../engine/choose/budget.ts'
 import type { ChoiceBasis } from '../../engine/choose/choice-basis.ts'
 import { compileRules } from '../../engine/choose/choice-rules.ts'
-import type { ChoiceTask } from '../../engine/choose/choice-task.ts'
+import { withSlack, type ChoiceTask } from '../../engine/choose/choice-task.ts'
 import { NO_CONSTRAINTS } from '../../engine/choose/constraints.ts'
 import { deliveredOrder } from '../../engine/choose/delivered-order.ts'
-import { spendingUnder } from '../../engine/choose/headroom.ts'
+import { spendingUnder, type Spending } from '../../engine/choose/headroom.ts'
 import { improveAtBudget } from '../../engine/choose/improve-at-budget.ts'
 import type { MipSolver } from '../../engine/choose/mip.ts'
 import type { Order } from '../../engine/choose/order.ts'
@@ -78,13 +78,28 @@ function moreAtLimit(
   const chosen = result.budget.chosen.map((pattern) => pattern - 1)
   const bound = result.gap === null ? {} : { bound: result.budget.detected + result.gap }
   const found = improveAtBudget(task, chosen, spending.budget, { ...search, ...bound })
-  if (found === null || found.gained === 0) {
-    return { ...nothing, improvement: { ...nothing.improvement, proven: found?.proven ?? false } }
+  if (found === null) return nothing
+  const { proven } = found
+  const tighter = { ...input, ceiling: tightenedCeiling(input, spending, found.bound) }
+  const candidate = found.gained === 0 ? null : planKeeping(tighter, basis, found.patterns, work)
+  if (candidate === null || !isBetter(candidate.plan, start.plan)) {
+    const plan = requirePlan({ ...tighter, order: start.order })
+    return { plan, order: start.order, improvement: { gained: 0, patternsSaved: 0, proven } }
   }
-  const candidate = planKeeping(input, basis, found.patterns, work)
-  if (!isBetter(candidate.plan, start.plan)) return nothing
   const gained = candidate.plan.result.budget.detected - result.budget.detected
-  return { ...candidate, improvement: { gained, patternsSaved: 0, proven: found.proven } }
+  return { ...candidate, improvement: { gained, patternsSaved: 0, proven } }
+}
+
+/** Returns the ceiling by number of patterns with what the search has proven of its budget, where patterns cost the same. */
+function tightenedCeiling(
+  { ceiling }: PlanInput,
+  { costs, budget }: Spending,
+  bound: number,
+): Float64Array | null {
+  const cost = costs[0] ?? 0
+  if (ceiling === null || cost === 0 || costs.some((one) => one !== cost)) return ceiling
+  const fitting = Math.floor(withSlack(budget) / cost)
+  return ceiling.map((most, at) => (at < fitting ? Math.min(most, bound) : most))
 }
 
 /** Takes one pattern after the other away, as long as a choice of so many still meets the goals. */
