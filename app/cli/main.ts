@@ -13,6 +13,7 @@ export async function main(argv: readonly string[], io: Io): Promise<number> {
   const [name, ...args] = argv
   const terminal = openTerminal(io)
   try {
+    if (name === '--version') return await version(io)
     if (name === undefined || name === 'help' || HELP.has(name)) return await help(args[0] ?? null, io)
     const entry = entryOf(name)
     if (args.some((arg) => HELP.has(arg))) return await help(name, io)
@@ -42,6 +43,12 @@ async function help(name: string | null, io: Io): Promise<number> {
   const entry = name === null || HELP.has(name) ? null : entryOf(name)
   const isListed = name !== null && entry !== null && 'load' in entry
   io.stdout.write(isListed ? commandHelp(name, await entry.load()) : overview())
+  return ExitCode.Done
+}
+
+async function version({ entryUrl, stdout }: Io): Promise<number> {
+  const { findInstallation, versionOf } = await import('../installation.ts')
+  stdout.write(`Tallycut ${versionOf(findInstallation(entryUrl))}\n`)
   return ExitCode.Done
 }
 

@@ -134,7 +134,7 @@ describe('plan', () => {
   it('keeps bursts that the program list says must stay, and runs the one that must be first first', async () => {
     const one = file('one.vec', '00\n')
     const two = file('two.vec', '11\n01\n10\n')
-    const program = file('program.csv', `burst,must stay,must be first\n${one},yes,yes\n`)
+    const program = file('program.csv', `burst,file,must stay,must be first\nparametric,one.vec,yes,yes\n`)
     const plan = await planJson(nand, one, two, '--program', program, '--max-patterns', '2')
     expect(plan.budget.chosen).toEqual([1, 2])
   })

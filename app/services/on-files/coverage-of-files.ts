@@ -1,3 +1,4 @@
+import { setImmediate } from 'node:timers/promises'
 import type { FaultList } from '../../engine/faults/fault-list.ts'
 import { countStates, type StateCounts } from '../../engine/faults/fault-state.ts'
 import type { Netlist } from '../../engine/circuit/netlist.ts'
@@ -62,6 +63,8 @@ export async function simulateFiles(
   const { netlist, faults, patterns } = files
   const task = { circuit: netlist.circuit, faults, patterns, classes: null, ...options }
   const running = simulator.run(task, work)
+  // The threads are told first, so that they simulate while this one compares.
+  await setImmediate()
   const comparison = patterns.expected === null ? null : compareResponse(netlist, patterns)
   const { result, kernelSeconds } = await running
   return {

@@ -21,7 +21,7 @@ import type { CoverageRun, ReadFiles } from './coverage-of-files.ts'
 import { progressOf, valueOf, wholeOf, type FileWork } from './file-work.ts'
 import { improvePlan, type Improvement } from './improve-plan.ts'
 import { requirePlan, untilLater, withEvenCosts, type PlanChoice } from './plan-choice.ts'
-import { withProgram } from './program-constraints.ts'
+import { rowsByBurst, withProgram } from './program-constraints.ts'
 import type { FileAssumptions } from './read-assumptions.ts'
 
 export type PlanOfFiles = {
@@ -60,10 +60,11 @@ export function planOfFiles(
   patternFile: string,
   work: FileWork,
 ): PlanOfFiles {
-  const { tester, product, program } = assumptions
+  const { tester, product } = assumptions
   const { netlist, faults, patterns } = run
+  const program = rowsByBurst(assumptions.program, patterns)
   const scan = scanFactsOf(netlist)
-  const basis = basisOf(run, assumptions, choice.detections, patternFile, work)
+  const basis = basisOf(run, { ...assumptions, program }, choice.detections, patternFile, work)
   const { task, total } = basis
   const ceiling = wholeOf(
     ceilingOf(withEvenCosts(task), patternBudgets(patterns.nPatterns), {

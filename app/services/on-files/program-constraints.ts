@@ -1,9 +1,27 @@
+import { basename } from 'node:path'
 import { AppError } from '../../contract/errors.ts'
 import type { ChoiceBasis } from '../../engine/choose/choice-basis.ts'
 import { compileRules } from '../../engine/choose/choice-rules.ts'
 import { NO_CONSTRAINTS, type Constraints } from '../../engine/choose/constraints.ts'
 import type { PatternSet } from '../../engine/simulate/pattern-set.ts'
 import { matchProgram, type ProgramRow } from '../../engine/tester/program.ts'
+
+/**
+ * Returns the rows of a test program list with each burst of the set under its own name: a burst that is a whole file may be
+ * named by the file, with or without its folder, in either column.
+ */
+export function rowsByBurst(
+  program: readonly ProgramRow[],
+  { bursts }: Pick<PatternSet, 'bursts'>,
+): readonly ProgramRow[] {
+  return program.map((row) => {
+    const named = [row.burst, row.file].map((name) => basename(name))
+    const burst =
+      bursts.find(({ name }) => name === row.burst) ??
+      bursts.find(({ name }) => named.includes(basename(name)))
+    return burst === undefined ? row : { ...row, burst: burst.name }
+  })
+}
 
 /**
  * Returns the basis with what the test program list imposes on bursts of the set: patterns of a burst that must stay are
