@@ -49,6 +49,14 @@ export function moveSpan(span: Span, by: number, all: Span): Span {
   return { from: span.from + shift, to: span.to + shift }
 }
 
+/** Moves one edge of a span, as far as the other edge and what there is allow. */
+export function moveEdge(span: Span, edge: 'from' | 'to', by: number, all: Span): Span {
+  const least = Math.min(FEWEST_PATTERNS, all.to - all.from)
+  return edge === 'from'
+    ? { ...span, from: clamp(span.from + by, all.from, span.to - least) }
+    : { ...span, to: clamp(span.to + by, span.from + least, all.to) }
+}
+
 function zoomSpan(span: Span, factor: number, around: number, all: Span, least: number): Span {
   const most = all.to - all.from
   const width = clamp((span.to - span.from) * factor, Math.min(least, most), most)

@@ -2,7 +2,12 @@ import { firstAtLeast } from './column-search.ts'
 import type { Curve } from './coverage-option.ts'
 import { type Plot, type Window, xPixel, yPixel } from './plot-geometry.ts'
 
-export type Box = { readonly left: number; readonly top: number; readonly right: number; readonly bottom: number }
+export type Box = {
+  readonly left: number
+  readonly top: number
+  readonly right: number
+  readonly bottom: number
+}
 
 /** A name with the point of its line that it belongs to. */
 export type LineLabel = {

@@ -27,6 +27,7 @@ export const useBudget = defineStore('budget', () => {
   const product = shallowRef<ProductRecord | null>(null)
   const runs = shallowRef<readonly Run[]>([])
   const budgets = shallowRef<readonly Budget[]>([])
+  const names = shallowRef<ReadonlyMap<string, string>>(new Map())
   const testers = shallowRef<readonly TesterRecord[]>([])
   const fields = shallowRef<OutputOf<'fields.get'> | null>(null)
   const runId = ref(0)
@@ -45,6 +46,8 @@ export const useBudget = defineStore('budget', () => {
   const doneRuns = computed(() => runs.value.filter(({ state: each }) => each === 'done'))
   const inUse = computed(() => budgets.value.find((budget) => budget.inUse) ?? null)
 
+  /** Order and cut to be shown once the figures for them are here; what was shown stays until then. */
+  let coming: { readonly order: OrderName; readonly cut?: number } | null = null
   let asked = 0
   let settling: ReturnType<typeof setTimeout> | undefined
 
@@ -87,6 +90,16 @@ export const useBudget = defineStore('budget', () => {
     product.value = records.product
     runs.value = records.runs
     budgets.value = records.budgets
+    names.value = new Map([
+      ...records.netlists.map(({ id, name }) => [`netlist ${id}`, name] as const),
+      ...records.patternSets.map(({ id, name }) => [`set ${id}`, name] as const),
+    ])
+  }
+
+  /** "Run 14: netlist r5, pattern set B". */
+  function nameOfRun({ number, netlistId, patternSetId }: Run): string {
+    const netlist = names.value.get(`netlist ${netlistId}`) ?? '–'
+    return `Run ${number}: netlist ${netlist}, ${names.value.get(`set ${patternSetId}`) ?? '–'}`
   }
 
   async function loadForms(): Promise<void> {
@@ -110,6 +123,11 @@ export const useBudget = defineStore('budget', () => {
       problem.value = null
       if (answer.view === null) return
       view.value = answer.view
+      if (coming !== null) {
+        order.value = coming.order
+        cut.value = coming.cut ?? cut.value
+        coming = null
+      }
       isStale.value = false
       cut.value = clamp(cut.value, 0, patterns.value)
       state.value = { status: 'ready' }
@@ -124,7 +142,7 @@ export const useBudget = defineStore('budget', () => {
   function ordersWanted(): OrderName[] {
     const shown: OrderName[] = ['as-delivered', 'steepest']
     const known = view.value?.runId === runId.value ? view.value.orders.map((each) => each.order) : []
-    if (order.value === 'smallest' || known.includes('smallest')) shown.push('smallest')
+    if ([order.value, coming?.order, ...known].includes('smallest')) shown.push('smallest')
     if (assumptions.value?.byHand) shown.push('by-hand')
     return shown
   }
@@ -155,15 +173,21 @@ export const useBudget = defineStore('budget', () => {
   }
 
   async function chooseOrder(next: OrderName): Promise<void> {
-    order.value = next
-    if (columns.value === null) await loadView()
-    else remember()
+    if (view.value?.orders.some((each) => each.order === next)) {
+      coming = null
+      order.value = next
+      remember()
+    } else {
+      coming = { order: next }
+      await loadView()
+    }
   }
 
   async function chooseRun(id: number): Promise<void> {
     runId.value = id
+    // An order by hand numbers the patterns of one set.
     if (assumptions.value?.byHand) assumptions.value = { ...assumptions.value, byHand: null }
-    if (order.value === 'by-hand') order.value = 'steepest'
+    coming = { order: order.value === 'by-hand' ? 'steepest' : order.value }
     await loadView()
   }
 
@@ -171,10 +195,19 @@ export const useBudget = defineStore('budget', () => {
   async function goTo(budget: Budget): Promise<void> {
     if (!doneRuns.value.some(({ id }) => id === budget.runId)) return
     runId.value = budget.runId
-    order.value = budget.order
     assumptions.value = budget.assumptions
-    cut.value = budget.cut
+    coming = { order: budget.order, cut: budget.cut }
     await loadView()
+  }
+
+  /** Moves a pattern to another position, both from 0, which makes the order one set by hand. */
+  function moveByHand(from: number, to: number): void {
+    const list = Array.from(columns.value?.pattern ?? [])
+    const [moved] = list.splice(from, 1)
+    if (moved === undefined || from === to) return
+    list.splice(to, 0, moved)
+    coming = { order: 'by-hand' }
+    assume({ byHand: list })
   }
 
   return {
@@ -198,6 +231,7 @@ export const useBudget = defineStore('budget', () => {
     doneRuns,
     inUse,
     open,
+    nameOfRun,
     loadRecords,
     loadForms,
     loadView,
@@ -206,6 +240,7 @@ export const useBudget = defineStore('budget', () => {
     chooseOrder,
     chooseRun,
     goTo,
+    moveByHand,
   }
 })
 

@@ -20,12 +20,15 @@ export type BrokenLimits = {
   readonly dppmOver: number
 }
 
-/** Returns between which cuts all limits are kept. Limits are inclusive. */
+/**
+ * Returns between which cuts all limits are kept. Limits are inclusive; the time limit is on what the patterns take on
+ * one site, set-up included.
+ */
 export function limitsOf(view: BudgetView, columns: OrderColumns, n: number): CutLimits {
   const { maxMilliseconds, minCoverage, maxDppm } = view.limits
   const orNever = (cut: number): number => (cut > columns.patterns ? Infinity : cut)
   return {
-    time: maxMilliseconds === null ? null : firstAbove(columns.perDeviceMilliseconds, maxMilliseconds) - 1,
+    time: maxMilliseconds === null ? null : firstAbove(columns.milliseconds, maxMilliseconds) - 1,
     memory: view.vectorMemory === null ? null : firstAbove(columns.vectorMemory, view.vectorMemory) - 1,
     goal:
       minCoverage === null
@@ -48,7 +51,7 @@ export function brokenLimits(view: BudgetView, figures: CutFigures): BrokenLimit
   const { maxMilliseconds, minCoverage, maxDppm } = view.limits
   const over = (value: number, most: number | null): number => (most === null ? 0 : Math.max(0, value - most))
   return {
-    timeOver: over(figures.perDeviceMilliseconds, maxMilliseconds),
+    timeOver: over(figures.milliseconds, maxMilliseconds),
     memoryOver: over(figures.vectorMemory, view.vectorMemory),
     // As the goal's own cut is found: a division may round differently.
     coverageShort:

@@ -32,9 +32,9 @@ export function cutSentence(
       strong: true,
       isCut: true,
     },
-    plain(', '),
-    strong(textOf(formats.milliseconds(at.perDeviceMilliseconds))),
-    plain(' a device: '),
+    plain(' in '),
+    strong(textOf(formats.milliseconds(at.milliseconds))),
+    plain(': '),
     strong(textOf(formats.coverage(at.coverage))),
     plain(` of ${formats.count(total).value} faults${times}, an estimated `),
     strong(textOf(formats.dppm(at.dppm))),
@@ -45,10 +45,16 @@ export function cutSentence(
 function nextWords(at: CutFigures, next: CutFigures, more: number, formats: NumberFormats): string {
   if (more === 0) return 'No pattern is left to add.'
   const bought = next.coverage - at.coverage
-  const what = bought > 0 ? `buy ${textOf(formats.coverageChange(bought)).replace('+', '')}` : 'buy nothing'
-  const time = textOf(formats.milliseconds(next.perDeviceMilliseconds - at.perDeviceMilliseconds))
+  const what = bought > 0 ? `buy ${changeWords(bought, formats)}` : 'buy nothing'
+  const time = textOf(formats.milliseconds(next.milliseconds - at.milliseconds))
   const which = more === 1 ? 'next pattern' : `next ${more} patterns`
   return `The ${which} would ${what} for ${time}.`
+}
+
+/** A share of coverage that is more than nothing, without a sign: "0.053 %". */
+function changeWords(share: number, formats: NumberFormats): string {
+  const { value, unit } = formats.coverageChange(share)
+  return value === '0' ? 'less than 0.001 %' : textOf({ value: value.replace('+', ''), unit })
 }
 
 /** Returns which limits a cut breaks and by how much, as one sentence; empty where it breaks none. */
@@ -60,9 +66,7 @@ export function brokenWords(broken: BrokenLimits, formats: NumberFormats): strin
     ...(broken.memoryOver > 0
       ? [`past the vector memory by ${formats.count(broken.memoryOver).value} cycles`]
       : []),
-    ...(broken.coverageShort > 0
-      ? [`below the goal by ${textOf(formats.coverageChange(broken.coverageShort)).replace('+', '')}`]
-      : []),
+    ...(broken.coverageShort > 0 ? [`below the goal by ${changeWords(broken.coverageShort, formats)}`] : []),
     ...(broken.dppmOver > 0
       ? [`over the escape rate asked by ${textOf(formats.dppm(broken.dppmOver))}`]
       : []),
@@ -85,6 +89,6 @@ export function ceilingWords(at: CutFigures, ceiling: number, total: number, for
   const count = (value: number): string => formats.count(value).value
   const limit = `No choice of ${count(at.cut)} of these patterns can detect more than ${count(ceiling)} faults; this one detects`
   return gap > 0
-    ? `${limit} ${count(at.detected)}, within ${textOf(formats.coverageChange(gap / total)).replace('+', '')} of the best.`
+    ? `${limit} ${count(at.detected)}, within ${changeWords(gap / total, formats)} of the best.`
     : `${limit} as many: no better choice exists.`
 }

@@ -17,7 +17,8 @@ export function useChartPointer(box: Readonly<Ref<HTMLElement | null>>, scene: C
   const hovered = ref<{ readonly at: number; readonly x: number; readonly y: number } | null>(null)
   const dragStart = ref<number | null>(null)
 
-  const pixelOf = (at: number): number => xPixel(scene.xs.value[at] ?? 0, scene.window.value, scene.plot.value)
+  const pixelOf = (at: number): number =>
+    xPixel(scene.xs.value[at] ?? 0, scene.window.value, scene.plot.value)
 
   function inBox(event: MouseEvent): { x: number; y: number } {
     const bounds = box.value?.getBoundingClientRect()

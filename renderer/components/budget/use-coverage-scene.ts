@@ -36,11 +36,7 @@ export function useCoverageScene(choice: ChartChoice, size: Ref<Size>) {
     const highest = (budget.view?.orders ?? [columns.value]).map(
       (each) => (detectedColumn(each, n.value).at(-1) ?? 0) / total.value,
     )
-    return defaultPlace(
-      columns.value.patterns,
-      Math.max(...highest),
-      budget.view?.limits.minCoverage ?? null,
-    )
+    return defaultPlace(columns.value.patterns, Math.max(...highest), budget.view?.limits.minCoverage ?? null)
   })
   watch(
     () => [budget.runId, columns.value.patterns, n.value],
@@ -92,7 +88,21 @@ export function useCoverageScene(choice: ChartChoice, size: Ref<Size>) {
       : escapeTicks(columns.value.detected, columns.value.dppm, total.value, window.value.y, 6),
   )
 
-  return { place, columns, total, xs, current, window, plot, curves, insetCurves, ceilingCurve, limits, option, escapes }
+  return {
+    place,
+    columns,
+    total,
+    xs,
+    current,
+    window,
+    plot,
+    curves,
+    insetCurves,
+    ceilingCurve,
+    limits,
+    option,
+    escapes,
+  }
 }
 
 export type CoverageScene = ReturnType<typeof useCoverageScene>

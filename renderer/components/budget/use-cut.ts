@@ -42,7 +42,8 @@ export function useCut() {
     const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view.total, formats)
     return {
       isBroken: trouble !== '',
-      text: [trouble === '' ? keptWords(has) : trouble, proof].join(' ').trim(),
+      trouble,
+      text: [...(trouble === '' ? [keptWords(has)] : []), proof].join(' ').trim(),
     }
   })
   const ownBudgets = computed(() =>
