@@ -162,9 +162,9 @@ export function warnOfMismatches({ comparison, patterns }: CoverageRun, terminal
 }
 
 function* curveRows(curve: readonly number[], nFaults: number): Generator<string, void, undefined> {
-  yield csvRow(['pattern', 'detected', 'coverage'])
+  yield csvRow(['pattern', 'detected', 'coverage'], '\n')
   for (const [at, detected] of curve.entries()) {
-    yield csvRow([at + 1, detected, nFaults > 0 ? detected / nFaults : 0])
+    yield csvRow([at + 1, detected, nFaults > 0 ? detected / nFaults : 0], '\n')
   }
 }
 

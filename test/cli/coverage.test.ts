@@ -41,7 +41,7 @@ describe('coverage', () => {
   it('writes every fault with its state, first pattern and detections', async () => {
     const path = join(dirname(nand), 'faults.csv')
     await runJson(['coverage', nand, '-', '--detections', 'all', '--faults', path], { stdin: '11\n01\n10\n' })
-    expect(readFileSync(path, 'utf8').split(/\r\n/)).toEqual([
+    expect(readFileSync(path, 'utf8').split('\n')).toEqual([
       'fault,state,first_pattern,detections',
       'a/0,detected,1,1',
       'a/1,detected,2,1',
@@ -110,7 +110,7 @@ describe('coverage', () => {
     const pipe = join(folder, 'pipe')
     symlinkSync(join(folder, 'curve.csv'), link)
     execFileSync('mkfifo', [pipe])
-    const expected = 'pattern,detected,coverage\r\n1,3,0.5\r\n'
+    const expected = 'pattern,detected,coverage\n1,3,0.5\n'
 
     await runJson(['coverage', nand, '-', '--curve', link], { stdin: '11\n' })
     expect(lstatSync(link).isSymbolicLink()).toBe(true)

@@ -190,7 +190,7 @@ describe('files of a plan', () => {
     const path = join(folder, 'faults.csv')
     const patterns = file('four.vec', '00\n01\n10\n11\n')
     await planJson(nand, patterns, '--max-patterns', '2', '--faults', path)
-    const rows = readFileSync(path, 'utf8').split('\r\n')
+    const rows = readFileSync(path, 'utf8').split('\n')
     expect(rows[0]).toBe('fault,state,first_pattern,detections,budget_detections,budget_first_place')
     expect(rows).toContain('y/0,detected,1,3,1,2')
     expect(rows).toContain('b/1,detected,3,1,0,')

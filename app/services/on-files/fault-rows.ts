@@ -61,9 +61,9 @@ function* inParts(
   columns: readonly string[],
   cells: (fault: number) => readonly CsvCell[],
 ): Generator<string, void, undefined> {
-  let part = csvRow(columns)
+  let part = csvRow(columns, '\n')
   for (let fault = 0; fault < nFaults; fault++) {
-    part += csvRow(cells(fault))
+    part += csvRow(cells(fault), '\n')
     if (fault % ROWS_PER_PART === ROWS_PER_PART - 1) {
       yield part
       part = ''
