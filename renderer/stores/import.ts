@@ -92,18 +92,20 @@ export const useImport = defineStore('import', () => {
   async function saveNetlist(productId: number, name: string): Promise<NetlistRevision | null> {
     if (netlist.value.status !== 'ready') return null
     const { inspectionId } = netlist.value.inspection
-    const saved = await api.call('netlists.save', { productId, inspectionId, name })
-    files.value = files.value.filter(({ role }) => role === 'patterns')
-    netlist.value = { status: 'idle' }
-    return saved
+    return api.call('netlists.save', { productId, inspectionId, name })
   }
 
   async function savePatterns(productId: number, name: string): Promise<void> {
     if (patterns.value.status !== 'ready') return
     const { inspectionId } = patterns.value.inspection
     await api.call('patternSets.save', { productId, inspectionId, name })
-    files.value = files.value.filter(({ role }) => role !== 'patterns')
-    patterns.value = { status: 'idle' }
+  }
+
+  /** Forgets the files of a netlist, or of a pattern set, that was saved. */
+  function forget(what: 'netlist' | 'patterns'): void {
+    files.value = files.value.filter(({ role }) => (role === 'patterns') !== (what === 'patterns'))
+    if (what === 'netlist') netlist.value = { status: 'idle' }
+    else patterns.value = { status: 'idle' }
   }
 
   function start(): void {
@@ -133,6 +135,7 @@ export const useImport = defineStore('import', () => {
     inspectPatterns,
     saveNetlist,
     savePatterns,
+    forget,
     start,
   }
 })
