@@ -1,4 +1,4 @@
-import { parentPort, type MessagePort } from 'node:worker_threads'
+import { parentPort, receiveMessageOnPort, type MessagePort } from 'node:worker_threads'
 import {
   KernelThread,
   blocksBefore,
@@ -11,6 +11,7 @@ import { kernelBytes, planKernel, writeOwn, writeShared } from '../engine/simula
 import { instantiateKernel, patternsPerBlockOf, sharedMemory } from './instantiate-kernel.ts'
 import { sendBlockReport, waitForReports } from './send-block-report.ts'
 import { simulateUnits } from './simulate-units.ts'
+import { warmUp } from './warm-up.ts'
 import {
   CLOSED,
   Control,
@@ -30,7 +31,7 @@ export function serveAsCoordinator(wasmBytes: Uint8Array, helpers: readonly Mess
   if (owner === null) throw new Error('the coordinator of a simulation pool runs on a worker thread only')
   const module = new WebAssembly.Module(wasmBytes)
   const patternsPerBlock = patternsPerBlockOf(module)
-  owner.on('message', (request: RunRequest) => {
+  const serve = (request: RunRequest): void => {
     const send = (report: RunReport): void => owner.postMessage(report)
     try {
       runTask(request, module, patternsPerBlock, helpers, send)
@@ -42,7 +43,14 @@ export function serveAsCoordinator(wasmBytes: Uint8Array, helpers: readonly Mess
       Atomics.store(control, Control.Over, 1)
       wakeHelpers(control)
     }
+  }
+  let early: { message: RunRequest } | undefined
+  warmUp(wasmBytes, () => {
+    early = receiveMessageOnPort(owner) as { message: RunRequest } | undefined
+    return early === undefined
   })
+  owner.on('message', serve)
+  if (early !== undefined) serve(early.message)
 }
 
 function runTask(
