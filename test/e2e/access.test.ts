@@ -75,6 +75,7 @@ describe.skipIf(!hasChromium)('the window is open to everyone', () => {
     const page = await app.open({ viewport: { width: 640, height: 400 }, deviceScaleFactor: 2 })
     for (const [name, hash] of SCREENS) {
       await goTo(page, hash)
+      await page.getByRole('heading', { level: 1 }).first().waitFor()
       await page.waitForTimeout(name === 'Budget' ? 1000 : 300)
       const { wide, seen } = await page.evaluate(() => ({
         wide: document.documentElement.scrollWidth - document.documentElement.clientWidth,
