@@ -2,7 +2,9 @@ import { readdirSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { defineConfig } from 'vite'
 
-const threads = readdirSync(new URL('./app/workers', import.meta.url)).filter((name) => /-(worker|helper)\.ts$/.test(name))
+const threads = readdirSync(new URL('./app/workers', import.meta.url)).filter((name) =>
+  /-(worker|helper)\.ts$/.test(name),
+)
 
 /** The command line, the loopback host and the scripts of the worker threads, one bundle each, for Node. */
 export default defineConfig({
