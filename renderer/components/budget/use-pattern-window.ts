@@ -1,4 +1,5 @@
-import { computed, nextTick, ref, type Ref, watch } from 'vue'
+import { computed, nextTick, onBeforeUnmount, ref, type Ref, watch } from 'vue'
+import { clamp } from '../../charts/plot-geometry.ts'
 import { formats } from '../../formats.ts'
 import { useBudget } from '../../stores/budget.ts'
 import { detectedColumn } from './cut-figures.ts'
@@ -6,7 +7,11 @@ import { sortedRows, type SortKey } from './pattern-rows.ts'
 
 /** Height of a row in pixels, as the style has it. */
 export const ROW = 27
-const SPARE = 6
+/** Of the head that stays above them. */
+const HEAD = 31
+const SPARE = 3
+/** While the cut is dragged, the table follows in steps of its own: sentence and figures come first. */
+const FOLLOW_MS = 90
 
 /** Single patterns change the escape rate by less than a whole part in a million. */
 const tenths = new Intl.NumberFormat(navigator.language || 'en', {
@@ -76,40 +81,60 @@ export function usePatternWindow(scroller: Readonly<Ref<HTMLElement | null>>, n:
   }
 
   function seen(): void {
-    if (!scroller.value) return
-    top.value = scroller.value.scrollTop
-    height.value = scroller.value.clientHeight
+    top.value = scroller.value?.scrollTop ?? 0
   }
+
+  const observer = new ResizeObserver(([entry]) => {
+    height.value = entry?.contentRect.height ?? height.value
+  })
+  watch(scroller, (box) => box && observer.observe(box), { flush: 'post', immediate: true })
+  onBeforeUnmount(() => observer.disconnect())
 
   function sortBy(key: SortKey): void {
     const isAgain = sort.value.key === key
     sort.value = { key, isDown: isAgain ? !sort.value.isDown : key !== 'position' && key !== 'pattern' }
   }
 
+  /** The cut as the table shows it. */
+  const cut = ref(budget.cut)
+  let following: ReturnType<typeof setTimeout> | undefined
+  watch(
+    () => budget.cut,
+    () => {
+      following ??= setTimeout(() => {
+        following = undefined
+        cut.value = budget.cut
+      }, FOLLOW_MS)
+    },
+  )
+  onBeforeUnmount(() => clearTimeout(following))
+
   /** The row that shows the pattern at the cut; −1 where none does. */
-  const cutRow = computed(() => (rows.value === null ? budget.cut - 1 : rows.value.indexOf(budget.cut - 1)))
+  const cutRow = computed(() => (rows.value === null ? cut.value - 1 : rows.value.indexOf(cut.value - 1)))
 
   /** Puts the cut at a neighbouring row of the table as it is sorted. */
   function step(by: number): void {
-    const row = Math.min(Math.max(cutRow.value + by, 0), count.value - 1)
+    cut.value = budget.cut
+    const row = clamp(cutRow.value + by, 0, count.value - 1)
     budget.moveTo((rows.value?.[row] ?? row) + 1)
   }
 
-  /** Keeps the cut's row in view while the cut moves. */
+  /**
+   * Keeps the cut's row in view while the cut moves. Nothing is read from the page: a read here would lay the whole
+   * window out a second time in the same frame.
+   */
   watch(
-    () => [budget.cut, rows.value, scroller.value] as const,
-    async () => {
-      await nextTick()
-      const box = scroller.value
-      if (!box) return
-      const at = cutRow.value * ROW
-      const inside = box.clientHeight - 2 * ROW
-      const isOut = cutRow.value >= 0 && (at < box.scrollTop || at > box.scrollTop + inside - ROW)
-      if (isOut) box.scrollTop = Math.max(0, at - inside / 2)
-      seen()
+    () => [cutRow.value, height.value, scroller.value] as const,
+    ([row, tall, box]) => {
+      const at = row * ROW
+      const inside = tall - HEAD - ROW
+      if (row < 0 || box === null || (at >= top.value && at <= top.value + inside)) return
+      top.value = Math.round(clamp(at - inside / 2, 0, Math.max(0, count.value * ROW + HEAD - tall)))
+      // Rows of the new place have to be there before the box can be scrolled to them.
+      void nextTick(() => (box.scrollTop = top.value))
     },
-    { immediate: true, flush: 'post' },
+    { immediate: true },
   )
 
-  return { sort, wanted, rows, count, first, last, visible, seen, sortBy, step }
+  return { cut, sort, wanted, rows, count, first, last, visible, seen, sortBy, step }
 }
