@@ -111,7 +111,7 @@ describe('writeStil', () => {
       unknown: ['00000', '00000'],
     })
     expect(compareResponse(flat, back!.patterns).total).toEqual({ compared: 10, mismatches: 0, unknown: 0 })
-    expect(exportWarnings({ patterns: plain, circuit: flat.circuit, sequence: [0] }, 'stil')).toHaveLength(1)
+    expect(exportWarnings({ patterns: plain, circuit: flat.circuit, sequence: [0] })).toHaveLength(1)
   })
 
   it('drives and compares a pin that is input and output at once', () => {
@@ -136,7 +136,7 @@ describe('writeStil', () => {
     const timeOnly = { ...patterns, timeOnly: Uint8Array.of(0, 1, 0) }
     const selection = { patterns: timeOnly, circuit: design.circuit, sequence: [0, 1, 2] }
     expect(Array.from(stilParts(timeOnly, design, [0, 1, 2]))).toHaveLength(4)
-    expect(exportWarnings(selection, 'stil')).toEqual([
+    expect(exportWarnings(selection)).toEqual([
       expect.stringContaining('1 pattern counts for time alone'),
     ])
   })
@@ -144,7 +144,7 @@ describe('writeStil', () => {
   it('warns where a pattern leaves the one whose state it needs', () => {
     const dependent = { ...patterns, dependsOnPrevious: Uint8Array.of(0, 1, 1) }
     const warningsFor = (sequence: number[]) =>
-      exportWarnings({ patterns: dependent, circuit: design.circuit, sequence }, 'stil')
+      exportWarnings({ patterns: dependent, circuit: design.circuit, sequence })
     expect(warningsFor([0, 1, 2])).toEqual([])
     expect(warningsFor([1, 2, 0])).toEqual([expect.stringContaining('1 pattern depends')])
     expect(warningsFor([2, 0])).toHaveLength(1)
