@@ -30,6 +30,10 @@ export const COMMANDS: Readonly<Record<string, CommandEntry | PlainEntry>> = {
     summary: 'what one pattern set detects and another does not, at equal time and at equal coverage',
     load: async () => (await import('./compare.ts')).compare,
   },
+  demo: {
+    summary: 'builds the demo project and a report of each of its products in a folder',
+    load: async () => (await import('./demo.ts')).demo,
+  },
   serve: {
     summary: 'the application on loopback, in a browser',
     loadPlain: async () => (await import('./serve.ts')).serve,

@@ -1,3 +1,4 @@
+import { spawn } from 'node:child_process'
 import { parseArgs } from 'node:util'
 import { createApplication } from '../compose.ts'
 import { findInstallation, projectFolder, userFolder } from '../installation.ts'
@@ -19,6 +20,7 @@ export async function serve(args: readonly string[], io: Io): Promise<number> {
   })
   const host = await startWebHost(application, Number(values.port ?? 0))
   io.stdout.write(`Tallycut is at ${host.url}\n`)
+  if (values.open === true) openInBrowser(host.url, io.env)
   await new Promise<void>((done) => {
     process.once('SIGINT', done)
     process.once('SIGTERM', done)
@@ -26,4 +28,19 @@ export async function serve(args: readonly string[], io: Io): Promise<number> {
   await host.close()
   await application.close()
   return 0
+}
+
+/** Opens the address where there is a desktop; elsewhere the printed address is all there is. */
+function openInBrowser(url: string, env: Io['env']): void {
+  const hasDesktop = process.platform !== 'linux' || Boolean(env['DISPLAY'] ?? env['WAYLAND_DISPLAY'])
+  if (!hasDesktop) return
+  const [program, ...args] =
+    process.platform === 'darwin'
+      ? ['open']
+      : process.platform === 'win32'
+        ? ['cmd', '/c', 'start', '']
+        : ['xdg-open']
+  const opener = spawn(program ?? 'xdg-open', [...args, url], { stdio: 'ignore', detached: true })
+  opener.once('error', () => undefined)
+  opener.unref()
 }

@@ -1,0 +1,45 @@
+import { describe, expect, test } from 'vitest'
+import { changeValues, formFields, resolveProduct, resolveTester } from '../../app/services/assumptions.ts'
+import { DEFAULT_PRODUCT } from '../../app/engine/quality/product.ts'
+import { DEFAULT_TESTER } from '../../app/engine/tester/tester.ts'
+
+describe('assumptions', () => {
+  test('no values at all give the defaults that files have', () => {
+    expect(resolveTester('T', {})).toEqual({ values: { ...DEFAULT_TESTER, name: 'T' }, errors: [] })
+    expect(resolveProduct('P', {})).toEqual({ values: { ...DEFAULT_PRODUCT, name: 'P' }, errors: [] })
+  })
+
+  test('every default that a form shows is one that it takes', () => {
+    const { product, tester } = formFields()
+    for (const [of, fields] of [
+      ['product', product],
+      ['tester', tester],
+    ] as const) {
+      const defaults = Object.fromEntries(fields.map((field) => [field.key, field.default]))
+      expect(changeValues(of, {}, defaults).errors).toEqual([])
+    }
+  })
+
+  test('a change that does not fit is refused with its reason, the others are taken', () => {
+    const { values, errors } = changeValues('tester', { sites: 4 }, { sites: 0, indexMs: 100, shiftMhz: 5 })
+    expect(values).toEqual({ sites: 4, indexMs: 100 })
+    expect(errors.map(({ key }) => key)).toEqual(['sites', 'shiftMhz'])
+  })
+
+  test('null takes a field back to its default', () => {
+    expect(changeValues('product', { yield: 0.5, n0: 3 }, { yield: null }).values).toEqual({ n0: 3 })
+  })
+
+  test('switches are words in forms and values in files', () => {
+    const { values, errors } = resolveProduct('P', { chainTest: 'yes' })
+    expect(errors).toEqual([])
+    expect(values.chainTest).toBe(true)
+    expect(resolveProduct('P', { chainTest: 'perhaps' }).errors).toMatchObject([{ key: 'chainTest' }])
+  })
+
+  test('a yield outside 0 to 1 and values that contradict each other are named at their field', () => {
+    expect(resolveProduct('P', { yield: 1.2 }).errors).toMatchObject([{ key: 'yield' }])
+    expect(resolveProduct('P', { areaMm2: 4 }).errors).toMatchObject([{ key: 'areaMm2' }])
+    expect(resolveTester('T', { scanMemory: 100 }).errors).toMatchObject([{ key: 'scanMemory' }])
+  })
+})
