@@ -90,11 +90,13 @@ describe.skipIf(!hasChromium)('the main job in a browser', () => {
     await page.mouse.down()
     await page.mouse.move(box.x + box.width * 0.2, box.y + box.height * 0.5, { steps: 5 })
     await page.mouse.up()
-    const cut = isNumber((await answerOf(page)).split(' of ')[0])
-    expect(cut).toBeGreaterThan(0)
-    expect(cut).toBeLessThan(400)
-    expect(isNumber(await page.getByRole('textbox', { name: 'Patterns' }).inputValue())).toBe(cut)
-    expect(await page.getByRole('slider').getAttribute('aria-valuenow')).toBe(String(cut))
+    const cut = async (): Promise<number> => isNumber((await answerOf(page)).split(' of ')[0])
+    await expect.poll(cut).toBeLessThan(400)
+    expect(await cut()).toBeGreaterThan(0)
+    await expect
+      .poll(async () => isNumber(await page.getByRole('textbox', { name: 'Patterns' }).inputValue()))
+      .toBe(await cut())
+    await expect.poll(() => page.getByRole('slider').getAttribute('aria-valuenow')).toBe(String(await cut()))
   })
 
   it('follows an assumption as it is typed', async () => {
