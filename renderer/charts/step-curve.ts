@@ -63,7 +63,11 @@ function extremes(
       if (y > high) high = y
       at++
     } while (at <= last && (xs[at] ?? 0) < end)
-    points.push([x, low])
+    // On level ground the end alone is enough.
+    const before = points[points.length - 1]
+    const isLevel = low === high && before?.[1] === low && points[points.length - 2]?.[1] === low
+    if (isLevel && before) before[0] = x
+    else points.push([x, low])
     if (high !== low) points.push([x, high])
   }
   const lastX = xs[last] ?? 0

@@ -140,7 +140,7 @@ export const useBudget = defineStore('budget', () => {
   }
 
   function ordersWanted(): OrderName[] {
-    const shown: OrderName[] = ['as-delivered', 'steepest']
+    const shown: OrderName[] = ['steepest', 'as-delivered']
     const known = view.value?.runId === runId.value ? view.value.orders.map((each) => each.order) : []
     if ([order.value, coming?.order, ...known].includes('smallest')) shown.push('smallest')
     if (assumptions.value?.byHand) shown.push('by-hand')

@@ -7,6 +7,8 @@ import { budgetView } from '../helpers/budget-columns.ts'
  * How the Budget screen keeps up in Chromium, by the browser's own observers: dragging the cut, zooming by wheel and
  * scrolling the table, at 1,000, 10,000 and 100,000 patterns. The host is real; only the columns are made up.
  *
+ * As a floor, the same moves on a page that only writes one number show what browser and machine take by themselves.
+ *
  *   node test/bench/window-bench.ts
  */
 const SIZES = [1_000, 10_000, 100_000]
@@ -26,6 +28,9 @@ try {
   const page = await app.open({ viewport: { width: 1920, height: 1080 } })
   await page.getByRole('button', { name: 'Open the demo' }).click()
   await page.getByRole('link', { name: 'Budget of run 2' }).waitFor({ timeout: 60_000 })
+  const floor = await measure(await barePage(page), () => dragCut(page))
+  console.log(`a bare page\n  drag: followed ${summary(floor.follow)}, drawn ${summary(floor.drawn)}`)
+  await page.reload()
   for (const patterns of SIZES) {
     await showColumns(page, patterns)
     const drag = await measure(page, () => dragCut(page))
@@ -41,6 +46,19 @@ try {
   }
 } finally {
   await app.close()
+}
+
+/** Puts a box that writes where the pointer is in place of the application. */
+async function barePage(page: Page): Promise<Page> {
+  await page.evaluate(() => {
+    document.body.innerHTML =
+      '<div role="slider" style="height:600px"></div><p data-testid="figures"><span>0</span></p>'
+    const text = document.querySelector('span')
+    window.addEventListener('pointermove', ({ clientX }) => {
+      if (text) text.textContent = String(clientX)
+    })
+  })
+  return page
 }
 
 async function showColumns(page: Page, patterns: number): Promise<void> {

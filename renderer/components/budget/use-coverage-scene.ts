@@ -51,6 +51,8 @@ export function useCoverageScene(choice: ChartChoice, size: Ref<Size>) {
     (budget.view?.orders ?? [])
       .filter(({ order }) => choice.shown.includes(order))
       .map((each) => ({ name: each.order, xs: of(each), ys: detectedColumn(each, n.value) }))
+      // The first of them is drawn last, over the others.
+      .reverse()
   const curves = computed(() => curvesAlong((each) => axisColumn(each, choice.axis)))
   const insetCurves = computed(() => curvesAlong((each) => axisColumn(each, 'patterns')))
   const ceilingCurve = computed<Curve | null>(() =>

@@ -56,3 +56,11 @@ test('places that do not move on, as free patterns give, end', () => {
     stepCurve(new Float64Array(1000), new Float64Array(1000).fill(3), 1, span(0, 1), 100).length,
   ).toBeLessThan(5)
 })
+
+test('level ground takes two points however long it is', () => {
+  const xs = Float64Array.from({ length: 10_001 }, (_, at) => at)
+  const ys = xs.map((x) => Math.min(x, 100))
+  const points = stepCurve(xs, ys, 1, span(0, 10_000), 500)
+  expect(points.length).toBeLessThan(20)
+  expect(points.at(-1)).toEqual([10_000, 100])
+})
