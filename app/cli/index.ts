@@ -1,3 +1,4 @@
+import { setFlagsFromString } from 'node:v8'
 import { isMainThread } from 'node:worker_threads'
 import { runInThread, runOnThread, wantsThread } from './command-thread.ts'
 import { ExitCode } from './command.ts'
@@ -7,6 +8,9 @@ import { main } from './main.ts'
 const SAME_INTERRUPT_MILLISECONDS = 500
 
 if (isMainThread) {
+  // The kernel is compiled once, at its best, while files are read: runs of a few milliseconds would else be over first.
+  setFlagsFromString('--no-liftoff')
+  setFlagsFromString('--no-wasm-lazy-compilation')
   const interrupted = new AbortController()
   let interruptedAt: number | null = null
   process.on('SIGINT', () => {
