@@ -3,6 +3,7 @@ import type { Span } from './plot-geometry.ts'
 
 /** Steps are drawn from this width of a pattern; below, the lowest and the highest value of each pixel column. */
 const STEP_PIXELS = 3
+const LONG_STEP_PIXELS = 8
 
 export type Point = [x: number, y: number]
 
@@ -24,18 +25,28 @@ export function stepCurve(
   const count = last - first + 1
   if (count <= 0 || width <= 0) return []
   return count * STEP_PIXELS <= width
-    ? steps(xs, ys, scale, first, last)
+    ? steps(xs, ys, scale, first, last, (span.to - span.from) / width)
     : extremes(xs, ys, scale, first, last, (span.to - span.from) / width)
 }
 
-function steps(xs: Float64Array, ys: ArrayLike<number>, scale: number, first: number, last: number): Point[] {
+function steps(
+  xs: Float64Array,
+  ys: ArrayLike<number>,
+  scale: number,
+  first: number,
+  last: number,
+  pixel: number,
+): Point[] {
   const points: Point[] = [[xs[first] ?? 0, (ys[first] ?? 0) / scale]]
   for (let at = first + 1; at <= last; at++) {
     const x = xs[at] ?? 0
     const y = (ys[at] ?? 0) / scale
-    const before = points[points.length - 1]?.[1] ?? y
+    const [beforeX, before] = points[points.length - 1] ?? [x, y]
+    if (y === before && at < last) continue
+    // ECharts leaves out points nearer than a pixel: without this one, a long step after a small gain would slope.
+    if (x - beforeX > LONG_STEP_PIXELS * pixel) points.push([beforeX + 2 * pixel, before])
     if (y !== before) points.push([x, before])
-    if (y !== before || at === last) points.push([x, y])
+    points.push([x, y])
   }
   return points
 }
@@ -63,9 +74,9 @@ function extremes(
       if (y > high) high = y
       at++
     } while (at <= last && (xs[at] ?? 0) < end)
-    // On level ground the end alone is enough.
+    // On level ground its end is enough, after two points of which ECharts may leave out the first.
     const before = points[points.length - 1]
-    const isLevel = low === high && before?.[1] === low && points[points.length - 2]?.[1] === low
+    const isLevel = low === high && [1, 2, 3].every((back) => points[points.length - back]?.[1] === low)
     if (isLevel && before) before[0] = x
     else points.push([x, low])
     if (high !== low) points.push([x, high])

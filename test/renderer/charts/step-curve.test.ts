@@ -5,7 +5,7 @@ import { stepCurve } from '../../../renderer/charts/step-curve.ts'
 const span = (from: number, to: number) => ({ from, to })
 
 test('a sparse curve is drawn in steps: the gain of a pattern stands where the pattern ends', () => {
-  const points = stepCurve(Float64Array.of(0, 1, 2, 3), [0, 4, 4, 6], 2, span(0, 3), 300)
+  const points = stepCurve(Float64Array.of(0, 1, 2, 3), [0, 4, 4, 6], 2, span(0, 3), 12)
   expect(points).toEqual([
     [0, 0],
     [1, 0],
@@ -63,4 +63,15 @@ test('level ground takes two points however long it is', () => {
   const points = stepCurve(xs, ys, 1, span(0, 10_000), 500)
   expect(points.length).toBeLessThan(20)
   expect(points.at(-1)).toEqual([10_000, 100])
+})
+
+test('a long step has a point near its beginning, which no rounding of small gains can slope', () => {
+  const points = stepCurve(Float64Array.of(0, 1, 100), [0, 1, 1], 1, span(0, 100), 100)
+  expect(points).toEqual([
+    [0, 0],
+    [1, 0],
+    [1, 1],
+    [3, 1],
+    [100, 1],
+  ])
 })
