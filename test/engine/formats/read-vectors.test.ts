@@ -96,6 +96,11 @@ describe('a vectors file', () => {
     })
   })
 
+  it('numbers every broken line as the pattern that it was meant to be', () => {
+    const messages = vectors('101\n10\n111\n1\n').diagnostics.map(({ message }) => message.slice(0, 9))
+    expect(messages).toEqual(['pattern 2', 'pattern 4'])
+  })
+
   it('of one endless line is refused, not read for ever', () => {
     const started = performance.now()
     expect(vectors('1'.repeat(100_000_000)).diagnostics[0]!.code).toBe('pattern-width')

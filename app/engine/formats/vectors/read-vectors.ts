@@ -88,7 +88,10 @@ class VectorsReader {
       const code = text.charCodeAt(this.at)
       if (code === NEWLINE || code === RETURN) this.at++
       else if (code === HASH) this.skipLine()
-      else if (this.at < text.length && !this.readPlainBlock() && !this.readPattern()) this.skipLine()
+      else if (this.at < text.length && !this.readPlainBlock() && !this.readPattern()) {
+        this.skipLine()
+        this.builder.endPattern()
+      }
       if (this.diagnostics.length >= MAX_DIAGNOSTICS) {
         this.report('too-many', this.at, this.at, `${MAX_DIAGNOSTICS} errors found; reading stopped here`)
         return this.result(null)
