@@ -12,6 +12,18 @@ export const SCREENS = [
 
 export type ScreenName = (typeof SCREENS)[number]
 
+export const SCREEN_LABELS: Readonly<Record<ScreenName, string>> = {
+  start: 'Projects',
+  product: 'Overview',
+  budget: 'Budget',
+  'faults-lost': 'Faults lost',
+  assumptions: 'Assumptions',
+  import: 'Import',
+  testers: 'Testers',
+  tasks: 'Tasks',
+  settings: 'Settings',
+}
+
 /** Where one is. Params hold what makes a place worth a link: run, budget, cut. */
 export type Place = {
   readonly screen: ScreenName

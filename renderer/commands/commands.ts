@@ -182,8 +182,8 @@ function useOwnActions(): Partial<Record<CommandId, Action>> {
     },
     'product.new': { blockedBy: needsWriting, run: () => dialogs.show({ kind: 'new-product' }) },
     'product.import': {
-      blockedBy: needsWriting,
-      run: () => navigation.go('import', navigation.place.productId),
+      blockedBy: () => needsWriting() ?? needsProduct(),
+      run: () => navigation.go('import', productId()),
     },
     'product.run': {
       blockedBy: () => needsWriting() ?? needsProduct(),

@@ -41,5 +41,10 @@ export const useCutSubject = defineStore('cut-subject', () => {
     return { runId: latest.id, order: 'steepest', cut: latest.patternsTotal, assumptions }
   }
 
-  return { subjects, set, get }
+  /** Products of another project have other numbers. */
+  function forget(): void {
+    subjects.value = new Map()
+  }
+
+  return { subjects, set, get, forget }
 })

@@ -1,6 +1,11 @@
 import { defineStore } from 'pinia'
 import { shallowRef } from 'vue'
 
+/** Returns a file's name without its endings, as a name for what is made of it. */
+export function stemOf(fileName: string): string {
+  return fileName.replace(/(\.[a-z]+)+$/i, '') || fileName
+}
+
 /** Files that were dropped on the window or chosen elsewhere, until the Import screen takes them. */
 export const useIncomingFiles = defineStore('incoming-files', () => {
   const files = shallowRef<readonly File[]>([])

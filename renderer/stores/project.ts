@@ -3,9 +3,13 @@ import { computed, ref, shallowRef } from 'vue'
 import type { OutputOf } from '../../app/contract/operations.ts'
 import type { Project, RecentProject } from '../../app/contract/shapes/project.ts'
 import { api } from '../api/client.ts'
+import { useCutSubject } from './cut-subject.ts'
+import { useUndo } from './undo.ts'
 
 /** The open project, and those that were open before. */
 export const useProject = defineStore('project', () => {
+  const subjects = useCutSubject()
+  const undo = useUndo()
   const project = shallowRef<Project | null>(null)
   const recents = shallowRef<readonly RecentProject[]>([])
   const info = shallowRef<OutputOf<'app.info'> | null>(null)
@@ -13,8 +17,17 @@ export const useProject = defineStore('project', () => {
   const products = computed(() => project.value?.products ?? [])
   const isReadOnly = computed(() => project.value?.readOnly ?? false)
 
+  /** Shows a project; what was remembered of another one is forgotten. */
+  function show(next: Project | null): void {
+    if (next?.path !== project.value?.path) {
+      subjects.forget()
+      undo.forget()
+    }
+    project.value = next
+  }
+
   async function load(): Promise<void> {
-    project.value = (await api.call('projects.current', {})).project
+    show((await api.call('projects.current', {})).project)
   }
 
   async function loadRecents(): Promise<void> {
@@ -26,20 +39,20 @@ export const useProject = defineStore('project', () => {
   }
 
   async function create(name: string, folder: string): Promise<void> {
-    project.value = await api.call('projects.create', folder === '' ? { name } : { name, folder })
+    show(await api.call('projects.create', folder === '' ? { name } : { name, folder }))
   }
 
   async function open(path: string): Promise<void> {
-    project.value = await api.call('projects.open', { path })
+    show(await api.call('projects.open', { path }))
   }
 
   async function openDemo(): Promise<void> {
-    project.value = await api.call('projects.openDemo', {})
+    show(await api.call('projects.openDemo', {}))
   }
 
   async function close(): Promise<void> {
     await api.call('projects.close', {})
-    project.value = null
+    show(null)
   }
 
   async function forget(path: string): Promise<void> {
