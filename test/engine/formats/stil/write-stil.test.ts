@@ -136,9 +136,7 @@ describe('writeStil', () => {
     const timeOnly = { ...patterns, timeOnly: Uint8Array.of(0, 1, 0) }
     const selection = { patterns: timeOnly, circuit: design.circuit, sequence: [0, 1, 2] }
     expect(Array.from(stilParts(timeOnly, design, [0, 1, 2]))).toHaveLength(4)
-    expect(exportWarnings(selection)).toEqual([
-      expect.stringContaining('1 pattern counts for time alone'),
-    ])
+    expect(exportWarnings(selection)).toEqual([expect.stringContaining('1 pattern counts for time alone')])
   })
 
   it('warns where a pattern leaves the one whose state it needs', () => {
