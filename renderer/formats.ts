@@ -1,4 +1,4 @@
-import { numberFormats, textOf, type Figure } from '../app/contract/format-number.ts'
+import { NOT_KNOWN, numberFormats, textOf, type Figure } from '../app/contract/format-number.ts'
 
 /** Number formats with the separators of the user's language. */
 export const formats = numberFormats(navigator.language || 'en')
@@ -31,4 +31,4 @@ export function countOf(count: number, noun: string): string {
   return `${formats.count(count).value} ${noun}${count === 1 ? '' : 's'}`
 }
 
-export { textOf, type Figure }
+export { NOT_KNOWN, textOf, type Figure }

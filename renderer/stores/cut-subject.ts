@@ -1,6 +1,10 @@
 import { defineStore } from 'pinia'
 import { shallowRef } from 'vue'
+import type { Assumptions } from '../../app/contract/shapes/budget.ts'
+import type { ProductRecord } from '../../app/contract/shapes/model.ts'
+import type { Run } from '../../app/contract/shapes/run.ts'
 import { api } from '../api/client.ts'
+import { firstCut } from '../components/budget/first-cut.ts'
 import type { CutSubject } from './dialogs.ts'
 
 /**
@@ -21,24 +25,13 @@ export const useCutSubject = defineStore('cut-subject', () => {
     const looked = subjects.value.get(productId)
     if (looked && isDone(looked.runId)) return looked
     const usable = budgets.filter((budget) => isDone(budget.runId))
-    const budget = usable.find(({ inUse }) => inUse) ?? usable.at(-1)
+    const budget = usable.find(({ inUse }) => inUse) ?? usable[0]
     if (budget) {
       const { runId, order, cut, assumptions } = budget
       return { runId, order, cut, assumptions }
     }
-    const latest = runs.filter(({ state }) => state === 'done').sort((a, b) => b.number - a.number)[0]
-    if (!latest) return null
-    const assumptions = {
-      testerId: product.testerId,
-      testerValues: {},
-      productValues: {},
-      limits: product.limits,
-      constraints: null,
-      weights: null,
-      n: 1,
-      byHand: null,
-    }
-    return { runId: latest.id, order: 'steepest', cut: latest.patternsTotal, assumptions }
+    const latest = runs.find(({ state }) => state === 'done')
+    return latest ? untouched(latest, product) : null
   }
 
   /** Products of another project have other numbers. */
@@ -48,3 +41,22 @@ export const useCutSubject = defineStore('cut-subject', () => {
 
   return { subjects, set, get, forget }
 })
+
+/** The cut that the Budget screen begins with. */
+async function untouched(run: Run, product: ProductRecord): Promise<CutSubject> {
+  const order = 'steepest'
+  const assumptions: Assumptions = {
+    testerId: product.testerId,
+    testerValues: {},
+    productValues: {},
+    limits: product.limits,
+    constraints: null,
+    weights: null,
+    n: 1,
+    byHand: null,
+  }
+  const { view } = await api.call('budgets.view', { runId: run.id, orders: [order], assumptions })
+  const columns = view?.orders[0]
+  const cut = view && columns ? firstCut(view, columns) : run.patternsTotal
+  return { runId: run.id, order, cut, assumptions }
+}

@@ -41,15 +41,17 @@ export const useImport = defineStore('import', () => {
 
   async function add(more: readonly File[]): Promise<void> {
     problem.value = ''
+    const added: ImportFile[] = []
     for (const file of more) {
       try {
         const bytes = new Uint8Array(await file.arrayBuffer())
         const { fileId, name, sizeBytes } = await api.call('files.add', { name: file.name, bytes })
-        files.value = [...files.value, { fileId, name, sizeBytes, role: roleOf(name) }]
+        added.push({ fileId, name, sizeBytes, role: roleOf(name) })
       } catch (error) {
         problem.value = `${file.name}: ${error instanceof AppError ? error.message : 'it could not be read; a folder can not be imported.'}`
       }
     }
+    files.value = [...files.value, ...added]
   }
 
   async function drop(fileId: string): Promise<void> {

@@ -1,4 +1,4 @@
-import type { Field, FieldValues } from '../../../app/contract/shapes/model.ts'
+import type { Field, FieldError, FieldValues } from '../../../app/contract/shapes/model.ts'
 import { formats } from '../../formats.ts'
 
 /** From here on an upper end is there against slips, not for people to read. */
@@ -25,4 +25,9 @@ export function valueOf({ kind }: Field, text: string): number | string | null {
 export function currencyOf(testerFields: readonly Field[], values: FieldValues | undefined): string {
   const standard = testerFields.find(({ key }) => key === 'currency')?.default ?? ''
   return String(values?.['currency'] ?? standard)
+}
+
+/** Returns what is wrong with a field, with its label in place of the key that stands in files; null where nothing is. */
+export function errorWords({ key, label }: Field, error: FieldError | undefined): string | null {
+  return error ? error.message.replaceAll(`"${key}"`, label) : null
 }
