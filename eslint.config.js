@@ -21,6 +21,7 @@ export default tseslint.config(
       'no-console': 'error',
       'vue/component-name-in-template-casing': 'error',
       'vue/multi-word-component-names': 'off',
+      'vue/require-default-prop': 'off',
     },
   },
   {
