@@ -1,11 +1,6 @@
-import { readFileSync } from 'node:fs'
-import { createRequire } from 'node:module'
 import { afterAll, beforeAll, describe, expect, it } from 'vitest'
-import type { Page } from 'playwright-core'
-import { goTo, hasChromium, startApp, type RunningApp } from './app.ts'
-
-// SOURCE: axe-core's rules for WCAG 2.2, levels A and AA, and its best practices.
-const axe = readFileSync(createRequire(import.meta.url).resolve('axe-core/axe.min.js'), 'utf8')
+import { goTo, hasChromium, openDemo, startApp, type RunningApp } from './app.ts'
+import { violationsOf } from './axe.ts'
 
 const SCREENS = [
   ['Projects', '#/'],
@@ -18,25 +13,6 @@ const SCREENS = [
   ['Tasks', '#/tasks'],
   ['Settings', '#/settings'],
 ] as const
-
-async function violationsOf(page: Page): Promise<string[]> {
-  await page.evaluate(axe)
-  return page.evaluate(async () => {
-    const { violations } = await (
-      globalThis as unknown as {
-        axe: { run(): Promise<{ violations: { id: string; nodes: { html: string }[] }[] }> }
-      }
-    ).axe.run()
-    return violations.map(
-      ({ id, nodes }) => `${id}: ${nodes.map(({ html }) => html.slice(0, 160)).join(' | ')}`,
-    )
-  })
-}
-
-async function openDemo(page: Page): Promise<void> {
-  await page.getByRole('button', { name: 'Open the demo' }).click()
-  await page.getByRole('link', { name: 'Budget of run 2' }).waitFor({ timeout: 60_000 })
-}
 
 describe.skipIf(!hasChromium)('the window is open to everyone', () => {
   let app: RunningApp

@@ -111,3 +111,9 @@ export async function goTo(page: Page, hash: string): Promise<void> {
 export async function importFiles(page: Page, paths: readonly string[]): Promise<void> {
   await page.getByLabel('Files to import').setInputFiles([...paths])
 }
+
+/** Builds the demo project, or opens it, and waits until its runs have ended. */
+export async function openDemo(page: Page): Promise<void> {
+  await page.getByRole('button', { name: 'Open the demo' }).click()
+  await page.getByRole('link', { name: 'Budget of run 2' }).waitFor({ timeout: 60_000 })
+}
