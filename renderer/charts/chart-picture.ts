@@ -1,4 +1,5 @@
 import { FONT, type Palette } from '../tokens.ts'
+import { boxOf } from './box-of.ts'
 
 export type Picture = {
   readonly title: string
@@ -14,12 +15,12 @@ const HEAD = 52
  * font that a style sheet gives written into the elements.
  */
 export function chartSvg(chart: HTMLElement, { title, note, palette }: Picture): string {
-  const { width, height } = chart.getBoundingClientRect()
+  const outer = boxOf(chart)
+  const { width, height } = outer
   const layers = [...chart.querySelectorAll('svg')].map((svg) => {
     const copy = svg.cloneNode(true) as SVGSVGElement
     writeStyles(svg, copy)
-    const own = svg.getBoundingClientRect()
-    const outer = chart.getBoundingClientRect()
+    const own = boxOf(svg)
     copy.setAttribute('x', String(own.left - outer.left))
     copy.setAttribute('y', String(own.top - outer.top + HEAD))
     return new XMLSerializer().serializeToString(copy)

@@ -107,6 +107,29 @@ describe.skipIf(!hasChromium)('the window', () => {
     await page.locator('[title="From the second tape"]').waitFor()
   })
 
+  it('puts the cut where the pointer is, however large everything is shown', async () => {
+    const handleAfterPress = async (share: number): Promise<number> => {
+      const box = (await page.getByRole('slider').boundingBox()) ?? { x: 0, y: 0, width: 0, height: 0 }
+      const x = box.x + box.width * share
+      await page.keyboard.down('Alt')
+      await page.mouse.click(x, box.y + box.height / 2)
+      await page.keyboard.up('Alt')
+      const handle = await page.getByRole('slider').locator('.handle').boundingBox()
+      return (handle?.x ?? 0) + (handle?.width ?? 0) / 2 - x
+    }
+    for (const size of ['1.5', '1']) {
+      await goTo(page, '#/settings')
+      await page.getByLabel('Size of everything').selectOption(size)
+      await goTo(page, '#/products/1/budget')
+      await page.getByTestId('answer').waitFor()
+      // A pattern is less than 2 pixels wide here.
+      expect(Math.abs(await handleAfterPress(0.3))).toBeLessThan(3)
+      expect(Math.abs(await handleAfterPress(0.6))).toBeLessThan(3)
+    }
+    await goTo(page, '#/products/1/product')
+    await page.getByRole('heading', { level: 1, name: 'Fern' }).waitFor()
+  })
+
   it('has nothing for axe to find in its dialogs and in states that are not usual', async () => {
     const found: Record<string, string[]> = {}
     const look = async (name: string): Promise<void> => {

@@ -1,4 +1,5 @@
 import { onBeforeUnmount, ref, type Ref } from 'vue'
+import { boxOf } from '../../charts/box-of.ts'
 import { moveSpan, zoomCoverage, zoomPatterns } from '../../charts/chart-window.ts'
 import { nearestIndex, placeOf } from '../../charts/column-search.ts'
 import { clamp, valueAt, xPixel } from '../../charts/plot-geometry.ts'
@@ -21,8 +22,7 @@ export function useChartPointer(box: Readonly<Ref<HTMLElement | null>>, scene: C
     xPixel(scene.xs.value[at] ?? 0, scene.window.value, scene.plot.value)
 
   function inBox(event: MouseEvent): { x: number; y: number } {
-    const bounds = box.value?.getBoundingClientRect()
-    return { x: event.clientX - (bounds?.left ?? 0), y: event.clientY - (bounds?.top ?? 0) }
+    return box.value ? boxOf(box.value).placeOf(event) : { x: 0, y: 0 }
   }
 
   function press(event: PointerEvent): void {
