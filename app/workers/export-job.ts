@@ -1,7 +1,4 @@
-import { AppError } from '../contract/errors.ts'
 import type { OutputOf } from '../contract/operations.ts'
-import { buildPlan, type Plan, type PlanInput } from '../engine/choose/build-plan.ts'
-import { scanFactsOf } from '../engine/choose/choice-basis.ts'
 import { lostBlocks } from '../engine/choose/lost-blocks.ts'
 import { type ExportSelection, exportWarnings } from '../engine/formats/export-selection.ts'
 import { simulateGood } from '../engine/simulate/good-machine.ts'
@@ -9,6 +6,7 @@ import { REPORT_MEDIA_TYPES, reportOfPlan } from '../report/report-of-plan.ts'
 import { DeskAnswer } from './desk-answer.ts'
 import type { DeskContext } from './desk-context.ts'
 import type { ExportFormat, PlanJobs } from './plan-jobs.ts'
+import { planAtCut } from './plan-of-run.ts'
 import { basisOf, heldDossier, orderOf, type RunDossier } from './run-dossier.ts'
 
 type Input = PlanJobs['make-export']['input']
@@ -45,41 +43,10 @@ export async function exportJob(
 }
 
 function planOf(dossier: RunDossier, input: Input): Parameters<typeof reportOfPlan>[0] {
-  const { netlist, faults, profile, patterns } = dossier
-  const basis = basisOf(dossier, input)
-  const order = orderOf(dossier, input.order, input)
-  const { maxMilliseconds } = input.assumptions.limits
-  const common = {
-    faults,
-    untestable: null,
-    task: basis.task,
-    total: basis.total,
-    order: { ...order, chosen: Math.max(order.chosen, input.cut) },
-    patterns,
-    patternFile: '',
-    scan: scanFactsOf(netlist),
-    tester: input.tester,
-    product: input.product,
-    program: [],
-    goals: [],
-    ceiling: null,
-    ceilingWithin: () => null,
-    smallest: null,
-  }
-  const own = { kind: 'patterns', most: input.cut } as const
-  const plain = requirePlan({ ...common, limits: [own] })
-  const isInside = maxMilliseconds !== null && plain.result.budget.milliseconds <= maxMilliseconds
-  const plan = isInside
-    ? requirePlan({ ...common, limits: [own, { kind: 'milliseconds', most: maxMilliseconds }] })
-    : plain
-  const chosen = order.sequence.subarray(0, plan.result.budget.patterns)
-  return { netlist, faults, profile, plan, lost: lostBlocks(basis.task, faults, chosen) }
-}
-
-function requirePlan(input: PlanInput): Plan {
-  const { plan, problems } = buildPlan(input)
-  if (plan === null) throw new AppError('bad-input', problems[0]?.message, { field: problems[0]?.key })
-  return plan
+  const { netlist, faults, profile } = dossier
+  const plan = planAtCut(dossier, input)
+  const chosen = orderOf(dossier, input.order, input).sequence.subarray(0, plan.result.budget.patterns)
+  return { netlist, faults, profile, plan, lost: lostBlocks(basisOf(dossier, input).task, faults, chosen) }
 }
 
 function sourceOf({ netlist }: RunDossier, input: Input): Parameters<typeof reportOfPlan>[1] {

@@ -1,17 +1,16 @@
 import type { Budget, BudgetView, Marker, OrderColumns, OrderName } from '../contract/shapes/budget.ts'
 import { chooseCut, type Goal, type Limit } from '../engine/choose/budget.ts'
-import { type ChoiceBasis, scanFactsOf } from '../engine/choose/choice-basis.ts'
+import type { ChoiceBasis } from '../engine/choose/choice-basis.ts'
 import { cutPlaces } from '../engine/choose/cut-places.ts'
 import { kneeOf } from '../engine/choose/knee.ts'
 import type { CoverageCurve, Order } from '../engine/choose/order.ts'
+import { type PlanPricing, planPricing } from '../engine/choose/plan-pricing.ts'
 import { type PricedOrder, type Pricing, priceOrder } from '../engine/choose/price.ts'
 import { leastTotal, nextMillisecondBuysLess } from '../engine/choose/stopping-rules.ts'
-import { countFaults } from '../engine/quality/count-faults.ts'
-import { type FaultCounts, testCoverage } from '../engine/quality/test-coverage.ts'
 import { resolveYield } from '../engine/quality/yield.ts'
-import { buildTimeModel } from '../engine/tester/time-model.ts'
 import { DeskAnswer } from './desk-answer.ts'
 import type { CutOfPlan, PlanJobs, PlanRequest } from './plan-jobs.ts'
+import { planBasisOf } from './plan-of-run.ts'
 import { basisOf, detectedBy, heldDossier, orderOf, type RunDossier } from './run-dossier.ts'
 import { runFigures } from './run-figures.ts'
 
@@ -32,17 +31,16 @@ export function viewJob({
 }: PlanJobs['view']['input']): DeskAnswer<PlanJobs['view']['output']> {
   const dossier = heldDossier(request.key)
   const basis = basisOf(dossier, request)
-  const counts = countFaults(dossier.faults, null)
-  const pricing = pricingOf(dossier, request, counts)
-  const { tester } = pricing
-  const views = orders.map((name) => ({ name, ...priceView(dossier, basis, name, request, pricing, counts) }))
+  const pricing = planPricing(planBasisOf(dossier, request))
+  const { tester } = pricing.pricing
+  const views = orders.map((name) => ({ name, ...priceView(dossier, basis, name, request, pricing) }))
   const columns = views.map((view) => columnsOf(view, dossier))
   const figures = runFigures(dossier.faults, dossier.profile)
   const output: Omit<BudgetView, 'runId'> = {
     total: basis.total,
     faults: figures.faults,
     base: dossier.faults.base,
-    untestable: counts.untestable,
+    untestable: pricing.counts.untestable,
     byChainTest: figures.byChainTest,
     possibly: figures.possibly,
     currency: tester.currency,
@@ -52,9 +50,9 @@ export function viewJob({
     orders: columns,
     markers: views.map((view) => ({
       order: view.name,
-      marks: marksOf(view, basis, request, pricing),
+      marks: marksOf(view, basis, request, pricing.pricing),
     })),
-    modelNote: modelNote(pricing, dossier, counts),
+    modelNote: modelNote(pricing),
     cautions: cautionsOf(dossier),
   }
   return new DeskAnswer(output, columns.flatMap(buffersOf))
@@ -64,9 +62,8 @@ export function viewJob({
 export function figuresJob({ order: name, cut, ...request }: CutOfPlan): DeskAnswer<Budget['figures']> {
   const dossier = heldDossier(request.key)
   const basis = basisOf(dossier, request)
-  const counts = countFaults(dossier.faults, null)
-  const pricing = pricingOf(dossier, request, counts)
-  const { curve, priced } = priceView(dossier, basis, name, request, pricing, counts)
+  const pricing = planPricing(planBasisOf(dossier, request))
+  const { curve, priced } = priceView(dossier, basis, name, request, pricing)
   const k = Math.min(cut, dossier.patterns.nPatterns)
   const at = (column: Float64Array): number => column[k] ?? 0
   return new DeskAnswer({
@@ -82,40 +79,22 @@ export function figuresJob({ order: name, cut, ...request }: CutOfPlan): DeskAns
   })
 }
 
-function pricingOf(dossier: RunDossier, { tester, product }: PlanRequest, counts: FaultCounts): Pricing {
-  const { patterns, netlist, faults, profile } = dossier
-  const detected = runFigures(faults, profile).detected
-  return {
-    tester,
-    product,
-    time: buildTimeModel(tester, product, patterns, scanFactsOf(netlist)),
-    trueYield: resolveYield(product, testCoverage(detected, counts)).value,
-    restMs: product.otherMs,
-  }
-}
-
 function priceView(
   dossier: RunDossier,
   basis: ChoiceBasis,
   name: OrderName,
   request: PlanRequest,
-  pricing: Pricing,
-  counts: FaultCounts,
+  pricing: PlanPricing,
 ): PricedView {
   const { task, total } = basis
   const order = orderOf(dossier, name, request)
   const curve = { detected: detectedBy(dossier, basis, order, task.detections), total }
   const detectedOnce = detectedBy(dossier, basis, order, 1)
-  const isPlain = request.assumptions.weights === null
-  const plain = isPlain ? detectedOnce : detectedBy(dossier, plainBasis(dossier, basis), order, 1)
-  const coverage = plain.map((count) => testCoverage(count, counts))
-  return { order, curve, detectedOnce, priced: priceOrder(order.sequence, coverage, pricing) }
-}
-
-/** The same choice with every fault counting once: what escapes are reckoned from. */
-function plainBasis({ faults, matrix }: RunDossier, basis: ChoiceBasis): ChoiceBasis {
-  const weights = Float64Array.from(matrix.classOfRow, (group) => faults.classSize[group] ?? 0)
-  return { ...basis, task: { ...basis.task, weights }, total: faults.nFaults }
+  const { plainTask, counts } = pricing
+  const plainBasis = { ...basis, task: plainTask, total: counts.all }
+  const plain = pricing.isWeighted ? detectedBy(dossier, plainBasis, order, 1) : detectedOnce
+  const coverage = pricing.coverageOf(order, { detected: plain, total: counts.all })
+  return { order, curve, detectedOnce, priced: priceOrder(order.sequence, coverage, pricing.pricing) }
 }
 
 function columnsOf({ order, curve, detectedOnce, priced }: PricedView, dossier: RunDossier): OrderColumns {
@@ -198,9 +177,8 @@ function marksOf(
   return marks.sort((a, b) => a.cut - b.cut)
 }
 
-function modelNote({ product, trueYield }: Pricing, dossier: RunDossier, counts: FaultCounts): string {
-  const { detected } = runFigures(dossier.faults, dossier.profile)
-  const { origin } = resolveYield(product, testCoverage(detected, counts))
+function modelNote({ pricing: { product, trueYield }, deliveredCoverage }: PlanPricing): string {
+  const { origin } = resolveYield(product, deliveredCoverage)
   const model =
     product.model === 'williams-brown'
       ? 'Williams and Brown 1981'
