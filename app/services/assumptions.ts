@@ -1,6 +1,12 @@
+import { INPUT_WORDS } from '../contract/plan-words.ts'
 import type { Field, FieldError, FieldValues } from '../contract/shapes/model.ts'
 import type { NumberShape, Shape } from '../engine/formats/json/read-json.ts'
-import { PRODUCT_FIELDS, productContradictions, type Product } from '../engine/quality/product.ts'
+import {
+  PRODUCT_FIELDS,
+  productContradictions,
+  type Product,
+  type RangeInput,
+} from '../engine/quality/product.ts'
 import {
   type AssumptionField,
   type Contradiction,
@@ -20,9 +26,37 @@ type AnyField = AssumptionField<Record<string, unknown>>
 
 type Resolved<T> = { readonly values: T; readonly errors: readonly FieldError[] }
 
+/**
+ * Returns the fields that a form has for one of a file: the field itself, or where its value has keys of its own, such as
+ * the ranges, one for each: `ranges.yield`.
+ */
+function partsOf(field: AnyField): readonly AnyField[] {
+  const { shape } = field
+  const inner = shape.kind === 'or-null' ? shape.of : shape
+  if (inner.kind !== 'object') return [field]
+  return Object.entries(inner.keys).map(([key, of]) => ({
+    ...field,
+    key: `${field.key}.${key}`,
+    label: `Range of ${INPUT_WORDS[key as RangeInput].toLowerCase()}`,
+    shape: { kind: 'or-null', of },
+    nullMeans: '± 20 %',
+    explanation: `Lowest and highest to be reckoned with, such as "${EXAMPLES[key as RangeInput]}".`,
+  }))
+}
+
+const EXAMPLES: Readonly<Record<RangeInput, string>> = {
+  yield: '0.9 to 0.95',
+  n0: '1 to 3',
+  escapeCost: '10 to 40',
+  costPerHour: '120 to 180',
+  sites: '4 to 8',
+  shiftMHz: '10 to 25',
+}
+
 /** Returns the fields that forms show of products and of testers. */
 export function formFields(): { product: Field[]; tester: Field[] } {
-  const fieldsOf = (fields: readonly AnyField[]): Field[] => fields.filter(isInForms).map(fieldOf)
+  const fieldsOf = (fields: readonly AnyField[]): Field[] =>
+    fields.filter(isInForms).flatMap(partsOf).map(fieldOf)
   return { product: fieldsOf(PRODUCT_FIELDS), tester: fieldsOf(TESTER_FIELDS) }
 }
 
@@ -58,7 +92,7 @@ export function changeValues(
       Reflect.deleteProperty(next, key)
       continue
     }
-    const problem = fieldProblem<Record<string, unknown>>(field, fileValue(field.shape, value))
+    const problem = problemOf(field, value)
     if (problem === null) next[key] = value
     else errors.push({ key, message: asSentence(problem) })
   }
@@ -77,23 +111,49 @@ function resolve<T>(
 ): Resolved<T> {
   const given: Record<string, unknown> = {}
   const errors: FieldError[] = []
+  const parts = (fields as readonly AnyField[]).flatMap(partsOf)
+  const defaults = defaultsOf(fields)
   for (const [key, value] of Object.entries(values)) {
-    const field = fields.find((one) => one.key === key)
+    const field = parts.find((one) => one.key === key)
     if (field === undefined || value === null) continue
     const inFile = fileValue(field.shape, value)
-    const problem = fieldProblem(field, inFile)
-    if (problem === null) given[key] = inFile
-    else errors.push({ key, message: asSentence(problem) })
+    const problem = problemOf(field, value)
+    if (problem !== null) {
+      errors.push({ key, message: asSentence(problem) })
+      continue
+    }
+    const [whole = key, part] = key.split('.')
+    if (part === undefined) {
+      given[key] = inFile
+      continue
+    }
+    const contradiction = contradictions({ ...defaults, [whole]: { [part]: inFile } }).find(
+      (one) => one.key === whole,
+    )
+    if (contradiction === undefined) given[whole] = { ...(given[whole] as object), [part]: inFile }
+    else errors.push({ key, message: `${asSentence(contradiction.message)} ${contradiction.hint}.` })
   }
-  const resolved = { ...defaultsOf(fields), ...given }
+  const resolved = { ...defaults, ...given }
   for (const { key, message, hint } of contradictions(resolved)) {
     errors.push({ key, message: `${asSentence(message)} ${hint}.` })
   }
   return { values: resolved, errors }
 }
 
+function problemOf(field: AnyField, value: string | number): string | null {
+  const inFile = fileValue(field.shape, value)
+  const example = EXAMPLES[field.key.split('.')[1] as RangeInput] as string | undefined
+  const isPair = Array.isArray(inFile) && inFile.length === 2 && inFile.every(Number.isFinite)
+  return example === undefined || isPair
+    ? fieldProblem<Record<string, unknown>>(field, inFile)
+    : `"${field.key}" is ${value}; two numbers such as ${example} are expected`
+}
+
 function formField(fields: readonly AnyField[], key: string): AnyField | undefined {
-  return fields.find((field) => field.key === key && isInForms(field))
+  return fields
+    .filter(isInForms)
+    .flatMap(partsOf)
+    .find((field) => field.key === key)
 }
 
 function fieldOf({ key, label, unit, shape, default: value, nullMeans, explanation }: AnyField): Field {

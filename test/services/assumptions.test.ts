@@ -37,6 +37,19 @@ describe('assumptions', () => {
     expect(resolveProduct('P', { chainTest: 'perhaps' }).errors).toMatchObject([{ key: 'chainTest' }])
   })
 
+  test('a range is typed as one, for each input, and a wrong one is named at its own field', () => {
+    const { values, errors } = resolveProduct('P', { 'ranges.yield': '0.8 to 0.9', 'ranges.n0': '1 – 3' })
+    expect(errors).toEqual([])
+    expect(values.ranges).toEqual({ yield: [0.8, 0.9], n0: [1, 3] })
+    const wrong = resolveProduct('P', { 'ranges.yield': '0.9 to 0.8', 'ranges.sites': '4' })
+    expect(wrong.values.ranges).toBeNull()
+    expect(wrong.errors).toMatchObject([
+      { key: 'ranges.yield', message: expect.stringContaining('Write the lower value first') },
+      { key: 'ranges.sites', message: expect.stringContaining('two numbers such as 4 to 8 are expected') },
+    ])
+    expect(changeValues('product', {}, { 'ranges.shiftMHz': 'fast' }).errors).toHaveLength(1)
+  })
+
   test('a yield outside 0 to 1 and values that contradict each other are named at their field', () => {
     expect(resolveProduct('P', { yield: 1.2 }).errors).toMatchObject([{ key: 'yield' }])
     expect(resolveProduct('P', { areaMm2: 4 }).errors).toMatchObject([{ key: 'areaMm2' }])
