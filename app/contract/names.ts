@@ -42,6 +42,7 @@ export const OPERATION_NAMES = [
   'budgets.save',
   'budgets.update',
   'budgets.delete',
+  'budgets.money',
   'faults.lost',
   'exports.make',
   'tasks.list',

@@ -17,6 +17,7 @@ import {
   productShape,
   testerShape,
 } from './shapes/model.ts'
+import { moneyViewShape } from './shapes/money.ts'
 import { netlistInspectionShape, netlistRevisionShape, testPinShape } from './shapes/netlist.ts'
 import { patternInspectionShape, patternSetRevisionShape } from './shapes/pattern-set.ts'
 import { projectShape, recentProjectShape } from './shapes/project.ts'
@@ -184,6 +185,17 @@ export const operations = {
     budgetShape,
   ),
   'budgets.delete': command(byId, undo),
+
+  /** What a cut costs a year, how firm that is, and what other equipment would change. */
+  'budgets.money': query(
+    z.object({
+      runId: idShape,
+      order: orderNameShape,
+      cut: z.number().int().nonnegative(),
+      assumptions: assumptionsShape,
+    }),
+    moneyViewShape,
+  ),
 
   /** Faults that a cut loses against the whole set, by block and one by one. */
   'faults.lost': query(

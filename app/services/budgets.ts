@@ -34,6 +34,7 @@ export function createBudgets(options: {
   | 'budgets.save'
   | 'budgets.update'
   | 'budgets.delete'
+  | 'budgets.money'
   | 'faults.lost'
   | 'exports.make'
 > {
@@ -142,6 +143,11 @@ export function createBudgets(options: {
       trash.remove('budget', id, undoToken)
       changed(productId)
       return { undoToken }
+    },
+    'budgets.money': async ({ runId, order, cut, assumptions }) => {
+      const ground = sound(planGround(session.store(), runId, assumptions))
+      const smallest = await smallestFor([order], ground)
+      return planner.ask('money', ground, { order, cut, smallest })
     },
     'faults.lost': async ({ runId, order, cut, assumptions, block, first, count }) => {
       const ground = sound(planGround(session.store(), runId, assumptions))

@@ -22,6 +22,7 @@ const WORK: Work = {
   'hold-run': async () => (await import('./hold-run-job.ts')).holdRunJob,
   view: async () => (await import('./view-job.ts')).viewJob,
   figures: async () => (await import('./view-job.ts')).figuresJob,
+  money: async () => (await import('./money-job.ts')).moneyJob,
   'lost-faults': async () => (await import('./lost-faults-job.ts')).lostFaultsJob,
   'make-export': async () => (await import('./export-job.ts')).exportJob,
   'prove-ceiling': async () => (await import('./ceiling-job.ts')).ceilingJob,

@@ -1,5 +1,6 @@
 import type { Assumptions, BudgetView, OrderName } from '../contract/shapes/budget.ts'
 import type { Budget } from '../contract/shapes/budget.ts'
+import type { MoneyView } from '../contract/shapes/money.ts'
 import type { OutputOf } from '../contract/operations.ts'
 import type { ReportSubject } from './export-subject.ts'
 import type { NetlistInput } from './load-netlist.ts'
@@ -38,6 +39,7 @@ export type PlanJobs = {
     readonly output: Budget['figures']
     readonly part: never
   }
+  readonly money: { readonly input: CutOfPlan; readonly output: MoneyView; readonly part: never }
   readonly 'lost-faults': {
     readonly input: CutOfPlan & {
       readonly block: string | null

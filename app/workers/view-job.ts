@@ -7,8 +7,8 @@ import type { CoverageCurve, Order } from '../engine/choose/order.ts'
 import { type PlanPricing, planPricing } from '../engine/choose/plan-pricing.ts'
 import { type PricedOrder, type Pricing, priceOrder } from '../engine/choose/price.ts'
 import { leastTotal, nextMillisecondBuysLess } from '../engine/choose/stopping-rules.ts'
-import { resolveYield } from '../engine/quality/yield.ts'
 import { DeskAnswer } from './desk-answer.ts'
+import { modelNote } from './model-note.ts'
 import type { CutOfPlan, PlanJobs, PlanRequest } from './plan-jobs.ts'
 import { planBasisOf } from './plan-of-run.ts'
 import { basisOf, detectedBy, heldDossier, orderOf, type RunDossier } from './run-dossier.ts'
@@ -175,16 +175,6 @@ function marksOf(
     'Where time stops paying',
   )
   return marks.sort((a, b) => a.cut - b.cut)
-}
-
-function modelNote({ pricing: { product, trueYield }, deliveredCoverage }: PlanPricing): string {
-  const { origin } = resolveYield(product, deliveredCoverage)
-  const model =
-    product.model === 'williams-brown'
-      ? 'Williams and Brown 1981'
-      : `Agrawal, Seth and Agrawal 1982, n0 = ${product.n0}`
-  const from = origin === 'given' ? '' : origin === 'assumed' ? ', assumed' : `, from ${origin}`
-  return `${model}, yield ${(100 * trueYield).toFixed(1)} %${from}`
 }
 
 function cautionsOf({ patterns, netlist, faults }: RunDossier): string[] {

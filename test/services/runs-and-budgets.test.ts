@@ -185,6 +185,33 @@ describe('budgets', () => {
     expect(rows.every(({ pattern, position }) => pattern >= 2 && position === pattern)).toBe(true)
   })
 
+  test('money: sums a year, the least of them, and what a dearer escape and tester would change', async () => {
+    const application = testApplication()
+    const { runId } = await finishedRun(application)
+    const assumptions = {
+      ...ASSUMPTIONS,
+      productValues: { yield: 0.9, shippedPerYear: 1e6, escapeCost: 40 },
+      limits: { maxMilliseconds: null, minCoverage: 0.5, maxDppm: null },
+    }
+    const subject = { runId, order: 'as-delivered' as const, cut: 2, assumptions }
+    const money = await application.call('budgets.money', subject)
+    const total = money.totalPerYear ?? new Float64Array()
+    expect(total).toHaveLength(money.patterns + 1)
+    expect(money.leastTotalCut).toBe(total.indexOf(Math.min(...total)))
+    expect(money.wantedCut).toBeLessThanOrEqual(money.patterns)
+
+    // Both costs are proportional to their price: tested devices x time x rate, shipped x DPPM x cost of an escape.
+    const [test, escapes] = [money.testCostPerYear?.[2] ?? NaN, money.escapeCostPerYear?.[2] ?? NaN]
+    expect(escapes).toBeCloseTo((1e6 * money.at.dppm * 40) / 1e6, 6)
+    const row = (input: string) => money.sensitivity.find((each) => each.input === input)
+    expect(row('escapeCost')?.low).toMatchObject({ value: 32, dppm: money.at.dppm })
+    expect(row('escapeCost')?.high.totalPerYear).toBeCloseTo(test + 1.2 * escapes, 6)
+    expect(row('costPerHour')?.low.totalPerYear).toBeCloseTo(0.8 * test + escapes, 6)
+    expect(
+      money.narrowings.every(({ low, high }) => low >= money.at.dppmLow && high <= money.at.dppmHigh),
+    ).toBe(true)
+  })
+
   test.each(['html', 'csv', 'pdf', 'xlsx', 'vectors', 'patterns-csv', 'stil'] as const)(
     'an export as %s has the form of its kind',
     async (format) => {
