@@ -123,15 +123,7 @@ function resolve<T>(
       continue
     }
     const [whole = key, part] = key.split('.')
-    if (part === undefined) {
-      given[key] = inFile
-      continue
-    }
-    const contradiction = contradictions({ ...defaults, [whole]: { [part]: inFile } }).find(
-      (one) => one.key === whole,
-    )
-    if (contradiction === undefined) given[whole] = { ...(given[whole] as object), [part]: inFile }
-    else errors.push({ key, message: `${asSentence(contradiction.message)} ${contradiction.hint}.` })
+    given[whole] = part === undefined ? inFile : { ...(given[whole] as object), [part]: inFile }
   }
   const resolved = { ...defaults, ...given }
   for (const { key, message, hint } of contradictions(resolved)) {
@@ -143,10 +135,13 @@ function resolve<T>(
 function problemOf(field: AnyField, value: string | number): string | null {
   const inFile = fileValue(field.shape, value)
   const example = EXAMPLES[field.key.split('.')[1] as RangeInput] as string | undefined
-  const isPair = Array.isArray(inFile) && inFile.length === 2 && inFile.every(Number.isFinite)
-  return example === undefined || isPair
-    ? fieldProblem<Record<string, unknown>>(field, inFile)
-    : `"${field.key}" is ${value}; two numbers such as ${example} are expected`
+  if (example !== undefined) {
+    const [low, high] = Array.isArray(inFile) && inFile.length === 2 ? (inFile as number[]) : []
+    if (!((low ?? NaN) <= (high ?? NaN))) {
+      return `"${field.key}" is ${value}; two numbers, the lower first, such as ${example}, are expected`
+    }
+  }
+  return fieldProblem<Record<string, unknown>>(field, inFile)
 }
 
 function formField(fields: readonly AnyField[], key: string): AnyField | undefined {

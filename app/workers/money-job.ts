@@ -1,7 +1,7 @@
 import type { MoneyView } from '../contract/shapes/money.ts'
 import type { Plan } from '../engine/choose/build-plan.ts'
 import type { Goal, Limit } from '../engine/choose/budget.ts'
-import type { MovedOutcome } from '../engine/choose/plan-result.ts'
+import type { MovedOutcome, TimeOutcome } from '../engine/choose/plan-result.ts'
 import type { PointFigures } from '../engine/choose/point-figures.ts'
 import { leastTotal } from '../engine/choose/stopping-rules.ts'
 import type { WhatIfGrid } from '../engine/quality/what-if.ts'
@@ -40,8 +40,15 @@ export function moneyJob(input: PlanJobs['money']['input']): DeskAnswer<MoneyVie
         high: movedTo(high, asked?.high.outcome),
       }
     }),
-    chainsByShiftRate: whatIf.chainsByShiftRate === null ? null : gridOf(whatIf.chainsByShiftRate),
-    sitesByEfficiency: gridOf(whatIf.sitesByEfficiency),
+    chainsByShiftRate:
+      whatIf.chainsByShiftRate === null
+        ? null
+        : gridOf(whatIf.chainsByShiftRate, pricing.time.chains, pricing.tester.shiftMHz),
+    sitesByEfficiency: gridOf(
+      whatIf.sitesByEfficiency,
+      pricing.tester.sites,
+      pricing.tester.multiSiteEfficiency,
+    ),
     insertions: result.insertions === null ? null : [...result.insertions],
   }
   return new DeskAnswer(output)
@@ -97,10 +104,15 @@ function movedTo(
   }
 }
 
-function gridOf<T>({ rows, columns, outcomes }: WhatIfGrid<T>): {
-  rows: number[]
-  columns: number[]
-  outcomes: T[][]
-} {
-  return { rows: [...rows], columns: [...columns], outcomes: outcomes.map((row) => [...row]) }
+function gridOf(
+  { rows, columns, outcomes }: WhatIfGrid<TimeOutcome>,
+  row: number,
+  column: number,
+): MoneyView['sitesByEfficiency'] {
+  return {
+    rows: [...rows],
+    columns: [...columns],
+    now: { row, column },
+    outcomes: outcomes.map((each) => [...each]),
+  }
 }

@@ -33,6 +33,7 @@ const TABLE = {
   'go.product': ['Overview', 'Go to', 'Mod+1'],
   'go.budget': ['Budget', 'Go to', 'Mod+2'],
   'go.faults-lost': ['Faults lost', 'Go to', 'Mod+3'],
+  'go.money': ['Money', 'Go to', null],
   'go.assumptions': ['Assumptions', 'Go to', null],
   'go.testers': ['Testers', 'Go to', null],
   'go.tasks': ['Tasks', 'Go to', null],
@@ -128,7 +129,7 @@ function useOwnActions(): Partial<Record<CommandId, Action>> {
     needsProject() ?? (productId() === null ? 'The project has no product yet' : null)
   const needsWriting = (): string | null =>
     needsProject() ?? (project.isReadOnly ? 'The project is open for reading only' : null)
-  const toProduct = (screen: 'product' | 'budget' | 'faults-lost' | 'assumptions'): Action => ({
+  const toProduct = (screen: 'product' | 'budget' | 'faults-lost' | 'money' | 'assumptions'): Action => ({
     blockedBy: needsProduct,
     run: () => navigation.go(screen, productId()),
   })
@@ -156,6 +157,7 @@ function useOwnActions(): Partial<Record<CommandId, Action>> {
     'go.product': toProduct('product'),
     'go.budget': toProduct('budget'),
     'go.faults-lost': toProduct('faults-lost'),
+    'go.money': toProduct('money'),
     'go.assumptions': toProduct('assumptions'),
     'go.testers': { blockedBy: needsProject, run: () => navigation.go('testers') },
     'go.tasks': { run: () => navigation.go('tasks') },

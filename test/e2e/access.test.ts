@@ -7,6 +7,7 @@ const SCREENS = [
   ['Overview', '#/products/1/product'],
   ['Budget', '#/products/1/budget'],
   ['Faults lost', '#/products/1/faults-lost'],
+  ['Money', '#/products/1/money'],
   ['Assumptions', '#/products/1/assumptions'],
   ['Import', '#/products/1/import'],
   ['Testers', '#/testers'],

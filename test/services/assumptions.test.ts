@@ -44,8 +44,11 @@ describe('assumptions', () => {
     const wrong = resolveProduct('P', { 'ranges.yield': '0.9 to 0.8', 'ranges.sites': '4' })
     expect(wrong.values.ranges).toBeNull()
     expect(wrong.errors).toMatchObject([
-      { key: 'ranges.yield', message: expect.stringContaining('Write the lower value first') },
-      { key: 'ranges.sites', message: expect.stringContaining('two numbers such as 4 to 8 are expected') },
+      { key: 'ranges.yield', message: expect.stringContaining('the lower first') },
+      {
+        key: 'ranges.sites',
+        message: expect.stringContaining('two numbers, the lower first, such as 4 to 8, are expected'),
+      },
     ])
     expect(changeValues('product', {}, { 'ranges.shiftMHz': 'fast' }).errors).toHaveLength(1)
   })

@@ -21,6 +21,8 @@ const movedShape = z.object({
 const timeGridShape = z.object({
   rows: z.array(z.number()),
   columns: z.array(z.number()),
+  /** The row's and the column's value as they are; the column's may not be among those of the grid. */
+  now: z.object({ row: z.number(), column: z.number() }),
   /** One list for each row. */
   outcomes: z.array(z.array(z.object({ perDeviceMilliseconds: z.number(), costPerDevice: z.number() }))),
 })
