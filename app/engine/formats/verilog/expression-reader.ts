@@ -23,9 +23,10 @@ export type Operand = { at: number; width: number; inverts: boolean; isUnsized: 
  *     primary     = net [ "[" select "]" ] | constant | "(" expression ")" | "{" … "}"
  *
  * Each operator becomes one gate for each bit, so each is a line of the netlist as if it had been written as a gate;
- * inner nets are named after the target, `z:1`, `z:2`, in the order in which they are evaluated. `a ? b : c` becomes an
- * inverter, three AND gates and an OR gate, `a&b | ~a&c | b&c`: the third term keeps equal data bits known while the
- * select is not, as IEEE 1364-2005, 5.1.13, demands.
+ * constant zeros on both sides, which padding makes, need none. Inner nets are named after the target, `z:1`, `z:2`, in
+ * the order in which they are evaluated. `a ? b : c` becomes an inverter, three AND gates and an OR gate,
+ * `a&b | ~a&c | b&c`: the third term keeps equal data bits known while the select is not, as IEEE 1364-2005, 5.1.13,
+ * demands.
  */
 export class ExpressionReader extends TokenReader {
   protected module: ParsedModule
@@ -173,7 +174,11 @@ export class ExpressionReader extends TokenReader {
     const kind = isEquality ? GateKind.Xnor : gateOf(operator)
     const outputs: number[] = []
     for (let at = 0; at < width; at++) {
-      outputs.push(this.emitGate(kind, [this.bits.data[a.at + at], this.bits.data[b.at + at]]))
+      const [one, other] = [this.bits.data[a.at + at], this.bits.data[b.at + at]]
+      const isPadding = one === ConstantBit.Zero && other === ConstantBit.Zero
+      // 0 op 0 is 1 for the inverting operators, 0 for the others.
+      const ofPadding = kind === GateKind.Xnor ? ConstantBit.One : ConstantBit.Zero
+      outputs.push(isPadding && !isEquality ? ofPadding : this.emitGate(kind, [one, other]))
     }
     if (!isEquality) return this.push(outputs, a.inverts || b.inverts || operator === Token.Xnor)
     const differs = operator === Token.NotEqual
@@ -242,6 +247,10 @@ export class ExpressionReader extends TokenReader {
     for (let at = 0; at < width; at++) {
       const one = this.bits.data[a.at + at]
       const zero = this.bits.data[b.at + at]
+      if (one === ConstantBit.Zero && zero === ConstantBit.Zero) {
+        outputs.push(ConstantBit.Zero)
+        continue
+      }
       const terms = [
         this.emitGate(GateKind.And, [select, one]),
         this.emitGate(GateKind.And, [not, zero]),

@@ -87,6 +87,16 @@ describe('gates and assignments', () => {
     )
   })
 
+  test('padding of wide constants makes no gates, and the values are those of the whole width (5.4)', () => {
+    const text = `module m (input s, a, output [2:0] y, output z);
+      assign y = s ? 65536'b10 : {2'b0, a}; assign z = (4'b0 ~^ {3'b0, a}) == 4'b1111;
+    endmodule`
+    expect(['00', '01', '10', '11'].map((bits) => evaluate(text, bits))).toEqual(
+      ['0001', '0010', '0101', '0100'], // prettier-ignore
+    )
+    expect(gates(text).length).toBeLessThan(40)
+  })
+
   test('reductions, logical operators and equality take whole vectors (5.1.7 to 5.1.11)', () => {
     const text = `module m (input [2:0] a, output [5:0] y);
       assign y = {&a, |a, ^a, !a, a == 3'd5, a != 3'b101 && a};
