@@ -1,4 +1,4 @@
-// Measures the simulation kernel and writes the figures to out/bench as JSON and as a table.
+// Measures the simulation kernel and the readers, and writes the figures to out/bench as JSON and as a table.
 import { execFileSync } from 'node:child_process'
 import { existsSync, mkdirSync, mkdtempSync, rmSync, writeFileSync } from 'node:fs'
 import { availableParallelism, cpus, loadavg, tmpdir } from 'node:os'
@@ -9,11 +9,11 @@ import { median, type RowOrder, type RowResult } from './bench-row.ts'
 import { CIRCUITS, MILLION } from './circuits.ts'
 import { hasYardstick } from './yardstick.ts'
 
-const HELP = `Measures the simulation kernel: npm run bench -- [options]
+const HELP = `Measures the simulation kernel and the readers of big files: npm run bench -- [options]
 
-  --quick         two circuits, 2,000 patterns, three runs each
+  --quick         two circuits, 2,000 patterns, three runs each; files of 10 MB in place of 100
   --million       also a circuit of a million gates (minutes)
-  --circuit NAME  only circuits of this name; may be repeated
+  --circuit NAME  only circuits of this name, no readers; may be repeated
   --patterns N    random patterns (10000)
   --runs N        runs of each row, of which the median is shown (5)
 
@@ -40,6 +40,12 @@ const MODES: readonly RowOrder['mode'][] = [
 const root = join(import.meta.dirname, '../..')
 
 type Row = RowOrder & RowResult
+type ReadingRow = {
+  readonly format: string
+  readonly megabytes: number
+  readonly seconds: number
+  readonly peakMegabytes: number
+}
 type CommandRow = {
   readonly circuit: string
   readonly seconds: number
@@ -72,6 +78,7 @@ function bench(): void {
       yardstick: false,
     })
   }
+  const readings = values.circuit === undefined ? measureReading(values.quick ? 10 : 100) : []
   const rows: Row[] = []
   for (const order of orders) {
     process.stderr.write(
@@ -85,15 +92,28 @@ function bench(): void {
     rows.push({ ...order, ...(JSON.parse(printed) as RowResult) })
   }
   const commands = wholeCommands(chosen, nPatterns, runs)
-  const table = tableOf(rows, commands)
+  const table = tableOf(rows, commands, readings)
   const folder = join(root, 'out/bench')
   mkdirSync(folder, { recursive: true })
   writeFileSync(
-    join(folder, 'simulate.json'),
-    JSON.stringify({ machine: machine(), rows, commands }, null, 2),
+    join(folder, 'bench.json'),
+    JSON.stringify({ machine: machine(), rows, commands, readings }, null, 2),
   )
-  writeFileSync(join(folder, 'simulate.md'), table)
+  writeFileSync(join(folder, 'bench.md'), table)
   console.log(table)
+}
+
+/** Reads a generated file of each format, in a process of its own each. */
+function measureReading(megabytes: number): ReadingRow[] {
+  return ['verilog', 'stil'].map((format) => {
+    process.stderr.write(`reading ${megabytes} MB of ${format} …\n`)
+    const printed = execFileSync(
+      process.execPath,
+      [join(import.meta.dirname, 'measure-reading.ts'), format, String(megabytes)],
+      { encoding: 'utf8', stdio: ['ignore', 'pipe', 'inherit'] },
+    )
+    return JSON.parse(printed) as ReadingRow
+  })
 }
 
 /** Runs the command line from its start to its JSON, where it has been built. */
@@ -139,7 +159,11 @@ function randomVectors(netlist: string, nPatterns: number): string {
   return Array.from({ length: nPatterns }, line).join('\n') + '\n'
 }
 
-function tableOf(rows: readonly Row[], commands: readonly CommandRow[]): string {
+function tableOf(
+  rows: readonly Row[],
+  commands: readonly CommandRow[],
+  readings: readonly ReadingRow[],
+): string {
   const head = [
     'circuit',
     'gates',
@@ -184,7 +208,20 @@ function tableOf(rows: readonly Row[], commands: readonly CommandRow[]): string 
     '\n## Whole command, from start to JSON, first detection\n\n' +
     (whole.length === 0
       ? 'The command line has not been built.\n'
-      : markdown(['circuit', 'seconds', 'peak MB'], whole))
+      : markdown(['circuit', 'seconds', 'peak MB'], whole)) +
+    (readings.length === 0
+      ? ''
+      : '\n## Reading, from text to netlist or patterns\n\n' +
+        markdown(
+          ['format', 'MB', 'seconds', 'MB/s', 'peak MB, the text included'],
+          readings.map(({ format, megabytes, seconds, peakMegabytes }) => [
+            format,
+            megabytes.toFixed(1),
+            seconds.toFixed(2),
+            (megabytes / seconds).toFixed(1),
+            peakMegabytes.toFixed(0),
+          ]),
+        ))
   )
 }
 
