@@ -26,9 +26,10 @@ export function timeLeft(seconds: number): string {
   return `${textOf(formats.duration(seconds))} left`
 }
 
-/** Returns a count with its noun: "1 pattern", "1,024 patterns". */
+/** Returns a count with its noun: "1 pattern", "1,024 patterns", "12 latches". */
 export function countOf(count: number, noun: string): string {
-  return `${formats.count(count).value} ${noun}${count === 1 ? '' : 's'}`
+  const plural = /(?:ch|x|s)$/.test(noun) ? 'es' : 's'
+  return `${formats.count(count).value} ${noun}${count === 1 ? '' : plural}`
 }
 
 export { NOT_KNOWN, textOf, type Figure }

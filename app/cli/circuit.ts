@@ -1,28 +1,53 @@
+import { textOf } from '../contract/format-number.ts'
+import type { UnusableCosts } from '../engine/simulate/unusable-cost.ts'
 import { readNetlistFiles, type NetlistOfFiles } from '../services/on-files/read-netlist-files.ts'
-import { UsageError } from './arguments.ts'
+import { estimateUnusableCosts } from '../workers/estimate-unusable-costs.ts'
+import { type Arguments, UsageError } from './arguments.ts'
 import { ExitCode, type Command } from './command.ts'
+import type { Io } from './io.ts'
 import { NETLIST_DETAILS, NETLIST_OPTIONS, netlistArguments } from './netlist-arguments.ts'
 import { JSON_OPTION, printJson } from './print-json.ts'
 import { aligned, formats, printText } from './print-text.ts'
+import { simulatorOf } from './simulator-of.ts'
+import type { Terminal } from './terminal.ts'
 
 export const circuit: Command = {
   usage: ['NETLIST [--library LIB…] [--top NAME] [--json]'],
   options: { ...NETLIST_OPTIONS, ...JSON_OPTION },
   details: () => [NETLIST_DETAILS],
   examples: ['assets/demo/fern.bench', 'chip.v --library cells.lib --top chip --json'],
-  async run(args, terminal, { stdout }) {
+  async run(args, terminal, io) {
     const { netlist, others } = netlistArguments(args)
     if (others.length > 0) throw new UsageError(`"${others[0]}" has no place here: one netlist is read.`)
     const read = await readNetlistFiles(netlist, [], terminal)
+    const costs = await costsOf(read, args, terminal, io)
     terminal.clear()
-    if (args.has('json')) printJson({ ...circuitJson(read), warnings: terminal.warnings }, stdout)
-    else printText(circuitText(read), stdout)
+    if (args.has('json')) printJson({ ...circuitJson(read, costs), warnings: terminal.warnings }, io.stdout)
+    else printText(circuitText(read, costs), io.stdout)
     return ExitCode.Done
   },
 }
 
-/** What JSON says of a netlist and its faults. */
-export function circuitJson({ netlist: { circuit, chains, report }, faults }: NetlistOfFiles): object {
+async function costsOf(
+  read: NetlistOfFiles,
+  args: Arguments,
+  terminal: Terminal,
+  io: Io,
+): Promise<UnusableCosts | null> {
+  if (read.netlist.report.unusable.length === 0) return null
+  const simulator = simulatorOf(args, io)
+  try {
+    return await estimateUnusableCosts(read, async (task) => (await simulator.run(task, terminal)).result)
+  } finally {
+    simulator.close()
+  }
+}
+
+/** What JSON says of a netlist and its faults; with what its sources of X cost, where that was estimated. */
+export function circuitJson(
+  { netlist: { circuit, chains, report }, faults }: NetlistOfFiles,
+  costs: UnusableCosts | null = null,
+): object {
   return {
     circuit: {
       name: circuit.name,
@@ -40,7 +65,23 @@ export function circuitJson({ netlist: { circuit, chains, report }, faults }: Ne
         length: cells.length,
       })),
       testPins: report.testPins,
-      unknownSources: report.unusable.map(({ kind, count, examples }) => ({ kind, count, examples })),
+      unknownSources: report.unusable.map(({ kind, count, examples }) => ({
+        kind,
+        count,
+        examples,
+        ...(costs === null ? {} : { coverageCost: costOf(costs, kind) }),
+      })),
+      ...(costs === null
+        ? {}
+        : {
+            unknownSourcesCost: {
+              patterns: costs.nPatterns,
+              seed: costs.seed,
+              faults: costs.faults,
+              coverage: costs.coverage,
+              together: costs.together,
+            },
+          }),
       cellsUnknown: report.cellsUnknown,
     },
     faults: {
@@ -52,8 +93,15 @@ export function circuitJson({ netlist: { circuit, chains, report }, faults }: Ne
   }
 }
 
+function costOf({ kinds }: UnusableCosts, kind: string): number {
+  return kinds.find((each) => each.kind === kind)?.coverage ?? 0
+}
+
 /** The same for people. */
-export function circuitText({ netlist: { circuit, chains, report }, faults }: NetlistOfFiles): string {
+export function circuitText(
+  { netlist: { circuit, chains, report }, faults }: NetlistOfFiles,
+  costs: UnusableCosts | null = null,
+): string {
   const { count } = formats
   const rows: [string, string][] = [
     ['Circuit', circuit.name],
@@ -74,7 +122,16 @@ export function circuitText({ netlist: { circuit, chains, report }, faults }: Ne
     rows.push(['Held in test', `${name} = ${value} (${role}, from the ${from})`])
   }
   for (const { kind, count: number, examples } of report.unusable) {
-    rows.push(['Source of X', `${count(number).value} × ${kind}: ${examples.slice(0, 3).join(', ')}`])
+    const cost =
+      costs === null ? '' : `, costs about ${textOf(formats.coverage(costOf(costs, kind)))} of coverage`
+    rows.push(['Source of X', `${count(number).value} × ${kind}: ${examples.slice(0, 3).join(', ')}${cost}`])
+  }
+  if (costs !== null) {
+    const { coverage, together, nPatterns } = costs
+    rows.push([
+      'Estimate',
+      `${count(nPatterns).value} random patterns detect ${textOf(formats.coverage(coverage))} of the faults as it is, ${textOf(formats.coverage(coverage + together))} with none of this unknown`,
+    ])
   }
   return aligned(rows)
 }

@@ -1,18 +1,16 @@
 import { textOf } from '../contract/format-number.ts'
 import type { ResponseComparison } from '../engine/simulate/compare-response.ts'
 import { detectedAfter } from '../engine/simulate/detected-after.ts'
-import { findInstallation } from '../installation.ts'
 import { csvRow } from '../report/csv-row.ts'
 import { faultRows } from '../services/on-files/fault-rows.ts'
 import { readRunFiles, simulateFiles, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
-import { startSimulator, type Simulator } from '../services/on-files/simulator.ts'
 import { UsageError, type Arguments } from './arguments.ts'
 import { circuitJson, circuitText } from './circuit.ts'
 import { ExitCode, type Command, type OptionTable } from './command.ts'
-import type { Io } from './io.ts'
 import { NETLIST_DETAILS, NETLIST_OPTIONS, netlistArguments } from './netlist-arguments.ts'
 import { JSON_OPTION, printJson } from './print-json.ts'
 import { aligned, formats, printText } from './print-text.ts'
+import { simulatorOf } from './simulator-of.ts'
 import type { Terminal } from './terminal.ts'
 import { checkOutput, writeFile } from './write-file.ts'
 
@@ -87,22 +85,6 @@ function detectionsOf(args: Arguments): number {
       what: 'a whole number from 1, or all',
     }) ?? 1
   )
-}
-
-/** Starts the threads that were asked for. */
-export function simulatorOf(args: Arguments, { entryUrl }: Io): Simulator {
-  const threads = args.number('threads', {
-    least: 1,
-    most: 256,
-    whole: true,
-    what: 'a whole number from 1 to 256',
-  })
-  const installation = findInstallation(entryUrl)
-  return startSimulator({
-    kernel: installation.kernel,
-    threadScript: installation.thread('simulate-worker'),
-    threads,
-  })
 }
 
 /** What JSON says of a netlist under its patterns. */

@@ -1,3 +1,4 @@
+import { AppError } from '../contract/errors.ts'
 import type { NetlistAccount } from '../contract/shapes/netlist.ts'
 import type { DiagnosticView } from '../contract/shapes/diagnostic.ts'
 import type { Netlist } from '../engine/circuit/netlist.ts'
@@ -5,7 +6,9 @@ import { buildFaultList } from '../engine/faults/build-fault-list.ts'
 import type { Source } from '../engine/source/source.ts'
 import { DeskAnswer } from './desk-answer.ts'
 import type { DeskContext } from './desk-context.ts'
+import { deskPool } from './desk-pool.ts'
 import { diagnosticViews } from './diagnostic-views.ts'
+import { estimateUnusableCosts } from './estimate-unusable-costs.ts'
 import { readNetlistInput, type NetlistInput } from './load-netlist.ts'
 
 export type ReadNetlistJob = {
@@ -27,16 +30,28 @@ export async function readNetlistJob(
     return !context.isCancelled()
   })
   context.report({ phase: 'Listing faults', share: null })
-  const account = reading.value === null ? null : accountOf(reading.value, input, sources)
+  const account = reading.value === null ? null : await accountOf(reading.value, input, sources, context)
   return new DeskAnswer({
     account,
     diagnostics: diagnosticViews(reading.diagnostics, [...sources, ...libraries]),
   })
 }
 
-function accountOf(netlist: Netlist, input: NetlistInput, sources: readonly Source[]): NetlistAccount {
+async function accountOf(
+  netlist: Netlist,
+  input: NetlistInput,
+  sources: readonly Source[],
+  context: DeskContext<never>,
+): Promise<NetlistAccount> {
   const { circuit, report, chains } = netlist
-  const { base, nFaults, nClasses, lines } = buildFaultList(circuit)
+  const faults = buildFaultList(circuit)
+  const { base, nFaults, nClasses, lines } = faults
+  const costs = await estimateUnusableCosts({ netlist, faults }, async (task) => {
+    context.report({ phase: 'Estimating what sources of X cost', share: null })
+    const outcome = await (await deskPool(context.threads)).run(task, { signal: context.signal })
+    if (outcome.state === 'cancelled') throw new AppError('cancelled')
+    return outcome.result
+  })
   return {
     format: report.format,
     top: report.top,
@@ -59,6 +74,7 @@ function accountOf(netlist: Netlist, input: NetlistInput, sources: readonly Sour
     cellsUsed: [...report.cellsUsed],
     cellsUnknown: [...report.cellsUnknown],
     unusable: report.unusable.map(({ kind, count, examples }) => ({ kind, count, examples: [...examples] })),
+    unusableCosts: costs === null ? null : { ...costs, kinds: [...costs.kinds] },
     testPins: [...report.testPins],
     assumeScanned: input.assumeScanned,
   }

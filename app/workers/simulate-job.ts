@@ -1,15 +1,13 @@
-import { readFile } from 'node:fs/promises'
-import { pathToFileURL } from 'node:url'
 import { AppError } from '../contract/errors.ts'
 import type { Run } from '../contract/shapes/run.ts'
 import { PATTERNS_PER_BLOCK } from '../engine/simulate/pattern-set.ts'
 import { DeskAnswer } from './desk-answer.ts'
-import type { DeskContext, DeskThreads } from './desk-context.ts'
+import type { DeskContext } from './desk-context.ts'
+import { deskPool } from './desk-pool.ts'
 import { loadNetlist, type NetlistInput } from './load-netlist.ts'
 import { slicePatterns, unpackPatterns } from './packed-patterns.ts'
 import { runFigures } from './run-figures.ts'
 import { packSegment, ProfileSum, unpackSegment } from './run-segment.ts'
-import { createSimulationPool, type SimulationPool } from './simulation-pool.ts'
 
 export type SimulateJob = {
   readonly input: {
@@ -61,7 +59,7 @@ export async function simulateJob(
     sum.add(segment)
     done = segment.first + segment.count
   }
-  const pool = await poolOf(context.threads)
+  const pool = await deskPool(context.threads)
   let blocks = 1
   for (let segment = input.segments.length; done < nPatterns; segment++) {
     const first = done
@@ -104,17 +102,4 @@ export async function simulateJob(
 
 function classesLeft(nClasses: number, sum: ProfileSum): Uint32Array {
   return Uint32Array.from({ length: nClasses }, (_, group) => group).filter((group) => !sum.isDone(group))
-}
-
-let pool: Promise<SimulationPool> | null = null
-
-function poolOf({ kernel, simulateScript, count }: DeskThreads): Promise<SimulationPool> {
-  pool ??= readFile(kernel).then((bytes) =>
-    createSimulationPool({
-      threads: count,
-      wasmBytes: new Uint8Array(bytes),
-      workerUrl: pathToFileURL(simulateScript),
-    }),
-  )
-  return pool
 }

@@ -35,6 +35,19 @@ describe('circuit', () => {
     expect((await runJson(['circuit', packed]))['faults']).toMatchObject(faults)
   })
 
+  // Nothing stands in the way of any fault of an AND and an inverter once the box in front of them is known.
+  it('says what each kind of source of X costs in coverage', async () => {
+    const text =
+      'module m(input a, b, output y, z); BOX u (.I(b), .O(x)); and (y, a, x); not (z, a); endmodule'
+    const json = await runJson(['circuit', file('box.v', text)])
+    const { unknownSources, unknownSourcesCost } = json['circuit'] as Record<string, unknown>
+    const { coverage, together } = unknownSourcesCost as { coverage: number; together: number }
+    expect(unknownSources).toEqual([{ kind: 'black box', count: 1, examples: ['u'], coverageCost: together }])
+    expect(coverage + together).toBeCloseTo(1)
+    const { stdout } = await runCli(['circuit', file('box2.v', text)])
+    expect(stdout).toMatch(/Source of X +1 × black box: u, costs about 50\.00 % of coverage/)
+  })
+
   it('takes further Verilog files as parts of one netlist, and the top by name', async () => {
     const [leaf = '', top = ''] = TWO_BLOCKS.split(/(?=module top)/)
     const paths = [file('top.v', top), file('leaf.v', leaf)]

@@ -49,6 +49,20 @@ describe('netlists', () => {
     expect(faults).toEqual([])
   })
 
+  test('what a source of X costs in coverage is estimated, and added up', async () => {
+    const { call, addText } = testApplication()
+    await call('projects.create', { name: 'P' })
+    const text =
+      'module m(input a, b, output y, z); BOX u (.I(b), .O(x)); and (y, a, x); not (z, a); endmodule'
+    const { account } = await call('netlists.inspect', { fileIds: [await addText('m.v', text)] })
+    const costs = account?.unusableCosts
+    expect(account?.unusable).toMatchObject([{ kind: 'black box', count: 1 }])
+    expect(costs?.kinds).toEqual([{ kind: 'black box', coverage: costs?.together }])
+    expect(costs?.together).toBeGreaterThan(0)
+    // Nothing stands in the way of any fault of an AND and an inverter once the box is known.
+    expect((costs?.coverage ?? 0) + (costs?.together ?? 0)).toBeCloseTo(1)
+  })
+
   test('names are taken once in a product', async () => {
     const application = testApplication()
     const { productId } = await adderProject(application)

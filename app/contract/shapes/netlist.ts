@@ -30,6 +30,21 @@ export const netlistAccountShape = z.object({
   cellsUsed: z.array(z.object({ cell: z.string(), count })),
   cellsUnknown: z.array(z.object({ cell: z.string(), count })),
   unusable: z.array(z.object({ kind: z.string(), count, examples: z.array(z.string()) })),
+  /**
+   * What sources of X cost in coverage, estimated with random patterns: by kind alone, and together. Null where there are
+   * none or the netlist is too large; absent in accounts of older versions.
+   */
+  unusableCosts: z
+    .object({
+      nPatterns: count,
+      seed: count,
+      faults: count,
+      coverage: z.number(),
+      kinds: z.array(z.object({ kind: z.string(), coverage: z.number() })),
+      together: z.number(),
+    })
+    .nullable()
+    .optional(),
   testPins: z.array(testPinShape),
   assumeScanned: z.boolean(),
 })

@@ -65,7 +65,7 @@ export type LineKind = (typeof LineKind)[keyof typeof LineKind]
 export type LineTable = {
   readonly n: number
   readonly kind: Uint8Array
-  /** The net whose value the line carries. */
+  /** The net whose value the line carries; 0xffffffff for one that lies outside and that the circuit lacks. */
   readonly net: Uint32Array
   /** GateInput: the net that the sink gate drives. FlipFlopData: the flip-flop's output net. Else −1. */
   readonly sink: Int32Array

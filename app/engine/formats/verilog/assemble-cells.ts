@@ -272,7 +272,7 @@ export class CellAssembler {
     for (let at = 0; at < n; at++) {
       const graphNet = this.pinNet.data[at]
       const graphSink = this.pinSink.data[at]
-      net[at] = Math.max(0, netOf[graphNet])
+      net[at] = netOf[graphNet]
       const isDead = this.pinKind.data[at] === LineKind.Stem && graph.kind.data[graphNet] === GateKind.Unknown
       kind[at] = isDead || netOf[graphNet] < 0 ? LineKind.Outside : this.pinKind.data[at]
       if (graphSink < 0 || kind[at] === LineKind.Outside) continue

@@ -1,5 +1,5 @@
 import type { CellFunction, CellState } from '../../circuit/cell-library.ts'
-import { evaluateFunction, shiftInversion } from '../../circuit/cell-function.ts'
+import { evaluateFunction, shiftInversion, visitVariables } from '../../circuit/cell-function.ts'
 import { buildCellTemplate, placeTemplate } from '../../circuit/cell-template.ts'
 import { GateKind, LineKind } from '../../circuit/circuit.ts'
 import type { FlipFlopClock, ScanChain, TestPin } from '../../circuit/netlist.ts'
@@ -213,9 +213,14 @@ class ScanAssembler {
     const kind = plan.cell.kind === 'latch' ? 'latch' : 'unscanned flip-flop'
     const source = unusable.add(kind, flat.cellText(row))
     source.sources.push(...states)
-    plan.cell.pins.forEach((pin, k) => {
-      if (pin.direction === 'input') source.unobserved.push(pins[k])
-    })
+    // What it stores is lost here; clock, clear and preset would not be observed if it were scanned either.
+    const { scan } = plan.cell
+    const onScanPath = new Set(scan === null ? [] : [scan.scanIn, scan.scanEnable])
+    for (const state of plan.cell.states) {
+      visitVariables(state.next, (index) => {
+        if (index < pins.length && !onScanPath.has(index)) source.unobserved.push(pins[index])
+      })
+    }
   }
 
   /** Gives the states of a scanned flip-flop their drivers, and its pins their places. */
