@@ -1,10 +1,9 @@
 import type { OutputOf } from '../contract/operations.ts'
 import { lostBlocks } from '../engine/choose/lost-blocks.ts'
-import { type ExportSelection, exportWarnings } from '../engine/formats/export-selection.ts'
-import { simulateGood } from '../engine/simulate/good-machine.ts'
-import { REPORT_MEDIA_TYPES, reportOfPlan } from '../report/report-of-plan.ts'
+import { REPORT_MEDIA_TYPES, type ReportFormat, reportOfPlan } from '../report/report-of-plan.ts'
 import { DeskAnswer } from './desk-answer.ts'
 import type { DeskContext } from './desk-context.ts'
+import { type PatternFileFormat, patternParts } from './pattern-parts.ts'
 import type { ExportFormat, PlanJobs } from './plan-jobs.ts'
 import { planAtCut } from './plan-of-run.ts'
 import { basisOf, heldDossier, orderOf, type RunDossier } from './run-dossier.ts'
@@ -21,6 +20,12 @@ const EXTENSIONS: Readonly<Record<ExportFormat, string>> = {
   stil: 'stil',
 }
 
+type MadeFile = {
+  readonly bytes: Uint8Array<ArrayBuffer>
+  readonly mediaType: string
+  readonly warnings: string[]
+}
+
 /** Makes a report of a cut, or a pattern file with the patterns that it runs. */
 export async function exportJob(
   input: Input,
@@ -29,17 +34,17 @@ export async function exportJob(
   const { format, subject } = input
   const dossier = heldDossier(input.key)
   context.report({ phase: 'Writing', share: null })
-  const made =
-    format === 'vectors' || format === 'patterns-csv' || format === 'stil'
-      ? await patternFile(dossier, input, format)
-      : {
-          bytes: await reportOfPlan(planOf(dossier, input), sourceOf(dossier, input), format),
-          mediaType: REPORT_MEDIA_TYPES[format],
-          warnings: [],
-        }
+  const made = await (format === 'html' || format === 'pdf' || format === 'xlsx' || format === 'csv'
+    ? reportFile(dossier, input, format)
+    : patternFile(dossier, input, format === 'patterns-csv' ? 'csv' : format))
   const stem = `${subject.product} ${subject.patternSet} ${input.cut} patterns`
   const fileName = `${stem.replace(/[^\p{L}\p{N} ._-]+/gu, ' ').replace(/\s+/g, ' ')}.${EXTENSIONS[format]}`
   return new DeskAnswer({ fileName, ...made }, [made.bytes.buffer])
+}
+
+async function reportFile(dossier: RunDossier, input: Input, format: ReportFormat): Promise<MadeFile> {
+  const bytes = await reportOfPlan(planOf(dossier, input), sourceOf(dossier, input), format)
+  return { bytes, mediaType: REPORT_MEDIA_TYPES[format], warnings: [] }
 }
 
 function planOf(dossier: RunDossier, input: Input): Parameters<typeof reportOfPlan>[0] {
@@ -79,31 +84,14 @@ function sourceOf({ netlist }: RunDossier, input: Input): Parameters<typeof repo
   }
 }
 
-async function patternFile(
-  dossier: RunDossier,
-  input: Input,
-  format: 'vectors' | 'patterns-csv' | 'stil',
-): Promise<{ bytes: Uint8Array<ArrayBuffer>; mediaType: string; warnings: string[] }> {
+async function patternFile(dossier: RunDossier, input: Input, format: PatternFileFormat): Promise<MadeFile> {
   const { netlist, patterns } = dossier
-  const { circuit } = netlist
-  const order = orderOf(dossier, input.order, input)
-  const response = patterns.expected === null ? simulateGood(circuit, patterns) : null
-  const sequence = order.sequence.subarray(0, input.cut)
-  const selection: ExportSelection = { patterns, circuit, sequence, response }
-  const parts =
-    format === 'stil'
-      ? (await import('../engine/formats/stil/write-stil.ts')).stilParts(patterns, netlist, sequence, {
-          title: `${input.subject.product}, ${input.subject.patternSet}`,
-          response,
-        })
-      : format === 'vectors'
-        ? (await import('../engine/formats/vectors/write-vectors.ts')).vectorsParts(selection)
-        : (await import('../engine/formats/csv/write-pattern-csv.ts')).patternCsvParts(selection)
-  return {
-    bytes: joined(parts),
-    mediaType: format === 'patterns-csv' ? 'text/csv; charset=utf-8' : 'text/plain; charset=utf-8',
-    warnings: exportWarnings(selection),
-  }
+  const { product, patternSet } = input.subject
+  const sequence = orderOf(dossier, input.order, input).sequence.subarray(0, input.cut)
+  const title = `${product}, ${patternSet}`
+  const { parts, warnings } = await patternParts(netlist, patterns, sequence, format, title)
+  const mediaType = format === 'csv' ? 'text/csv; charset=utf-8' : 'text/plain; charset=utf-8'
+  return { bytes: joined(parts), mediaType, warnings: [...warnings] }
 }
 
 /** Returns texts as one run of bytes, without ever holding them as one string. */

@@ -1,7 +1,7 @@
-import type { Netlist } from '../../engine/circuit/netlist.ts'
-import { exportWarnings, type ExportSelection } from '../../engine/formats/export-selection.ts'
-import { simulateGood } from '../../engine/simulate/good-machine.ts'
-import type { PatternSet } from '../../engine/simulate/pattern-set.ts'
+import type { Netlist } from '../engine/circuit/netlist.ts'
+import { exportWarnings, type ExportSelection } from '../engine/formats/export-selection.ts'
+import { simulateGood } from '../engine/simulate/good-machine.ts'
+import type { PatternSet } from '../engine/simulate/pattern-set.ts'
 
 export const PATTERN_EXTENSIONS = { vec: 'vectors', txt: 'vectors', csv: 'csv', stil: 'stil' } as const
 
@@ -21,15 +21,15 @@ export async function patternParts(
   const warnings = exportWarnings(selection)
   switch (format) {
     case 'stil': {
-      const { stilParts } = await import('../../engine/formats/stil/write-stil.ts')
+      const { stilParts } = await import('../engine/formats/stil/write-stil.ts')
       return { parts: stilParts(patterns, netlist, sequence, { title, response }), warnings }
     }
     case 'vectors': {
-      const { vectorsParts } = await import('../../engine/formats/vectors/write-vectors.ts')
+      const { vectorsParts } = await import('../engine/formats/vectors/write-vectors.ts')
       return { parts: vectorsParts(selection), warnings }
     }
     case 'csv': {
-      const { patternCsvParts } = await import('../../engine/formats/csv/write-pattern-csv.ts')
+      const { patternCsvParts } = await import('../engine/formats/csv/write-pattern-csv.ts')
       return { parts: patternCsvParts(selection), warnings }
     }
   }
