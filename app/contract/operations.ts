@@ -5,7 +5,10 @@ import {
   budgetShape,
   budgetViewShape,
   ceilingShape,
+  constraintCostsShape,
+  improvedChoiceShape,
   orderNameShape,
+  smallestShape,
 } from './shapes/budget.ts'
 import { bytesColumn } from './shapes/columns.ts'
 import { idShape, nameShape, noteShape } from './shapes/ids.ts'
@@ -163,6 +166,36 @@ export const operations = {
   ),
   /** Proves a ceiling for every number of patterns; a task with progress that can be cancelled, its result is kept. */
   'budgets.ceiling': command(z.object({ runId: idShape, assumptions: assumptionsShape }), ceilingShape),
+  /** Looks (longer) for the smallest complete set, which views show from then on; a task that can be cancelled. */
+  'budgets.smallest': command(
+    z.object({
+      runId: idShape,
+      assumptions: assumptionsShape,
+      seconds: z.number().min(1).max(3600).default(30),
+    }),
+    smallestShape,
+  ),
+  /** Improves the choice at a cut within its patterns or its tester cycles; a task that can be cancelled. */
+  'budgets.improve': command(
+    z.object({
+      runId: idShape,
+      order: orderNameShape,
+      cut: z.number().int().positive(),
+      assumptions: assumptionsShape,
+      within: z.enum(['patterns', 'cycles']).default('patterns'),
+      seconds: z.number().min(1).max(3600).default(20),
+    }),
+    improvedChoiceShape,
+  ),
+  'budgets.constraintCosts': query(
+    z.object({
+      runId: idShape,
+      order: orderNameShape,
+      cut: z.number().int().nonnegative(),
+      assumptions: assumptionsShape,
+    }),
+    constraintCostsShape,
+  ),
   'budgets.save': command(
     z.object({
       productId: idShape,

@@ -1,7 +1,9 @@
 import { randomUUID } from 'node:crypto'
 import { AppError } from '../contract/errors.ts'
+import { numberFormats } from '../contract/format-number.ts'
 import type { Handlers } from '../contract/handlers.ts'
-import type { OrderName } from '../contract/shapes/budget.ts'
+import { counted } from '../contract/plan-words.ts'
+import type { OrderName, Smallest as SmallestFound } from '../contract/shapes/budget.ts'
 import type { PlanJobs } from '../workers/plan-jobs.ts'
 import type { EventHub } from './event-hub.ts'
 import { inputFiles } from './stored-inputs.ts'
@@ -14,6 +16,11 @@ type Ceiling = PlanJobs['prove-ceiling']['output']
 
 /** Answers of long work that are kept at hand. */
 const KEPT = 16
+/** How long the smallest complete set is looked for where nobody says for how long. */
+const SEARCH_SECONDS = 30
+
+const formats = numberFormats('en')
+const countOf = (count: number, noun: string): string => counted(count, noun, formats)
 
 /**
  * Plans of finished runs. Views and exports are worked out at one desk, which answers in no time once it has the run;
@@ -31,6 +38,9 @@ export function createBudgets(options: {
   Handlers,
   | 'budgets.view'
   | 'budgets.ceiling'
+  | 'budgets.smallest'
+  | 'budgets.improve'
+  | 'budgets.constraintCosts'
   | 'budgets.save'
   | 'budgets.update'
   | 'budgets.delete'
@@ -41,12 +51,19 @@ export function createBudgets(options: {
   const { session, events, tasks, planner, prover, version, now } = options
   const smallestSets = new Map<string, Promise<Smallest>>()
   const ceilings = new Map<string, Promise<Ceiling>>()
+  /** The prover has the choices at hand that these constraints are priced by: another cut takes it no time. */
+  let pricedConstraints: string | null = null
   const changed = (productId: number): void => events.emit('changed', { noun: 'budget', productId })
+
+  /** Names what long work depends on. */
+  const choiceKey = ({ run, assumptions }: PlanGround): string => {
+    const { constraints, weights, n } = assumptions
+    return JSON.stringify([runKey(session.store(), run), constraints, weights, n])
+  }
 
   /** Does long work once for each choice that it depends on; what failed or was cancelled is forgotten. */
   const once = <T>(kept: Map<string, Promise<T>>, ground: PlanGround, work: () => Promise<T>): Promise<T> => {
-    const { constraints, weights, n } = ground.assumptions
-    const key = JSON.stringify([runKey(session.store(), ground.run), constraints, weights, n])
+    const key = choiceKey(ground)
     const known = kept.get(key)
     if (known !== undefined) return known
     const outcome = work()
@@ -56,27 +73,27 @@ export function createBudgets(options: {
     return outcome
   }
 
+  const findSmallest = (ground: PlanGround, seconds: number): Promise<Smallest> =>
+    tasks.run(
+      {
+        kind: 'smallest',
+        title: `Smallest complete set of run ${ground.run.number}`,
+        runId: ground.run.id,
+      },
+      ({ signal, report }) =>
+        prover.ask('find-smallest', ground, { smallest: null, seconds }, { signal, onProgress: report }),
+      ({ patterns, lowerBound, proven }) =>
+        proven
+          ? `${countOf(patterns.length, 'pattern')}, proven`
+          : `${countOf(patterns.length, 'pattern')}; no set has fewer than ${formats.count(lowerBound).value}`,
+    )
+
   const smallestFor = async (
     orders: readonly OrderName[],
     ground: PlanGround,
   ): Promise<Uint32Array | null> => {
     if (!orders.includes('smallest')) return null
-    const found = await once(smallestSets, ground, () =>
-      tasks.run(
-        {
-          kind: 'smallest',
-          title: `Smallest complete set of run ${ground.run.number}`,
-          runId: ground.run.id,
-        },
-        ({ signal, report }) =>
-          prover.ask('find-smallest', ground, { smallest: null }, { signal, onProgress: report }),
-        ({ patterns, lowerBound, proven }) =>
-          proven
-            ? `${patterns.length} patterns, proven`
-            : `${patterns.length} patterns; no set has fewer than ${lowerBound}`,
-      ),
-    )
-    return found.patterns
+    return (await once(smallestSets, ground, () => findSmallest(ground, SEARCH_SECONDS))).patterns
   }
 
   return {
@@ -86,7 +103,11 @@ export function createBudgets(options: {
       try {
         const smallest = await smallestFor(orders, ground)
         const view = await planner.ask('view', ground, { orders, smallest })
-        return { view: { runId, ...view }, fieldErrors: [] }
+        const found = smallest === null ? null : await smallestSets.get(choiceKey(ground))
+        return {
+          view: { runId, ...view, smallest: found ? smallestKnown(found) : null },
+          fieldErrors: [],
+        }
       } catch (error) {
         const field = fieldOf(error)
         if (field === null) throw error
@@ -103,6 +124,53 @@ export function createBudgets(options: {
           ({ note }) => note,
         ),
       )
+    },
+    'budgets.smallest': async ({ runId, assumptions, seconds }) => {
+      const ground = sound(planGround(session.store(), runId, assumptions))
+      const key = choiceKey(ground)
+      const known = await smallestSets.get(key)?.catch(() => undefined)
+      const found = await findSmallest(ground, seconds)
+      const better = known === undefined ? found : betterOf(known, found)
+      smallestSets.set(key, Promise.resolve(better))
+      return smallestKnown(better)
+    },
+    'budgets.improve': async ({ runId, order, cut, assumptions, within, seconds }) => {
+      const ground = sound(planGround(session.store(), runId, assumptions))
+      const smallest = await smallestFor([order], ground)
+      const proven = await ceilings.get(choiceKey(ground))?.catch(() => null)
+      const bound = proven?.ceiling[cut] ?? null
+      return tasks.run(
+        {
+          kind: 'improve',
+          title: `Better choice of ${countOf(cut, 'pattern')} for run ${ground.run.number}`,
+          runId,
+        },
+        ({ signal, report }) =>
+          prover.ask(
+            'improve-choice',
+            ground,
+            { order, cut, smallest, within, seconds, bound },
+            { signal, onProgress: report },
+          ),
+        ({ detected, steepest }) =>
+          detected > steepest
+            ? `${formats.count(detected - steepest).value} more detected than steepest first`
+            : 'nothing better than steepest first was found',
+      )
+    },
+    'budgets.constraintCosts': async ({ runId, order, cut, assumptions }) => {
+      const ground = sound(planGround(session.store(), runId, assumptions))
+      const smallest = await smallestFor([order], ground)
+      const key = choiceKey(ground)
+      const input = { order, cut, smallest }
+      if (pricedConstraints === key) return prover.ask('price-constraints', ground, input)
+      const costs = await tasks.run(
+        { kind: 'order', title: `Cost of constraints in run ${ground.run.number}`, runId },
+        ({ signal, report }) =>
+          prover.ask('price-constraints', ground, input, { signal, onProgress: report }),
+      )
+      pricedConstraints = key
+      return costs
     },
     'budgets.save': async ({ productId, runId, name, note, order, cut, assumptions }) => {
       const store = session.writable()
@@ -182,6 +250,17 @@ export function createBudgets(options: {
       )
     },
   }
+}
+
+function smallestKnown({ patterns, lowerBound, proven }: Smallest): SmallestFound {
+  return { patterns: patterns.length, lowerBound, proven }
+}
+
+/** Two searches of the same choice together: the smaller set, the higher bound. */
+function betterOf(a: Smallest, b: Smallest): Smallest {
+  const { patterns } = a.patterns.length < b.patterns.length ? a : b
+  const lowerBound = Math.max(a.lowerBound, b.lowerBound)
+  return { patterns, lowerBound, proven: lowerBound === patterns.length }
 }
 
 /** Throws AppError 'bad-input' where something of the ground does not fit. */

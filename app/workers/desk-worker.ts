@@ -26,6 +26,8 @@ const WORK: Work = {
   'lost-faults': async () => (await import('./lost-faults-job.ts')).lostFaultsJob,
   'make-export': async () => (await import('./export-job.ts')).exportJob,
   'prove-ceiling': async () => (await import('./ceiling-job.ts')).ceilingJob,
+  'price-constraints': async () => (await import('./constraint-costs-job.ts')).constraintCostsJob,
+  'improve-choice': async () => (await import('./improve-job.ts')).improveJob,
   'find-smallest': async () => (await import('./smallest-job.ts')).smallestJob,
 }
 

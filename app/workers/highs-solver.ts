@@ -1,3 +1,5 @@
+import { dirname, extname, join } from 'node:path'
+import { pathToFileURL } from 'node:url'
 import { MessageChannel, receiveMessageOnPort, Worker } from 'node:worker_threads'
 import type { MipModel, MipResult, MipSolver } from '../engine/choose/mip.ts'
 import { type SolveAnswer, SolveBest, SolveControl, type SolveRequest } from './highs-protocol.ts'
@@ -38,6 +40,11 @@ export function createHighsSolver(script: URL = new URL('./highs-worker.ts', imp
     if (answer?.kind === 'done') return answer.result
     throw new Error(`the solver failed: ${answer?.message ?? 'it gave no answer'}`)
   }
+}
+
+/** Returns the solver whose thread's script lies beside another thread's, in sources and bundles alike. */
+export function highsBeside(script: string): MipSolver {
+  return createHighsSolver(pathToFileURL(join(dirname(script), `highs-worker${extname(script)}`)))
 }
 
 function bestSoFar({ goal }: MipModel, best: Float64Array): MipResult {

@@ -1,5 +1,5 @@
 import type { Assumptions, BudgetView, OrderName } from '../contract/shapes/budget.ts'
-import type { Budget } from '../contract/shapes/budget.ts'
+import type { Budget, ConstraintCosts, ImprovedChoice } from '../contract/shapes/budget.ts'
 import type { MoneyView } from '../contract/shapes/money.ts'
 import type { OutputOf } from '../contract/operations.ts'
 import type { ReportSubject } from './export-subject.ts'
@@ -31,7 +31,7 @@ export type PlanJobs = {
   readonly 'hold-run': { readonly input: HoldRunInput; readonly output: null; readonly part: never }
   readonly view: {
     readonly input: PlanRequest & { readonly orders: readonly OrderName[] }
-    readonly output: Omit<BudgetView, 'runId'>
+    readonly output: Omit<BudgetView, 'runId' | 'smallest'>
     readonly part: never
   }
   readonly figures: {
@@ -59,8 +59,23 @@ export type PlanJobs = {
     readonly output: { readonly ceiling: Float64Array<ArrayBuffer>; readonly note: string }
     readonly part: never
   }
+  readonly 'price-constraints': {
+    readonly input: CutOfPlan
+    readonly output: ConstraintCosts
+    readonly part: never
+  }
+  readonly 'improve-choice': {
+    readonly input: CutOfPlan & {
+      readonly within: 'patterns' | 'cycles'
+      readonly seconds: number
+      /** The ceiling at the cut where it is proven already; of a choice of so many patterns. */
+      readonly bound: number | null
+    }
+    readonly output: ImprovedChoice
+    readonly part: never
+  }
   readonly 'find-smallest': {
-    readonly input: PlanRequest
+    readonly input: PlanRequest & { readonly seconds: number }
     readonly output: {
       readonly patterns: Uint32Array<ArrayBuffer>
       readonly lowerBound: number

@@ -1,14 +1,9 @@
 import { AppError } from '../contract/errors.ts'
 import type { Assumptions } from '../contract/shapes/budget.ts'
-import {
-  type ChoiceBasis,
-  choiceBasis,
-  orderByHand,
-  orderOfChoice,
-  scanFactsOf,
-} from '../engine/choose/choice-basis.ts'
+import { type ChoiceBasis, choiceBasis, orderOfChoice, scanFactsOf } from '../engine/choose/choice-basis.ts'
+import { CONSTRAINT_KINDS } from '../engine/choose/constraints.ts'
 import { curveOf } from '../engine/choose/coverage-curve.ts'
-import { deliveredOrder } from '../engine/choose/delivered-order.ts'
+import { deliveredOrder, handOrder } from '../engine/choose/delivered-order.ts'
 import type { Order, OrderName } from '../engine/choose/order.ts'
 import { steepestFirst } from '../engine/choose/steepest-first.ts'
 import type { Product } from '../engine/quality/product.ts'
@@ -69,7 +64,7 @@ export function basisOf(dossier: RunDossier, { tester, product, assumptions }: C
   const constraints: Source | null =
     assumptions.constraints === null
       ? null
-      : { name: 'constraints', text: JSON.stringify(assumptions.constraints) }
+      : { name: 'constraints', text: linePerKind(assumptions.constraints) }
   const weights: Source | null =
     assumptions.weights === null ? null : { name: 'weights', text: assumptions.weights }
   const { value, diagnostics } = choiceBasis({
@@ -88,8 +83,9 @@ export function basisOf(dossier: RunDossier, { tester, product, assumptions }: C
     )
     const where = first?.file === 'weights' ? `Line ${first.line}: ` : ''
     const hint = first?.hint ? ` ${first.hint}.` : ''
+    const kind = CONSTRAINT_KINDS[(first?.line ?? 0) - 2]
     throw new AppError('bad-input', `${where}${first?.message ?? 'This can not be used'}.${hint}`, {
-      field: first?.file ?? 'constraints',
+      field: first?.file === 'constraints' && kind !== undefined ? `constraints.${kind}` : first?.file,
     })
   }
   remember(dossier.bases, key, value)
@@ -139,7 +135,7 @@ function chooseOrder(basis: ChoiceBasis, name: OrderName, { assumptions, smalles
         throw new AppError('bad-input', 'The smallest complete set was not worked out yet.')
       return orderOfChoice(basis, smallest)
     case 'by-hand':
-      return orderByHand(task, patternsByHand(assumptions.byHand, task.matrix.nPatterns))
+      return handOrder(task.rules, patternsByHand(assumptions.byHand, task.matrix.nPatterns))
   }
 }
 
@@ -156,7 +152,17 @@ function patternsByHand(byHand: readonly number[] | null, nPatterns: number): Ui
   return Uint32Array.from(byHand, (pattern) => pattern - 1)
 }
 
-function basisKey({ constraints, weights, n }: ChoiceInput['assumptions'], costs: Float64Array): string {
+/** Each kind stands on a line of its own, from the second on: so a diagnostic's line tells the kind. */
+function linePerKind(constraints: NonNullable<Assumptions['constraints']>): string {
+  const lines = CONSTRAINT_KINDS.map((kind) => `"${kind}":${JSON.stringify(constraints[kind])}`)
+  return `{\n${lines.join(',\n')}\n}`
+}
+
+/** Names what a choice depends on, within one run. */
+export function basisKey(
+  { constraints, weights, n }: ChoiceInput['assumptions'],
+  costs: Float64Array,
+): string {
   const even = costs.every((cost) => cost === costs[0])
   return JSON.stringify([constraints, weights, n, even ? 'even' : hashOf(costs)])
 }

@@ -1,6 +1,7 @@
 import type { Budget, BudgetView, Marker, OrderColumns, OrderName } from '../contract/shapes/budget.ts'
 import { chooseCut, type Goal, type Limit } from '../engine/choose/budget.ts'
 import type { ChoiceBasis } from '../engine/choose/choice-basis.ts'
+import type { ChoiceRules } from '../engine/choose/choice-rules.ts'
 import { cutPlaces } from '../engine/choose/cut-places.ts'
 import { kneeOf } from '../engine/choose/knee.ts'
 import type { CoverageCurve, Order } from '../engine/choose/order.ts'
@@ -18,6 +19,7 @@ type PricedView = {
   readonly order: Order
   readonly curve: CoverageCurve
   readonly detectedOnce: Float64Array
+  readonly plain: Float64Array
   readonly priced: PricedOrder
 }
 
@@ -34,11 +36,12 @@ export function viewJob({
   const pricing = planPricing(planBasisOf(dossier, request))
   const { tester } = pricing.pricing
   const views = orders.map((name) => ({ name, ...priceView(dossier, basis, name, request, pricing) }))
-  const columns = views.map((view) => columnsOf(view, dossier))
+  const columns = views.map((view) => columnsOf(view, dossier, basis.task.rules))
   const figures = runFigures(dossier.faults, dossier.profile)
-  const output: Omit<BudgetView, 'runId'> = {
+  const output: Omit<BudgetView, 'runId' | 'smallest'> = {
     total: basis.total,
     faults: figures.faults,
+    isWeighted: pricing.isWeighted,
     base: dossier.faults.base,
     untestable: pricing.counts.untestable,
     byChainTest: figures.byChainTest,
@@ -94,10 +97,14 @@ function priceView(
   const plainBasis = { ...basis, task: plainTask, total: counts.all }
   const plain = pricing.isWeighted ? detectedBy(dossier, plainBasis, order, 1) : detectedOnce
   const coverage = pricing.coverageOf(order, { detected: plain, total: counts.all })
-  return { order, curve, detectedOnce, priced: priceOrder(order.sequence, coverage, pricing.pricing) }
+  return { order, curve, detectedOnce, plain, priced: priceOrder(order.sequence, coverage, pricing.pricing) }
 }
 
-function columnsOf({ order, curve, detectedOnce, priced }: PricedView, dossier: RunDossier): OrderColumns {
+function columnsOf(
+  { order, curve, detectedOnce, plain, priced }: PricedView,
+  dossier: RunDossier,
+  rules: ChoiceRules,
+): OrderColumns {
   const nPatterns = order.sequence.length
   const unknown = (): Float64Array => new Float64Array(nPatterns + 1).fill(NaN)
   const alone = detectedAlone(dossier)
@@ -105,10 +112,12 @@ function columnsOf({ order, curve, detectedOnce, priced }: PricedView, dossier: 
     order: order.name,
     patterns: nPatterns,
     chosen: order.chosen,
+    mayCut: cutPlaces(order, rules),
     pattern: order.sequence.map((pattern) => pattern + 1),
     detectsAlone: order.sequence.map((pattern) => alone[pattern] ?? 0),
     detected: detectedOnce.slice(),
     detectedN: curve.detected.slice(),
+    detectedPlain: plain.slice(),
     cycles: priced.cycles,
     milliseconds: priced.milliseconds,
     perDeviceMilliseconds: priced.perDeviceMilliseconds,

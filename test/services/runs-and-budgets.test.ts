@@ -108,7 +108,7 @@ describe('budgets', () => {
       [{ testerValues: { sites: 0 } }, 'sites'],
       [{ productValues: { yield: 0 } }, 'yield'],
       [{ weights: 'no weights here' }, 'weights'],
-      [{ constraints: { keep: [1], leaveOut: [1] } }, 'constraints'],
+      [{ constraints: { keep: [1], leaveOut: [1] } }, 'constraints.keep'],
     ] as const) {
       expect(await view(assumptions)).toMatchObject({ view: null, fieldErrors: [{ key }] })
     }

@@ -1,5 +1,5 @@
 import { z } from 'zod'
-import { float64Column, uint32Column } from './columns.ts'
+import { bytesColumn, float64Column, uint32Column } from './columns.ts'
 import { atMsShape, idShape, nameShape, noteShape } from './ids.ts'
 import { fieldValuesShape, limitsShape } from './model.ts'
 
@@ -7,14 +7,16 @@ const count = z.number().int().nonnegative()
 
 export const orderNameShape = z.enum(['as-delivered', 'steepest', 'smallest', 'by-hand'])
 
-/** Pattern numbers from 1, or ranges such as "10-20". */
-const patternListShape = z.array(z.union([z.number().int().positive(), z.string()]))
+/** A pattern's number from 1, or a range such as "10-20". */
+const patternsShape = z.union([z.number().int().positive(), z.string()])
+const patternListShape = z.array(patternsShape)
 
 export const constraintsShape = z.object({
   keep: patternListShape.default([]),
   leaveOut: patternListShape.default([]),
   together: z.array(patternListShape).default([]),
-  before: z.array(z.tuple([z.number().int().positive(), z.number().int().positive()])).default([]),
+  /** Pairs; a range stands for each of its patterns. */
+  before: z.array(z.tuple([patternsShape, patternsShape])).default([]),
   first: patternListShape.default([]),
 })
 
@@ -41,6 +43,8 @@ export const orderColumnsShape = z.object({
   patterns: count,
   /** How many patterns at the front were chosen for a gain. */
   chosen: count,
+  /** 1 where a cut respects every constraint: kept patterns run, groups are whole, nothing that is left out. */
+  mayCut: bytesColumn,
   /** Length patterns: the pattern number, from 1, at each position. */
   pattern: uint32Column,
   /** Length patterns: faults that this pattern alone detects in the whole set. */
@@ -49,6 +53,8 @@ export const orderColumnsShape = z.object({
   detected: float64Column,
   /** Faults detected n or more times; equal to `detected` where n is 1. */
   detectedN: float64Column,
+  /** Faults detected, each counted once whatever it weighs. */
+  detectedPlain: float64Column,
   cycles: float64Column,
   milliseconds: float64Column,
   perDeviceMilliseconds: float64Column,
@@ -71,11 +77,52 @@ export const markerShape = z.object({
   label: z.string(),
 })
 
+/** The fewest patterns found that detect all that the whole set does; no set has fewer than the bound. */
+export const smallestShape = z.object({ patterns: count, lowerBound: count, proven: z.boolean() })
+
+export const constraintKindShape = z.enum(['keep', 'leaveOut', 'together', 'before', 'first'])
+
+/** What each kind of constraint costs a choice of as many tester cycles as a cut takes. */
+export const constraintCostsShape = z.object({
+  /** What the best choice found detects with all of them. */
+  detected: z.number().nonnegative(),
+  rows: z.array(
+    z.object({
+      kind: constraintKindShape,
+      /** What a choice without this kind detects more; 0 where it costs nothing. */
+      cost: z.number().nonnegative(),
+      /** True where no choice fits the cut with this kind, and one does without it. */
+      isInTheWay: z.boolean(),
+    }),
+  ),
+})
+
+/** A choice that takes no more than a cut does. */
+export const improvedChoiceShape = z.object({
+  /** Pattern numbers from 1: the choice, steepest first, then what else detects something. */
+  order: z.array(z.number().int().positive()),
+  /** How many of them are the choice. */
+  cut: count,
+  detected: z.number().nonnegative(),
+  /** What the first patterns of the order detect that it was asked for. */
+  before: z.number().nonnegative(),
+  /** What choosing the steepest first detects within as much. */
+  steepest: z.number().nonnegative(),
+  /** No choice within as much detects more. */
+  bound: z.number().nonnegative(),
+  proven: z.boolean(),
+  seconds: z.number().nonnegative(),
+})
+
 export const budgetViewShape = z.object({
   runId: idShape,
   /** The weight of all faults of the base, by which coverage is divided. */
   total: z.number().nonnegative(),
   faults: count,
+  /** True where weights make the faults count differently: `detected` is a weight then, and so is `total`. */
+  isWeighted: z.boolean(),
+  /** What is known of the smallest complete set, where it is among the orders. */
+  smallest: smallestShape.nullable(),
   base: z.enum(['lines', 'cell pins']),
   untestable: count,
   byChainTest: count,
@@ -135,3 +182,7 @@ export type Marker = z.infer<typeof markerShape>
 export type BudgetView = z.infer<typeof budgetViewShape>
 export type Ceiling = z.infer<typeof ceilingShape>
 export type Budget = z.infer<typeof budgetShape>
+export type Smallest = z.infer<typeof smallestShape>
+export type ConstraintKind = z.infer<typeof constraintKindShape>
+export type ConstraintCosts = z.infer<typeof constraintCostsShape>
+export type ImprovedChoice = z.infer<typeof improvedChoiceShape>

@@ -95,11 +95,6 @@ export function orderOfChoice({ task, constraints }: ChoiceBasis, patterns: Arra
   return behindChosen(task, 'smallest', chosen)
 }
 
-/** Returns the order that runs these patterns as they stand, and everything else after them, in file order. */
-export function orderByHand(task: ChoiceTask, patterns: ArrayLike<number>): Order {
-  return behindChosen(task, 'by-hand', patterns)
-}
-
 function behindChosen({ rules }: ChoiceTask, name: Order['name'], chosen: ArrayLike<number>): Order {
   const { nPatterns, unitOf } = rules
   const sequence = new Uint32Array(nPatterns)

@@ -2,6 +2,7 @@ import { bestPrefixOrSingle } from './best-prefix-or-single.ts'
 import { compileRules } from './choice-rules.ts'
 import type { ChoiceProgress, ChoiceTask } from './choice-task.ts'
 import type { ConstraintKind, Constraints } from './constraints.ts'
+import type { Order } from './order.ts'
 import { steepestFirst } from './steepest-first.ts'
 
 /** Constraints that the user gave as one: entries `from` to `to` − 1 of the list of that kind. */
@@ -23,6 +24,15 @@ export type ConstraintCost = {
   readonly isInTheWay: boolean
 }
 
+/** A choice under all constraints or all but one part, with its steepest order, from which any budget can be read. */
+type Alternative = { readonly task: ChoiceTask; readonly order: Order }
+
+export type ConstraintAlternatives = {
+  readonly withAll: Alternative
+  /** Null where the rest would contradict itself without the part, as pairs in a circle do that were left out. */
+  readonly without: readonly { readonly part: ConstraintPart; readonly choice: Alternative | null }[]
+}
+
 /**
  * Returns what each part of the constraints costs at a budget, choosing anew without it, steepest first. Null when
  * `onProgress` ended it early.
@@ -34,25 +44,49 @@ export function constraintCosts(
   budget: number,
   onProgress: ChoiceProgress = () => true,
 ): ConstraintCost[] | null {
+  const alternatives = constraintAlternatives(task, constraints, parts, onProgress)
+  return alternatives === null ? null : costsOfParts(alternatives, budget).costs
+}
+
+/** Returns the choices that tell what each part costs, whatever the budget. Null when `onProgress` ended it early. */
+export function constraintAlternatives(
+  task: ChoiceTask,
+  constraints: Constraints,
+  parts: readonly ConstraintPart[],
+  onProgress: ChoiceProgress = () => true,
+): ConstraintAlternatives | null {
   const total = parts.length + 1
-  const weightFor = (turn: number, candidate: ChoiceTask): number | null | undefined => {
+  const choose = (turn: number, candidate: ChoiceTask): Alternative | null => {
     const order = steepestFirst(candidate, (done, all) => onProgress(turn + done / all, total))
-    return order === null ? undefined : (bestPrefixOrSingle(candidate, order, budget)?.weight ?? null)
+    return order === null ? null : { task: candidate, order }
   }
-  const withAll = weightFor(0, task)
-  if (withAll === undefined) return null
-  const costs: ConstraintCost[] = []
+  const withAll = choose(0, task)
+  if (withAll === null) return null
+  const without: { part: ConstraintPart; choice: Alternative | null }[] = []
   for (const [turn, part] of parts.entries()) {
     const { rules } = compileRules(constraintsWithout(constraints, part), task.matrix.nPatterns)
-    if (rules === null)
-      throw new Error('constraints that hold together also hold together without one of them')
-    const without = weightFor(turn + 1, { ...task, rules })
-    if (without === undefined) return null
-    const weightWithout = Math.max(without ?? 0, withAll ?? 0)
-    const isInTheWay = withAll === null && without !== null
-    costs.push({ part, weightWithout, cost: weightWithout - (withAll ?? 0), isInTheWay })
+    const choice = rules === null ? null : choose(turn + 1, { ...task, rules })
+    if (rules !== null && choice === null) return null
+    without.push({ part, choice })
   }
-  return costs
+  return { withAll, without }
+}
+
+/** Returns what each part costs at a budget, and what the best choice found detects with all of them (0: none fits). */
+export function costsOfParts(
+  { withAll, without }: ConstraintAlternatives,
+  budget: number,
+): { weight: number; costs: ConstraintCost[] } {
+  const weightOf = ({ task, order }: Alternative): number | null =>
+    bestPrefixOrSingle(task, order, budget)?.weight ?? null
+  const given = weightOf(withAll)
+  const costs = without.map(({ part, choice }): ConstraintCost => {
+    const other = choice === null ? null : weightOf(choice)
+    const weightWithout = Math.max(other ?? 0, given ?? 0)
+    const isInTheWay = given === null && other !== null
+    return { part, weightWithout, cost: weightWithout - (given ?? 0), isInTheWay }
+  })
+  return { weight: given ?? 0, costs }
 }
 
 /** Returns the constraints without one part. */

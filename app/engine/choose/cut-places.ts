@@ -5,7 +5,7 @@ import type { Order } from './order.ts'
  * Returns, for each k from 0 to nPatterns, 1 where the first k patterns of the order make a choice that the rules allow:
  * whole groups, all that is kept, nothing that is left out.
  */
-export function cutPlaces(order: Order, rules: ChoiceRules): Uint8Array {
+export function cutPlaces(order: Order, rules: ChoiceRules): Uint8Array<ArrayBuffer> {
   const { unitOf, unitStart, kept } = rules
   const places = new Uint8Array(rules.nPatterns + 1)
   let keptLeft = kept.reduce((sum, one) => sum + one, 0)
