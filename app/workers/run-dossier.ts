@@ -9,18 +9,21 @@ import { steepestFirst } from '../engine/choose/steepest-first.ts'
 import type { Product } from '../engine/quality/product.ts'
 import type { DetectionMatrix, DetectionProfile } from '../engine/simulate/detection-profile.ts'
 import type { PatternSet } from '../engine/simulate/pattern-set.ts'
-import { placeDiagnostics } from '../engine/source/caret-frame.ts'
+import { placeDiagnostics, type PlacedDiagnostic } from '../engine/source/caret-frame.ts'
 import type { Source } from '../engine/source/source.ts'
 import { buildTimeModel } from '../engine/tester/time-model.ts'
 import type { Tester } from '../engine/tester/tester.ts'
 import type { LoadedNetlist } from './load-netlist.ts'
+
+/** What of constraints and weights a reader must know although they can be used, a sentence each. */
+type KnownBasis = ChoiceBasis & { readonly warnings: readonly string[] }
 
 /** A finished run with all that plans are made from, and what has been worked out of it so far. */
 export type RunDossier = LoadedNetlist & {
   readonly patterns: PatternSet
   readonly profile: DetectionProfile
   readonly matrix: DetectionMatrix
-  readonly bases: Map<string, ChoiceBasis>
+  readonly bases: Map<string, KnownBasis>
   readonly orders: Map<string, Order>
   readonly curves: Map<string, Float64Array>
 }
@@ -55,12 +58,12 @@ export function heldDossier(key: string): RunDossier {
 }
 
 /** Throws AppError 'bad-input', with the field in its details, where constraints or weights can't be used. */
-export function basisOf(dossier: RunDossier, { tester, product, assumptions }: ChoiceInput): ChoiceBasis {
+export function basisOf(dossier: RunDossier, { tester, product, assumptions }: ChoiceInput): KnownBasis {
   const { faults, matrix, patterns, netlist } = dossier
   const costs = buildTimeModel(tester, product, patterns, scanFactsOf(netlist)).patternCycles
   const key = basisKey(assumptions, costs)
-  const known = dossier.bases.get(key)
-  if (known !== undefined) return known
+  const before = dossier.bases.get(key)
+  if (before !== undefined) return before
   const constraints: Source | null =
     assumptions.constraints === null
       ? null
@@ -75,21 +78,27 @@ export function basisOf(dossier: RunDossier, { tester, product, assumptions }: C
     weights,
     detections: assumptions.n,
   })
+  const placed = placeDiagnostics(
+    diagnostics,
+    [constraints, weights].filter((source) => source !== null),
+  )
   if (value === null) {
-    const sources = [constraints, weights].filter((source) => source !== null)
-    const [first] = placeDiagnostics(
-      diagnostics.filter(({ severity }) => severity === 'error'),
-      sources,
-    )
-    const where = first?.file === 'weights' ? `Line ${first.line}: ` : ''
-    const hint = first?.hint ? ` ${first.hint}.` : ''
+    const first = placed.find(({ severity }) => severity === 'error')
     const kind = CONSTRAINT_KINDS[(first?.line ?? 0) - 2]
-    throw new AppError('bad-input', `${where}${first?.message ?? 'This can not be used'}.${hint}`, {
+    throw new AppError('bad-input', first === undefined ? undefined : sentenceOf(first), {
       field: first?.file === 'constraints' && kind !== undefined ? `constraints.${kind}` : first?.file,
     })
   }
-  remember(dossier.bases, key, value)
-  return value
+  const known = { ...value, warnings: placed.map((each) => `Weights: ${sentenceOf(each)}`) }
+  remember(dossier.bases, key, known)
+  return known
+}
+
+/** A text of weights has lines that the user wrote; the one of constraints has not. */
+function sentenceOf({ file, line, message, hint }: PlacedDiagnostic): string {
+  const what = `${message.charAt(0).toUpperCase()}${message.slice(1)}.`
+  const where = file === 'weights' ? `Line ${line}: ${message}.` : what
+  return hint === null ? where : `${where} ${hint}${/[.?]$/.test(hint) ? '' : '.'}`
 }
 
 /** Returns an order of the run's patterns, worked out once for each choice that it depends on. */

@@ -23,6 +23,9 @@ type PricedView = {
   readonly priced: PricedOrder
 }
 
+/** So many warnings of weights are shown; more of the same help nobody. */
+const MOST_WARNINGS = 3
+
 /** The coverage that a millisecond must buy, for the mark where it no longer does. */
 const WORTH_OF_MILLISECOND = 0.0005
 
@@ -56,7 +59,7 @@ export function viewJob({
       marks: marksOf(view, basis, request, pricing.pricing),
     })),
     modelNote: modelNote(pricing),
-    cautions: cautionsOf(dossier),
+    cautions: [...cautionsOf(dossier), ...basis.warnings.slice(0, MOST_WARNINGS)],
   }
   return new DeskAnswer(output, columns.flatMap(buffersOf))
 }

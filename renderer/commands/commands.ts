@@ -8,7 +8,7 @@ import { useCutSubject } from '../stores/cut-subject.ts'
 import { focusRegion } from './focus-region.ts'
 import { screenAction } from './screen-actions.ts'
 
-export type CommandGroup = 'Go to' | 'Project' | 'Product' | 'Cut' | 'Chart' | 'Window'
+export type CommandGroup = 'Go to' | 'Project' | 'Product' | 'Cut' | 'Pattern at the cut' | 'Chart' | 'Window'
 
 /** An action of the window. Menu, buttons, command field and shortcut list all read it from here. */
 export type Command = {
@@ -18,8 +18,8 @@ export type Command = {
   readonly group: CommandGroup
   /** As in `Mod+K`; null where it has none. See keys.ts for what changes in a browser. */
   readonly keys: string | null
-  /** Where keys act: anywhere, or only while a chart has the focus. */
-  readonly scope: 'anywhere' | 'chart'
+  /** Where keys act: anywhere, or only while a chart or the table of patterns has the focus. */
+  readonly scope: 'anywhere' | 'chart' | 'patterns'
   /** Why it can't be done now, in words; null where it can. */
   readonly blockedBy: () => string | null
   readonly run: () => void
@@ -53,6 +53,13 @@ const TABLE = {
   'cut.knee': ['Put the cut at the knee', 'Cut', null],
   'cut.least-cost': ['Put the cut at the least cost', 'Cut', null],
   'cut.prove-ceiling': ['Prove the ceiling', 'Cut', null],
+  'cut.improve': ['Improve at this cut…', 'Cut', null],
+  'cut.constraints': ['Set constraints…', 'Cut', null],
+  'cut.weights': ['Set weights…', 'Cut', null],
+  'pattern.keep': ['Keep the pattern', 'Pattern at the cut', 'K', 'patterns'],
+  'pattern.leave-out': ['Leave the pattern out', 'Pattern at the cut', 'X', 'patterns'],
+  'pattern.first': ['Fix the pattern at the front', 'Pattern at the cut', 'F', 'patterns'],
+  'pattern.free': ['Free the pattern of its rules', 'Pattern at the cut', 'U', 'patterns'],
   'chart.patterns': ['Axis: patterns', 'Chart', '1', 'chart'],
   'chart.cycles': ['Axis: tester cycles', 'Chart', '2', 'chart'],
   'chart.milliseconds': ['Axis: time per device', 'Chart', '3', 'chart'],

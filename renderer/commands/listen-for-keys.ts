@@ -20,10 +20,12 @@ export function listenForKeys(commands: readonly Command[]): () => void {
     const target = event.target instanceof Element ? event.target : null
     const isSingle = event.key.length === 1 && !event.ctrlKey && !event.metaKey && !event.altKey
     if (isSingle && (!settings.settings.singleKeys || isEditable(target))) return
-    const isInChart = Boolean(target?.closest('[data-key-scope="chart"]'))
+    if (target?.closest('dialog, [role=menu]')) return
+    const isInScope = (scope: Command['scope']): boolean =>
+      scope === 'anywhere' || Boolean(target?.closest(`[data-key-scope="${scope}"]`))
     const command = byKeys
       .get(keysOf(event))
-      ?.find(({ scope, blockedBy }) => (scope === 'anywhere' || isInChart) && blockedBy() === null)
+      ?.find(({ scope, blockedBy }) => isInScope(scope) && blockedBy() === null)
     if (!command) return
     // Undo of what is being typed belongs to the field.
     if ((command.id === 'undo' || command.id === 'redo') && isEditable(target)) return

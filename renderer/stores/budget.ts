@@ -39,6 +39,8 @@ export const useBudget = defineStore('budget', () => {
   /** The figures shown stand on older assumptions than the fields do. */
   const isStale = ref(false)
   const problem = ref<string | null>(null)
+  /** The smallest complete set is being looked for. */
+  const isSearching = ref(false)
 
   const columns = computed(() => view.value?.orders.find((each) => each.order === order.value) ?? null)
   const patterns = computed(() => columns.value?.patterns ?? 0)
@@ -49,11 +51,16 @@ export const useBudget = defineStore('budget', () => {
   /** Order and cut to be shown once the figures for them are here; what was shown stays until then. */
   let coming: { readonly order: OrderName; readonly cut?: number } | null = null
   let asked = 0
+  /** The smallest complete set is shown from when it was first asked for until its search is cancelled. */
+  let wantsSmallest = false
+  /** The choice that it was last found for. */
+  let searched = ''
   let settling: ReturnType<typeof setTimeout> | undefined
 
   /** Opens a product at the cut that it was last looked at with, or at one that a link names. */
   async function open(productId: number, link: Readonly<Record<string, string>> = {}): Promise<void> {
     if (product.value?.id !== productId) {
+      wantsSmallest = false
       view.value = null
       state.value = { status: 'loading' }
     }
@@ -107,21 +114,40 @@ export const useBudget = defineStore('budget', () => {
     fields.value ??= await api.call('fields.get', {})
   }
 
-  /** Asks for the figures; an answer that a later question has overtaken is dropped. */
+  /**
+   * Asks for the figures. Where the smallest complete set has to be looked for anew, which takes long, the other orders
+   * come first, unless it is the one that is shown.
+   */
   async function loadView(): Promise<void> {
     if (assumptions.value === null) return
-    const mine = ++asked
     isStale.value = view.value !== null
+    const isShown = (coming?.order ?? order.value) === 'smallest'
+    wantsSmallest ||= isShown
+    if (!wantsSmallest || (!isShown && searched !== choiceKey())) {
+      const isCurrent = await ask(quickOrders())
+      if (!wantsSmallest || !isCurrent) return
+    }
+    isSearching.value = searched !== choiceKey()
+    await ask([...quickOrders(), 'smallest'])
+  }
+
+  /** Returns whether what is shown is now the answer; one that a later question has overtaken is dropped. */
+  async function ask(orders: OrderName[]): Promise<boolean> {
+    if (assumptions.value === null) return false
+    const mine = ++asked
+    const choice = choiceKey()
     try {
       const answer = await api.call('budgets.view', {
         runId: runId.value,
-        orders: ordersWanted(),
+        orders,
         assumptions: assumptions.value,
       })
-      if (mine !== asked) return
+      if (mine !== asked) return false
+      isSearching.value = false
       fieldErrors.value = answer.fieldErrors
       problem.value = null
-      if (answer.view === null) return
+      if (answer.view === null) return false
+      if (answer.view.smallest) searched = choice
       view.value = answer.view
       if (coming !== null) {
         order.value = coming.order
@@ -132,19 +158,48 @@ export const useBudget = defineStore('budget', () => {
       cut.value = clamp(cut.value, 0, patterns.value)
       state.value = { status: 'ready' }
       remember()
+      return true
     } catch (error) {
-      if (mine !== asked) return
-      problem.value = messageOf(error)
-      if (view.value === null) state.value = { status: 'failed', message: messageOf(error) }
+      if (mine !== asked) return false
+      isSearching.value = false
+      coming = null
+      const message = messageOf(error)
+      if (orders.includes('smallest') && (error as AppError).code === 'cancelled')
+        return goOnWithoutSmallest()
+      problem.value = message
+      if (view.value === null) state.value = { status: 'failed', message }
+      return false
     }
   }
 
-  function ordersWanted(): OrderName[] {
-    const shown: OrderName[] = ['steepest', 'as-delivered']
-    const known = view.value?.runId === runId.value ? view.value.orders.map((each) => each.order) : []
-    if ([order.value, coming?.order, ...known].includes('smallest')) shown.push('smallest')
-    if (assumptions.value?.byHand) shown.push('by-hand')
-    return shown
+  /** Looks on for a smaller complete set; what is shown follows when it ends. */
+  async function searchLonger(seconds: number): Promise<void> {
+    if (assumptions.value === null || isSearching.value) return
+    isSearching.value = true
+    try {
+      await api.call('budgets.smallest', { runId: runId.value, assumptions: assumptions.value, seconds })
+      await loadView()
+    } catch (error) {
+      if ((error as AppError).code !== 'cancelled') problem.value = messageOf(error)
+    } finally {
+      isSearching.value = false
+    }
+  }
+
+  function goOnWithoutSmallest(): Promise<boolean> {
+    wantsSmallest = false
+    if (order.value === 'smallest') order.value = 'steepest'
+    return ask(quickOrders())
+  }
+
+  function quickOrders(): OrderName[] {
+    return ['steepest', 'as-delivered', ...(assumptions.value?.byHand ? (['by-hand'] as const) : [])]
+  }
+
+  /** What the smallest complete set depends on. */
+  function choiceKey(): string {
+    const { constraints, weights, n } = assumptions.value ?? {}
+    return JSON.stringify([runId.value, constraints, weights, n])
   }
 
   function moveTo(next: number): void {
@@ -163,10 +218,14 @@ export const useBudget = defineStore('budget', () => {
     })
   }
 
-  /** Changes what the figures stand on; they follow once the changes pause. */
-  function assume(change: Partial<Assumptions>): void {
+  /** Changes what the figures stand on, and which order and cut are shown; they follow once the changes pause. */
+  function assume(
+    change: Partial<Assumptions>,
+    shown: { readonly order?: OrderName; readonly cut?: number } = {},
+  ): void {
     if (assumptions.value === null) return
     assumptions.value = { ...assumptions.value, ...change }
+    if (shown.order !== undefined || shown.cut !== undefined) coming = { order: order.value, ...shown }
     isStale.value = true
     clearTimeout(settling)
     settling = setTimeout(() => void loadView(), SETTLE_MS)
@@ -184,10 +243,15 @@ export const useBudget = defineStore('budget', () => {
   }
 
   async function chooseRun(id: number): Promise<void> {
+    const setOf = (each: number): number | undefined =>
+      runs.value.find((one) => one.id === each)?.patternSetId
+    const isOtherSet = setOf(id) !== setOf(runId.value)
     runId.value = id
-    // An order by hand numbers the patterns of one set.
-    if (assumptions.value?.byHand) assumptions.value = { ...assumptions.value, byHand: null }
-    coming = { order: order.value === 'by-hand' ? 'steepest' : order.value }
+    // An order by hand and constraints number the patterns of one set.
+    if (isOtherSet && assumptions.value !== null) {
+      assumptions.value = { ...assumptions.value, byHand: null, constraints: null }
+    }
+    coming = { order: isOtherSet && order.value === 'by-hand' ? 'steepest' : order.value }
     await loadView()
   }
 
@@ -198,16 +262,6 @@ export const useBudget = defineStore('budget', () => {
     assumptions.value = budget.assumptions
     coming = { order: budget.order, cut: budget.cut }
     await loadView()
-  }
-
-  /** Moves a pattern to another position, both from 0, which makes the order one set by hand. */
-  function moveByHand(from: number, to: number): void {
-    const list = Array.from(columns.value?.pattern ?? [])
-    const [moved] = list.splice(from, 1)
-    if (moved === undefined || from === to) return
-    list.splice(to, 0, moved)
-    coming = { order: 'by-hand' }
-    assume({ byHand: list })
   }
 
   return {
@@ -225,6 +279,7 @@ export const useBudget = defineStore('budget', () => {
     fieldErrors,
     isStale,
     problem,
+    isSearching,
     columns,
     patterns,
     run,
@@ -235,12 +290,12 @@ export const useBudget = defineStore('budget', () => {
     loadRecords,
     loadForms,
     loadView,
+    searchLonger,
     moveTo,
     assume,
     chooseOrder,
     chooseRun,
     goTo,
-    moveByHand,
   }
 })
 

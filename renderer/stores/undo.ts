@@ -1,5 +1,5 @@
 import { defineStore } from 'pinia'
-import { computed, ref } from 'vue'
+import { computed, shallowRef } from 'vue'
 import { api } from '../api/client.ts'
 import { useNotices } from './notices.ts'
 
@@ -9,21 +9,42 @@ type Deletion = {
   readonly delete: () => Promise<{ readonly undoToken: string }>
 }
 
-/** What was deleted and can be taken back, latest last, and what was taken back and can be done again. */
+/** Something that can be taken back and done again. */
+type Step = {
+  readonly label: string
+  /** Does it and returns what takes it back. */
+  readonly act: () => Promise<() => Promise<unknown>>
+}
+
+type Done = Step & { readonly takeBack: () => Promise<unknown> }
+
+/** What was deleted or changed and can be taken back, latest last, and what was taken back and can be done again. */
 export const useUndo = defineStore('undo', () => {
   const notices = useNotices()
-  const done = ref<readonly (Deletion & { readonly undoToken: string })[]>([])
-  const undone = ref<readonly Deletion[]>([])
+  const done = shallowRef<readonly Done[]>([])
+  const undone = shallowRef<readonly Step[]>([])
   const undoLabel = computed(() => done.value.at(-1)?.label ?? null)
   const redoLabel = computed(() => undone.value.at(-1)?.label ?? null)
 
   async function remove(deletion: Deletion): Promise<boolean> {
-    const isRemoved = await carryOut(deletion)
+    const isRemoved = await perform({
+      label: deletion.label,
+      act: async () => {
+        const { undoToken } = await deletion.delete()
+        return () => api.call('undo.restore', { undoToken })
+      },
+    })
     if (isRemoved) {
-      undone.value = []
       notices.tell('idle', `${deletion.label} deleted`, '', { label: 'Undo', run: () => void undo() })
     }
     return isRemoved
+  }
+
+  /** Does something new; what was taken back before can't be done again then. */
+  async function perform(step: Step): Promise<boolean> {
+    const isDone = await carryOut(step)
+    if (isDone) undone.value = []
+    return isDone
   }
 
   async function undo(): Promise<void> {
@@ -31,7 +52,7 @@ export const useUndo = defineStore('undo', () => {
     if (!last) return
     done.value = done.value.slice(0, -1)
     const isRestored = await notices.attempt(`${last.label} could not be brought back`, async () => {
-      await api.call('undo.restore', { undoToken: last.undoToken })
+      await last.takeBack()
       return true
     })
     if (isRestored) undone.value = [...undone.value, last]
@@ -44,10 +65,10 @@ export const useUndo = defineStore('undo', () => {
     await carryOut(last)
   }
 
-  async function carryOut(deletion: Deletion): Promise<boolean> {
-    const answer = await notices.attempt(`${deletion.label} was kept`, deletion.delete)
-    if (answer === undefined) return false
-    done.value = [...done.value, { ...deletion, undoToken: answer.undoToken }]
+  async function carryOut(step: Step): Promise<boolean> {
+    const takeBack = await notices.attempt(`${step.label} was kept`, step.act)
+    if (takeBack === undefined) return false
+    done.value = [...done.value, { ...step, takeBack }]
     return true
   }
 
@@ -57,5 +78,5 @@ export const useUndo = defineStore('undo', () => {
     undone.value = []
   }
 
-  return { done, undone, undoLabel, redoLabel, remove, undo, redo, forget }
+  return { done, undone, undoLabel, redoLabel, remove, perform, undo, redo, forget }
 })

@@ -1,5 +1,5 @@
 import { createPinia, setActivePinia } from 'pinia'
-import type { Result } from '../../app/contract/errors.ts'
+import { AppError, type Result } from '../../app/contract/errors.ts'
 import type { EventName, EventPayload } from '../../app/contract/events.ts'
 import type { InputOf, OperationName, OutputOf } from '../../app/contract/operations.ts'
 import { useDoor } from '../../renderer/api/client.ts'
@@ -30,7 +30,8 @@ export function fakeApi(answers: Answers = {}): FakeApi {
       try {
         return { ok: true, value: await answer(input) }
       } catch (error) {
-        return { ok: false, error: { code: 'bad-input', message: (error as Error).message } }
+        const code = error instanceof AppError ? error.code : 'bad-input'
+        return { ok: false, error: { code, message: (error as Error).message } }
       }
     },
     on(name, listener) {

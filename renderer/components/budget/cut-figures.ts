@@ -10,6 +10,8 @@ export type CutFigures = {
   /** Of the faults that are not proven untestable. */
   readonly testCoverage: number
   readonly detectedOnce: number
+  /** Of the faults themselves, each counted once whatever it weighs. */
+  readonly plainCoverage: number
   readonly cycles: number
   readonly milliseconds: number
   readonly perDeviceMilliseconds: number
@@ -39,6 +41,7 @@ export function figuresAt(view: BudgetView, columns: OrderColumns, cut: number, 
     coverage: detected / view.total,
     testCoverage: at(columns.detected) / (view.total * (1 - view.untestable / view.faults)),
     detectedOnce: at(columns.detected),
+    plainCoverage: at(columns.detectedPlain) / view.faults,
     cycles: at(columns.cycles),
     milliseconds: at(columns.milliseconds),
     perDeviceMilliseconds: at(columns.perDeviceMilliseconds),

@@ -1,4 +1,4 @@
-import type { OrderName } from '../../../app/contract/shapes/budget.ts'
+import type { BudgetView, OrderName, Smallest } from '../../../app/contract/shapes/budget.ts'
 import { type NumberFormats, textOf } from '../../../app/contract/format-number.ts'
 import type { Phrase } from '../../../app/contract/plan-words.ts'
 import type { CutFigures } from './cut-figures.ts'
@@ -20,12 +20,16 @@ const strong = (text: string): SentencePhrase => ({ text, strong: true, isCut: f
 export function cutSentence(
   at: CutFigures,
   next: CutFigures,
-  total: number,
+  { total, faults, isWeighted }: Pick<BudgetView, 'total' | 'faults' | 'isWeighted'>,
   formats: NumberFormats,
   n: number,
 ): readonly SentencePhrase[] {
   const more = next.cut - at.cut
   const times = n > 1 ? ` detected ${n} times or more` : ''
+  const plainly = textOf(formats.coverage(at.plainCoverage))
+  const base = isWeighted
+    ? ` of the weight of ${formats.count(faults).value} faults${times} (${plainly} of the faults themselves)`
+    : ` of ${formats.count(total).value} faults${times}`
   return [
     {
       text: `${formats.count(at.cut).value} of ${formats.count(at.patterns).value} patterns`,
@@ -36,7 +40,7 @@ export function cutSentence(
     strong(textOf(formats.milliseconds(at.milliseconds))),
     plain(': '),
     strong(textOf(formats.coverage(at.coverage))),
-    plain(` of ${formats.count(total).value} faults${times}, an estimated `),
+    plain(`${base}, an estimated `),
     strong(textOf(formats.dppm(at.dppm))),
     plain(`. ${nextWords(at, next, more, formats)}`),
   ]
@@ -83,12 +87,43 @@ export function keptWords(has: { time: boolean; memory: boolean; goal: boolean }
   return text === '' ? 'No limit is set.' : `${text.charAt(0).toUpperCase()}${text.slice(1)}.`
 }
 
+/** Returns what a curve counts: "faults", with how often or by what weight they count. */
+export function countedThings({ isWeighted }: Pick<BudgetView, 'isWeighted'>, n: number): string {
+  return `${isWeighted ? 'of the weight of faults' : 'faults'}${n > 1 ? ` ${n} times or more` : ''}`
+}
+
 /** Returns what is proven of a cut: how much more any choice of as many patterns could detect. */
-export function ceilingWords(at: CutFigures, ceiling: number, total: number, formats: NumberFormats): string {
+export function ceilingWords(
+  at: CutFigures,
+  ceiling: number,
+  view: Pick<BudgetView, 'total' | 'isWeighted'>,
+  n: number,
+  formats: NumberFormats,
+): string {
+  const { total } = view
   const gap = ceiling - at.detected
   const count = (value: number): string => formats.count(value).value
-  const limit = `No choice of ${count(at.cut)} of these patterns can detect more than ${count(ceiling)} faults; this one detects`
+  const limit = `No choice of ${count(at.cut)} of these patterns can detect more than ${count(ceiling)} ${countedThings(view, n)}; this one detects`
   return gap > 0
     ? `${limit} ${count(at.detected)}, within ${changeWords(gap / total, formats)} of the best.`
     : `${limit} as many: no better choice exists.`
+}
+
+/** Returns what is known of the smallest complete set: "best found 52 patterns, at least 50 (not proven)". */
+export function smallestWords({ patterns, lowerBound, proven }: Smallest, formats: NumberFormats): string {
+  const count = (value: number): string => formats.count(value).value
+  return proven
+    ? `${count(patterns)} patterns, proven the fewest`
+    : `best found ${count(patterns)} patterns, at least ${count(lowerBound)} (not proven)`
+}
+
+/** Returns where the nearest cut lies that keeps the constraints; empty where this one does. */
+export function constraintTrouble(mayCut: Uint8Array, cut: number, formats: NumberFormats): string {
+  if (mayCut[cut] === 1) return ''
+  const after = mayCut.indexOf(1, cut)
+  const before = mayCut.lastIndexOf(1, cut)
+  const nearest = before < 0 || (after >= 0 && after - cut <= cut - before) ? after : before
+  return nearest < 0
+    ? 'Against the constraints at every cut of this order.'
+    : `Against the constraints, which the cut at ${formats.count(nearest).value} patterns keeps.`
 }

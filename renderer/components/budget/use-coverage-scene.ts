@@ -83,9 +83,9 @@ export function useCoverageScene(choice: ChartChoice, size: Ref<Size>) {
       colours: colours.value,
     })
   })
-  /** Escapes follow from what is detected once: with more detections asked, the height is no scale of them. */
+  /** Escapes follow from what is detected once, plainly: by more detections or weights, the height is no scale of them. */
   const escapes = computed(() =>
-    n.value > 1
+    n.value > 1 || budget.view?.isWeighted
       ? []
       : escapeTicks(columns.value.detected, columns.value.dppm, total.value, window.value.y, 6),
   )

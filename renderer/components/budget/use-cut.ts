@@ -4,7 +4,15 @@ import { useCeiling } from '../../stores/ceiling.ts'
 import { formats } from '../../formats.ts'
 import { figuresAt } from './cut-figures.ts'
 import { brokenLimits, fewestForGoal, limitsOf, mostInside } from './cut-limits.ts'
-import { brokenWords, ceilingWords, cutSentence, keptWords } from './cut-words.ts'
+import { constraintsInWords } from './constraint-rules.ts'
+import {
+  brokenWords,
+  ceilingWords,
+  constraintTrouble,
+  cutSentence,
+  keptWords,
+  smallestWords,
+} from './cut-words.ts'
 
 /** Patterns to either side of the cut of which gain and price are shown. */
 export const NEIGHBOURS = 10
@@ -26,24 +34,34 @@ export function useCut() {
   )
   const sentence = computed(() =>
     budget.view && figures.value && after.value
-      ? cutSentence(figures.value, after.value, budget.view.total, formats, n.value)
+      ? cutSentence(figures.value, after.value, budget.view, formats, n.value)
       : [],
   )
   const state = computed(() => {
     const { view } = budget
     if (!view || !figures.value || !broken.value) return null
-    const trouble = brokenWords(broken.value, formats)
+    const { constraints } = budget.assumptions ?? {}
+    const rules =
+      constraints && budget.columns ? constraintTrouble(budget.columns.mayCut, budget.cut, formats) : ''
+    const trouble = [brokenWords(broken.value, formats), rules].join(' ').trim()
     const has = {
       time: view.limits.maxMilliseconds !== null,
       memory: view.vectorMemory !== null,
       goal: view.limits.minCoverage !== null || view.limits.maxDppm !== null,
     }
     const bound = ceiling.ceiling?.ceiling[budget.cut]
-    const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view.total, formats)
+    const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view, n.value, formats)
+    const inForce = constraints ? `Constraints in force: ${constraintsInWords(constraints, formats)}.` : ''
+    const fewest =
+      budget.order === 'smallest' && view.smallest
+        ? `Smallest complete set: ${smallestWords(view.smallest, formats)}.`
+        : ''
     return {
       isBroken: trouble !== '',
       trouble,
-      text: [...(trouble === '' ? [keptWords(has)] : []), proof].join(' ').trim(),
+      text: [trouble === '' ? keptWords(has) : '', inForce, fewest, proof]
+        .filter((part) => part !== '')
+        .join(' '),
     }
   })
   const ownBudgets = computed(() =>

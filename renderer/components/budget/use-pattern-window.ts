@@ -2,6 +2,7 @@ import { computed, nextTick, onBeforeUnmount, ref, type Ref, watch } from 'vue'
 import { clamp } from '../../charts/plot-geometry.ts'
 import { formats } from '../../formats.ts'
 import { useBudget } from '../../stores/budget.ts'
+import { ruleOf } from './constraint-rules.ts'
 import { detectedColumn } from './cut-figures.ts'
 import { sortedRows, type SortKey } from './pattern-rows.ts'
 
@@ -24,6 +25,10 @@ export type PatternRow = {
   /** Position in the order, from 0. */
   readonly at: number
   readonly cells: readonly string[]
+  /** The pattern's number, from 1. */
+  readonly pattern: number
+  /** What constraints say of it. */
+  readonly rule: string
   /** Length of the gain's bar in %, on a logarithmic scale. */
   readonly bar: number
 }
@@ -64,12 +69,15 @@ export function usePatternWindow(scroller: Readonly<Ref<HTMLElement | null>>, n:
     const at = rows.value?.[row] ?? row
     const gain = gainAt(at)
     const alone = columns?.detectsAlone[at] ?? 0
+    const pattern = columns?.pattern[at] ?? 0
     return {
       row,
       at,
+      pattern,
+      rule: ruleOf(budget.assumptions?.constraints ?? null, pattern),
       cells: [
         formats.count(at + 1).value,
-        formats.count(columns?.pattern[at]).value,
+        formats.count(pattern).value,
         formats.count(gain).value,
         formats.coverageInTable((detected.value[at + 1] ?? 0) / (view?.total ?? 1)),
         formats.milliseconds(columns?.milliseconds[at + 1]).value,

@@ -23,7 +23,7 @@ const view = budgetView(1000)
 const steepest = view.orders[1]!
 const at = (cut: number) => figuresAt(view, steepest, cut, 1)
 const text = (cut: number) =>
-  cutSentence(at(cut), at(Math.min(1000, cut + 10)), view.total, formats, 1)
+  cutSentence(at(cut), at(Math.min(1000, cut + 10)), view, formats, 1)
     .map((phrase) => phrase.text)
     .join('')
     .replaceAll('\u00a0', ' ')
@@ -73,8 +73,8 @@ test('a broken limit says by how much', () => {
 
 test('what is proven is put in faults', () => {
   const figures = at(330)
-  expect(ceilingWords(figures, figures.detected, 40_000, formats)).toContain('no better choice exists')
-  expect(ceilingWords(figures, figures.detected + 0.1, 40_000, formats)).toContain(
+  expect(ceilingWords(figures, figures.detected, view, 1, formats)).toContain('no better choice exists')
+  expect(ceilingWords(figures, figures.detected + 0.1, view, 1, formats)).toContain(
     'within less than 0.001 % of the best',
   )
 })
