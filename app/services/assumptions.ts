@@ -1,3 +1,4 @@
+import { shareProblem, sharesOfText } from './area-share-text.ts'
 import { INPUT_WORDS } from '../contract/plan-words.ts'
 import type { Field, FieldError, FieldValues } from '../contract/shapes/model.ts'
 import type { NumberShape, Shape } from '../engine/formats/json/read-json.ts'
@@ -15,11 +16,13 @@ import {
 } from '../engine/tester/assumption-field.ts'
 import { TESTER_FIELDS, testerContradictions, type Tester } from '../engine/tester/tester.ts'
 
-/** The name stands in the record itself; lists of objects, such as shares of area, stand in files only. */
+/** The name stands in the record itself; lists of objects stand in files only, but for shares of area. */
 function isInForms({ key, shape }: AnyField): boolean {
   const inner = shape.kind === 'or-null' ? shape.of : shape
-  return key !== 'name' && !(inner.kind === 'list' && inner.of.kind === 'object')
+  return key !== 'name' && (key === SHARES || !(inner.kind === 'list' && inner.of.kind === 'object'))
 }
+
+const SHARES = 'areaShares'
 
 /** A field of either file, where it does not matter of which. */
 type AnyField = AssumptionField<Record<string, unknown>>
@@ -134,6 +137,8 @@ function resolve<T>(
 
 function problemOf(field: AnyField, value: string | number): string | null {
   const inFile = fileValue(field.shape, value)
+  const ofShares = field.key === SHARES && typeof value === 'string' ? shareProblem(value) : null
+  if (ofShares !== null) return ofShares
   const example = EXAMPLES[field.key.split('.')[1] as RangeInput] as string | undefined
   if (example !== undefined) {
     const [low, high] = Array.isArray(inFile) && inFile.length === 2 ? (inFile as number[]) : []
@@ -160,7 +165,15 @@ function fieldOf({ key, label, unit, shape, default: value, nullMeans, explanati
     label,
     unit,
     kind:
-      words.length > 0 ? 'choice' : inner.kind === 'number' ? (inner.whole ? 'integer' : 'number') : 'text',
+      key === SHARES
+        ? 'shares'
+        : words.length > 0
+          ? 'choice'
+          : inner.kind === 'number'
+            ? inner.whole
+              ? 'integer'
+              : 'number'
+            : 'text',
     choices: words.map((word) => ({ value: word, label: CHOICE_LABELS[word] ?? word })),
     min: limits.above ?? limits.min ?? null,
     max: limits.max ?? null,
@@ -188,6 +201,9 @@ function choicesOf(shape: Shape): readonly string[] {
 function fileValue(shape: Shape, value: string | number | null): unknown {
   const inner = shape.kind === 'or-null' ? shape.of : shape
   if (inner.kind === 'boolean') return value === 'yes' ? true : value === 'no' ? false : value
+  if (inner.kind === 'list' && inner.of.kind === 'object') {
+    return typeof value === 'string' ? sharesOfText(value) : value
+  }
   if (inner.kind === 'list' && typeof value === 'string') {
     return value.split(/\s*(?:to|–|,|;)\s*/).map((part) => (part === '' ? null : Number(part)))
   }

@@ -30,6 +30,23 @@ describe('assumptions', () => {
     expect(changeValues('product', { yield: 0.5, n0: 3 }, { yield: null }).values).toEqual({ n0: 3 })
   })
 
+  test('shares of area are typed a block a line; what they lack is named', () => {
+    const shares = (text: string) => resolveProduct('P', { areaShares: text })
+    expect(shares('core/alu,0.4\nbus[3,0],0.6').values.areaShares).toEqual([
+      { block: 'core/alu', share: 0.4 },
+      { block: 'bus[3,0]', share: 0.6 },
+    ])
+    const messageOf = (text: string) => shares(text).errors.map(({ key, message }) => [key, message])
+    expect(messageOf('a,0.4\nb,0.5')).toEqual([
+      ['areaShares', expect.stringContaining('add up to 0.9; 1 is')],
+    ])
+    expect(messageOf('a,0.4\nb,x')).toEqual([['areaShares', expect.stringContaining('share of "b" is x')]])
+    expect(messageOf('a,1\nb,')).toEqual([['areaShares', expect.stringContaining('"b" is missing')]])
+    expect(messageOf(',1')).toEqual([['areaShares', expect.stringContaining('Block 1 has no name')]])
+    expect(messageOf('a,0.5\na,0.5')).toEqual([['areaShares', expect.stringContaining('listed twice')]])
+    expect(changeValues('product', {}, { areaShares: 'a,2' }).errors).toHaveLength(1)
+  })
+
   test('switches are words in forms and values in files', () => {
     const { values, errors } = resolveProduct('P', { chainTest: 'yes' })
     expect(errors).toEqual([])

@@ -12,7 +12,8 @@ export const fieldShape = z.object({
   key: z.string(),
   label: z.string(),
   unit: z.string(),
-  kind: z.enum(['number', 'integer', 'text', 'choice']),
+  /** `shares`: a text with a line for each block, `core/alu,0.4`. */
+  kind: z.enum(['number', 'integer', 'text', 'choice', 'shares']),
   choices: z.array(z.object({ value: z.string(), label: z.string() })),
   min: z.number().nullable(),
   max: z.number().nullable(),

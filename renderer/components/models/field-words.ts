@@ -6,7 +6,7 @@ const OUT_OF_SIGHT = 1e6
 
 /** Returns what a field allows: "above 0", "from 0 to 1", "1 or more"; empty where that says nothing. */
 export function rangeWords({ kind, min, max, openMin }: Field): string {
-  if (kind === 'text' || kind === 'choice') return ''
+  if (kind !== 'number' && kind !== 'integer') return ''
   const high = max !== null && max < OUT_OF_SIGHT ? `to ${formats.plain(max)}` : null
   if (min === null) return high === null ? '' : `up ${high}`
   if (openMin) return high === null ? `above ${formats.plain(min)}` : `above ${formats.plain(min)} ${high}`
