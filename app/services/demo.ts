@@ -104,6 +104,7 @@ export function createDemo(options: {
         await handlers['projects.forget']({ path })
         throw error
       }
+      projects.remember(session.store())
       return projectOf(session.store())
     },
   }

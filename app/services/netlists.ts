@@ -6,6 +6,7 @@ import type { Desk } from '../workers/desk.ts'
 import type { EventHub } from './event-hub.ts'
 import type { FileStore, GivenFile } from './files.ts'
 import { found, type Session } from './session.ts'
+import { readingOutcome } from './reading-outcome.ts'
 import { sourcesHash, withRoles } from './source-files.ts'
 import type { Tasks } from './tasks.ts'
 
@@ -53,6 +54,7 @@ export function createNetlists(options: {
           for (const old of [...held.keys()].slice(0, -HELD)) held.delete(old)
           return inspection
         },
+        readingOutcome,
       )
     },
     'netlists.save': async ({ productId, inspectionId, name, note }) => {

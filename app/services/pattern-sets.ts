@@ -7,6 +7,7 @@ import type { EventHub } from './event-hub.ts'
 import type { FileStore, GivenFile } from './files.ts'
 import { isUnderWay } from './netlists.ts'
 import { found, type Session } from './session.ts'
+import { readingOutcome } from './reading-outcome.ts'
 import { sourcesHash, withRoles } from './source-files.ts'
 import { storedNetlist } from './stored-inputs.ts'
 import type { Tasks } from './tasks.ts'
@@ -57,6 +58,7 @@ export function createPatternSets(options: {
           for (const old of [...held.keys()].slice(0, -HELD)) held.delete(old)
           return inspection
         },
+        readingOutcome,
       )
     },
     'patternSets.save': async ({ productId, inspectionId, name, note }) => {

@@ -53,7 +53,11 @@ export function createProjects(options: {
 
   const handlers: Pick<Handlers, Exclude<`projects.${string}` & keyof Handlers, 'projects.openDemo'>> = {
     'projects.recent': () => ({
-      projects: userState.read().recent.map((entry) => ({ ...entry, found: existsSync(entry.path) })),
+      projects: userState.read().recent.map((entry) => {
+        const current = session.current()
+        const summary = current?.path === entry.path ? summaryOf(current) : entry.summary
+        return { ...entry, summary, found: existsSync(entry.path) }
+      }),
     }),
     'projects.current': () => {
       const store = session.current()
@@ -77,7 +81,7 @@ export function createProjects(options: {
       return {}
     },
   }
-  return { handlers, open, take }
+  return { handlers, open, take, remember }
 }
 
 export function projectOf(store: ProjectStore): Project {

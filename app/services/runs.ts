@@ -1,7 +1,9 @@
 import { randomUUID } from 'node:crypto'
 import type { ProjectStore } from '../../db/open-project.ts'
 import { AppError } from '../contract/errors.ts'
+import { numberFormats, textOf } from '../contract/format-number.ts'
 import type { Handlers } from '../contract/handlers.ts'
+import { counted } from '../contract/plan-words.ts'
 import type { Run } from '../contract/shapes/run.ts'
 import type { Desk } from '../workers/desk.ts'
 import type { SimulateJob } from '../workers/simulate-job.ts'
@@ -10,6 +12,8 @@ import { isUnderWay } from './netlists.ts'
 import { found, type Session } from './session.ts'
 import { PARTS_PER_SEGMENT, storedNetlist, storedPatterns, storedSegments } from './stored-inputs.ts'
 import type { QueuedTask, TaskContext, Tasks } from './tasks.ts'
+
+const formats = numberFormats('en')
 
 type Entry = { readonly store: ProjectStore; readonly runId: number; readonly task: QueuedTask }
 
@@ -66,7 +70,9 @@ export function createRuns(options: {
         await task.run(
           (context) => simulate(store, runId, context),
           ({ figures }) =>
-            figures === null ? '' : `${figures.detected} of ${figures.faults} faults detected`,
+            figures === null
+              ? ''
+              : `${formats.count(figures.detected).value} of ${counted(figures.faults, 'fault', formats)} detected`,
         )
       } catch (error) {
         if (isOpen()) endBadly(store, runId, error)
@@ -92,13 +98,14 @@ export function createRuns(options: {
     const seconds = (): number => before + (performance.now() - startedAt) / 1000
     const segments = await storedSegments(store, runId)
     store.packed.removeFrom({ runId }, 'segment', segments.length * PARTS_PER_SEGMENT)
+    let soFar = soFarOf(run)
     const keep = ({ segment, part, bytes, standing }: SimulateJob['part']): void => {
       if (session.current() !== store) return
       store.together(() => {
         store.packed.add({ runId }, 'segment', segment * PARTS_PER_SEGMENT + part, bytes)
         if (standing === null) return
         store.runs.setSegments(runId, segment + 1)
-        stand(store, runId, { ...standing, seconds: seconds() })
+        soFar = soFarOf(stand(store, runId, { ...standing, seconds: seconds() }))
       })
     }
     let lost: unknown = null
@@ -110,7 +117,7 @@ export function createRuns(options: {
     }
     const { figures } = await desk.run('simulate', input, {
       signal: context.signal,
-      onProgress: (progress) => context.report(progress),
+      onProgress: (progress) => context.report({ ...progress, soFar }),
       onPart: (part) => {
         try {
           if (lost === null) keep(part)
@@ -188,4 +195,9 @@ export function createRuns(options: {
       return { undoToken }
     },
   }
+}
+
+/** Returns what a run under way has reached: "96.41 % so far"; empty before its first segment. */
+function soFarOf({ figures }: Run): string {
+  return figures === null ? '' : `${textOf(formats.coverage(figures.coverage))} so far`
 }

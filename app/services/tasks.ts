@@ -9,7 +9,12 @@ export type TaskProgress = {
   /** 0..1; null where it can't be told. */
   readonly share: number | null
   readonly rate?: number
+  /** What has come of it so far, in words. */
+  readonly soFar?: string
 }
+
+/** What came of a task, in words; work that was done may have found that something is wrong. */
+export type Outcome = string | { readonly failed: string }
 
 export type TaskContext = {
   readonly signal: AbortSignal
@@ -25,7 +30,7 @@ export type QueuedTask = {
   cancel(): void
   /** Takes it out again without doing it. */
   drop(): void
-  run<T>(work: (context: TaskContext) => Promise<T>, messageOf?: (result: T) => string): Promise<T>
+  run<T>(work: (context: TaskContext) => Promise<T>, outcomeOf?: (result: T) => Outcome): Promise<T>
 }
 
 export type Tasks = {
@@ -35,7 +40,7 @@ export type Tasks = {
   run<T>(
     start: TaskStart,
     work: (context: TaskContext) => Promise<T>,
-    messageOf?: (result: T) => string,
+    outcomeOf?: (result: T) => Outcome,
   ): Promise<T>
   cancelAll(): void
 }
@@ -100,16 +105,18 @@ export function createTasks(events: EventHub, now: () => number): Tasks {
       signal: controller.signal,
       cancel: () => controller.abort(),
       drop: () => end(id, 'cancelled', null),
-      async run(work, messageOf) {
+      async run(work, outcomeOf) {
         const startedAtMs = now()
         change(id, { state: 'running', phase: 'Starting', startedAtMs }, true)
-        const report = ({ phase, share, rate }: TaskProgress): void => {
+        const report = ({ phase, share, rate, soFar }: TaskProgress): void => {
           const secondsLeft = share === null ? null : restOf(share, now() - startedAtMs)
-          change(id, { phase, share, rate: rate ?? null, secondsLeft }, false)
+          change(id, { phase, share, rate: rate ?? null, secondsLeft, message: soFar ?? null }, false)
         }
         try {
           const result = await work({ signal: controller.signal, report })
-          end(id, 'done', messageOf?.(result) ?? null)
+          const outcome = outcomeOf?.(result) ?? null
+          if (outcome === null || typeof outcome === 'string') end(id, 'done', outcome)
+          else end(id, 'failed', outcome.failed)
           return result
         } catch (error) {
           const isCancelled = error instanceof AppError && error.code === 'cancelled'
@@ -131,7 +138,7 @@ export function createTasks(events: EventHub, now: () => number): Tasks {
   return {
     handlers,
     enqueue,
-    run: (start, work, messageOf) => enqueue(start).run(work, messageOf),
+    run: (start, work, outcomeOf) => enqueue(start).run(work, outcomeOf),
     cancelAll: () => {
       for (const controller of controllers.values()) controller.abort()
     },

@@ -48,6 +48,7 @@ const TABLE = {
   'product.import': ['Import files…', 'Product', 'Mod+I'],
   'product.run': ['New run…', 'Product', 'Mod+R'],
   'product.report': ['Export report…', 'Product', 'Mod+E'],
+  'product.delete': ['Delete product', 'Product', null],
   'cut.focus': ['Move the cut by keys', 'Cut', 'C'],
   'cut.keep': ['Keep as budget', 'Cut', 'Mod+B'],
   'cut.knee': ['Put the cut at the knee', 'Cut', null],

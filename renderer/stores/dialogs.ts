@@ -1,5 +1,6 @@
 import { defineStore } from 'pinia'
 import { shallowRef } from 'vue'
+import type { RecentProject } from '../../app/contract/shapes/project.ts'
 import type { Assumptions, OrderName } from '../../app/contract/shapes/budget.ts'
 
 /** A cut that a report, an export or the list of lost faults is about. */
@@ -14,7 +15,8 @@ export type Dialog =
   | { readonly kind: 'commands' }
   | { readonly kind: 'shortcuts' }
   | { readonly kind: 'new-project' }
-  | { readonly kind: 'open-project' }
+  /** `missing`: a project of the list whose file is no longer at its path. */
+  | { readonly kind: 'open-project'; readonly missing?: RecentProject }
   | { readonly kind: 'new-product' }
   | { readonly kind: 'new-run'; readonly productId: number }
   | { readonly kind: 'export'; readonly productId: number; readonly subject: CutSubject }

@@ -30,7 +30,12 @@ export const useTasks = defineStore('tasks', () => {
 
   function tellEnd(task: Task): void {
     if (task.state === 'done') notices.tell('good', `${task.title}: done`, task.message ?? '')
-    if (task.state === 'failed') notices.tell('bad', `${task.title}: broken off`, task.message ?? '')
+    if (task.state === 'failed')
+      notices.tell(
+        'bad',
+        `${task.title}: ${task.kind === 'import' ? 'has errors' : 'broken off'}`,
+        task.message ?? '',
+      )
   }
 
   async function cancel(id: string): Promise<void> {

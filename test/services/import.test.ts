@@ -47,6 +47,20 @@ describe('netlists', () => {
     })
     expect((await call('products.get', { id: productId })).netlists).toEqual([])
     expect(faults).toEqual([])
+    const [task] = (await call('tasks.list', {})).tasks
+    expect(task).toMatchObject({
+      state: 'failed',
+      message: expect.stringMatching(/^\d+ errors?, .*nothing to save$/),
+    })
+  })
+
+  test('a task says what was read', async () => {
+    const { call, addText } = testApplication()
+    await call('projects.create', { name: 'P' })
+    await call('netlists.inspect', { fileIds: [await addText('adder.bench', SERIAL_ADDER)] })
+    expect((await call('tasks.list', {})).tasks).toMatchObject([
+      { title: 'Reading adder.bench', state: 'done', message: '5 gates' },
+    ])
   })
 
   test('what a source of X costs in coverage is estimated, and added up', async () => {

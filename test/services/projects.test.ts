@@ -20,6 +20,14 @@ describe('projects', () => {
     expect(await second.call('products.get', { id: productId })).toEqual(before)
   })
 
+  test('the list of projects says what the open one holds now', async () => {
+    const application = testApplication()
+    await adderProject(application)
+    expect(await application.call('projects.recent', {})).toMatchObject({
+      projects: [{ summary: '1 product, 0 runs' }],
+    })
+  })
+
   test('a project that was moved away is shown as missing until it is forgotten', async () => {
     const { call } = testApplication()
     const { path } = await call('projects.create', { name: 'Gone' })

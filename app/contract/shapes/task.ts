@@ -17,7 +17,7 @@ export const taskShape = z.object({
   rate: z.number().nonnegative().nullable(),
   startedAtMs: atMsShape,
   endedAtMs: atMsShape.nullable(),
-  /** Why it failed, or what it made. */
+  /** Why it failed, or what it made; while it runs, what has come of it so far. */
   message: z.string().nullable(),
   runId: idShape.nullable(),
   canCancel: z.boolean(),

@@ -1,6 +1,8 @@
 import { flushPromises, mount } from '@vue/test-utils'
 import { beforeEach, expect, test } from 'vitest'
 import RecentProjects from '../../../renderer/components/start/RecentProjects.vue'
+import OpenProjectDialog from '../../../renderer/components/dialogs/OpenProjectDialog.vue'
+import { useDialogs } from '../../../renderer/stores/dialogs.ts'
 import { useNavigation } from '../../../renderer/stores/navigation.ts'
 import { useNotices } from '../../../renderer/stores/notices.ts'
 import { useProject } from '../../../renderer/stores/project.ts'
@@ -32,8 +34,11 @@ test('a project that is missing is said to be, can not be opened, and can leave 
   const [, missing] = mount(RecentProjects).findAll('tbody tr')
   expect(missing!.text()).toContain('not found')
   const buttons = missing!.findAll('button')
-  expect(buttons.map((button) => button.attributes('aria-label'))).toEqual(['Remove old from this list'])
-  await buttons[0]!.trigger('click')
+  expect(buttons.map((button) => button.attributes('aria-label'))).toEqual([
+    'Locate old…',
+    'Remove old from this list',
+  ])
+  await buttons[1]!.trigger('click')
   expect(host.asked.find(({ name }) => name === 'projects.forget')?.input).toEqual({
     path: '/gone/old.tallycut',
   })
@@ -57,4 +62,24 @@ test('one that can not be opened says why', async () => {
     title: 'The project could not be opened',
     text: 'The project file is damaged. It was left as it is.',
   })
+})
+
+test('one that was moved is located: what is opened takes its place in the list', async () => {
+  await mount(RecentProjects).get('[aria-label="Locate old…"]').trigger('click')
+  const { open } = useDialogs()
+  expect(open).toMatchObject({ kind: 'open-project', missing: { path: '/gone/old.tallycut' } })
+  const dialog = mount(OpenProjectDialog, {
+    props: { missing: open?.kind === 'open-project' ? open.missing : undefined },
+    attachTo: document.body,
+  })
+  const field = dialog.get('input')
+  expect(field.element.value).toBe('/gone/old.tallycut')
+  await field.setValue('/new/old.tallycut')
+  await dialog.get('form').trigger('submit')
+  await flushPromises()
+  const asked = host.asked.filter(({ name }) => name === 'projects.open' || name === 'projects.forget')
+  expect(asked.map(({ input }) => (input as { path: string }).path)).toEqual([
+    '/new/old.tallycut',
+    '/gone/old.tallycut',
+  ])
 })
