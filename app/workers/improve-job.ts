@@ -1,9 +1,13 @@
 import { bestPrefixOrSingle } from '../engine/choose/best-prefix-or-single.ts'
+import type { ChoiceBasis } from '../engine/choose/choice-basis.ts'
+import { compileRules } from '../engine/choose/choice-rules.ts'
 import { type ChoiceTask, unitCosts } from '../engine/choose/choice-task.ts'
+import { NO_CONSTRAINTS } from '../engine/choose/constraints.ts'
 import { cutPlaces } from '../engine/choose/cut-places.ts'
 import { detectedWeight } from '../engine/choose/detected-weight.ts'
 import { improveAtBudget } from '../engine/choose/improve-at-budget.ts'
-import { steepestWithin } from '../engine/choose/steepest-first.ts'
+import type { Order } from '../engine/choose/order.ts'
+import { steepestFirst } from '../engine/choose/steepest-first.ts'
 import { AppError } from '../contract/errors.ts'
 import type { ImprovedChoice } from '../contract/shapes/budget.ts'
 import { DeskAnswer } from './desk-answer.ts'
@@ -57,13 +61,10 @@ export function improveJob(
   if (found === null) {
     throw new AppError('out-of-reach', `Nothing could be tried within ${input.seconds} s. Give it longer.`)
   }
-  const { patterns } = found
-  const isChosen = new Set(patterns)
-  const within = steepestWithin(task, 'by-hand', patterns).sequence.subarray(0, patterns.length)
-  const others = steepest.sequence.subarray(0, steepest.chosen).filter((pattern) => !isChosen.has(pattern))
+  const { sequence, chosen } = orderBehind(basis, found.patterns)
   return new DeskAnswer({
-    order: [...within, ...others].map((pattern) => pattern + 1),
-    cut: patterns.length,
+    order: Array.from(sequence.subarray(0, chosen), (pattern) => pattern + 1),
+    cut: found.patterns.length,
     detected: found.weight,
     before,
     steepest: greedy?.weight ?? 0,
@@ -71,4 +72,13 @@ export function improveJob(
     proven: found.proven,
     seconds: secondsSoFar(),
   })
+}
+
+/** Returns the order that runs a choice steepest first, and then whatever gains most on top of it. */
+function orderBehind({ task, constraints }: ChoiceBasis, patterns: Uint32Array): Order {
+  const given = constraints?.constraints ?? NO_CONSTRAINTS
+  const { rules } = compileRules({ ...given, keep: [...given.keep, ...patterns] }, task.matrix.nPatterns)
+  const order = rules === null ? null : steepestFirst({ ...task, rules })
+  if (order === null) throw new Error('the patterns are no choice that the constraints allow')
+  return order
 }

@@ -2,12 +2,11 @@ import { defineStore } from 'pinia'
 import { computed, ref, shallowRef } from 'vue'
 import { AppError } from '../../app/contract/errors.ts'
 import type { Assumptions, Budget, BudgetView, OrderName } from '../../app/contract/shapes/budget.ts'
-import type { FieldError, ProductRecord, TesterRecord } from '../../app/contract/shapes/model.ts'
-import type { OutputOf } from '../../app/contract/operations.ts'
-import type { Run } from '../../app/contract/shapes/run.ts'
+import type { FieldError } from '../../app/contract/shapes/model.ts'
 import { api } from '../api/client.ts'
 import { clamp } from '../charts/plot-geometry.ts'
 import { firstCut } from '../components/budget/first-cut.ts'
+import { budgetRecords } from './budget-records.ts'
 import { useCutSubject } from './cut-subject.ts'
 
 export type BudgetState =
@@ -24,12 +23,8 @@ const SETTLE_MS = 120
 export const useBudget = defineStore('budget', () => {
   const subjects = useCutSubject()
   const state = shallowRef<BudgetState>({ status: 'idle' })
-  const product = shallowRef<ProductRecord | null>(null)
-  const runs = shallowRef<readonly Run[]>([])
-  const budgets = shallowRef<readonly Budget[]>([])
-  const names = shallowRef<ReadonlyMap<string, string>>(new Map())
-  const testers = shallowRef<readonly TesterRecord[]>([])
-  const fields = shallowRef<OutputOf<'fields.get'> | null>(null)
+  const records = budgetRecords()
+  const { product, runs, budgets, doneRuns, loadRecords, loadForms } = records
   const runId = ref(0)
   const order = ref<OrderName>('steepest')
   const cut = ref(0)
@@ -45,8 +40,6 @@ export const useBudget = defineStore('budget', () => {
   const columns = computed(() => view.value?.orders.find((each) => each.order === order.value) ?? null)
   const patterns = computed(() => columns.value?.patterns ?? 0)
   const run = computed(() => runs.value.find(({ id }) => id === runId.value) ?? null)
-  const doneRuns = computed(() => runs.value.filter(({ state: each }) => each === 'done'))
-  const inUse = computed(() => budgets.value.find((budget) => budget.inUse) ?? null)
 
   /** Order and cut to be shown once the figures for them are here; what was shown stays until then. */
   let coming: { readonly order: OrderName; readonly cut?: number } | null = null
@@ -90,28 +83,6 @@ export const useBudget = defineStore('budget', () => {
     } catch (error) {
       state.value = { status: 'failed', message: messageOf(error) }
     }
-  }
-
-  async function loadRecords(productId: number): Promise<void> {
-    const records = await api.call('products.get', { id: productId })
-    product.value = records.product
-    runs.value = records.runs
-    budgets.value = records.budgets
-    names.value = new Map([
-      ...records.netlists.map(({ id, name }) => [`netlist ${id}`, name] as const),
-      ...records.patternSets.map(({ id, name }) => [`set ${id}`, name] as const),
-    ])
-  }
-
-  /** "Run 14: netlist r5, pattern set B". */
-  function nameOfRun({ number, netlistId, patternSetId }: Run): string {
-    const netlist = names.value.get(`netlist ${netlistId}`) ?? '–'
-    return `Run ${number}: netlist ${netlist}, ${names.value.get(`set ${patternSetId}`) ?? '–'}`
-  }
-
-  async function loadForms(): Promise<void> {
-    testers.value = (await api.call('testers.list', {})).testers
-    fields.value ??= await api.call('fields.get', {})
   }
 
   /**
@@ -266,11 +237,7 @@ export const useBudget = defineStore('budget', () => {
 
   return {
     state,
-    product,
-    runs,
-    budgets,
-    testers,
-    fields,
+    ...records,
     runId,
     order,
     cut,
@@ -283,12 +250,7 @@ export const useBudget = defineStore('budget', () => {
     columns,
     patterns,
     run,
-    doneRuns,
-    inUse,
     open,
-    nameOfRun,
-    loadRecords,
-    loadForms,
     loadView,
     searchLonger,
     moveTo,

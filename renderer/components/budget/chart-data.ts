@@ -3,13 +3,14 @@ import { detectedColumn } from './cut-figures.ts'
 
 /** Returns the data behind the chart as CSV (RFC 4180): one row for each number of patterns, plain numbers. */
 export function chartCsv(view: BudgetView, ceiling: Float64Array | null, n: number): string {
-  const { orders, total } = view
+  const { orders, total, faults, isWeighted } = view
   const head = [
     'patterns',
     ...orders.flatMap(({ order }) => [
       `${order} pattern`,
       `${order} detected`,
       `${order} coverage`,
+      ...(isWeighted ? [`${order} plain coverage`] : []),
       `${order} cycles`,
       `${order} ms on one site`,
       `${order} ms per device`,
@@ -28,6 +29,7 @@ export function chartCsv(view: BudgetView, ceiling: Float64Array | null, n: numb
         k === 0 ? '' : (columns.pattern[k - 1] ?? ''),
         detected,
         detected / total,
+        ...(isWeighted ? [(columns.detectedPlain[k] ?? NaN) / faults] : []),
         columns.cycles[k] ?? '',
         columns.milliseconds[k] ?? '',
         columns.perDeviceMilliseconds[k] ?? '',

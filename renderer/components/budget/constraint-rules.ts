@@ -10,72 +10,82 @@ type Patterns = Constraints['keep'][number]
 /** Constraints that name single patterns. */
 export type ListKind = 'keep' | 'leaveOut' | 'first'
 
+type Range = readonly [from: number, to: number]
+
+function rangeOf(entry: Patterns): Range {
+  if (typeof entry === 'number') return [entry, entry]
+  const [from = 0, to = from] = entry.split('-').map(Number)
+  return [from, to]
+}
+
 /** Returns how many patterns entries such as 7 or "10-20" name. */
 export function countPatterns(entries: readonly Patterns[]): number {
   return entries.reduce<number>((sum, entry) => {
-    const [from = 0, to = from] = String(entry).split('-').map(Number)
+    const [from, to] = rangeOf(entry)
     return sum + to - from + 1
   }, 0)
 }
 
+function holds([from, to]: Range, pattern: number): boolean {
+  return pattern >= from && pattern <= to
+}
+
 function names(entries: readonly Patterns[], pattern: number): boolean {
-  return entries.some((entry) => {
-    const [from = 0, to = from] = String(entry).split('-').map(Number)
-    return pattern >= from && pattern <= to
-  })
+  return entries.some((entry) => holds(rangeOf(entry), pattern))
 }
 
-/** Returns what constraints say of one pattern, in a few words; empty where they say nothing. */
-export function ruleOf(constraints: Constraints | null, pattern: number): string {
-  if (constraints === null) return ''
-  const { keep, leaveOut, together, before, first } = constraints
-  const place = placeIn(first, pattern)
-  const group = together.find((entries) => names(entries, pattern))
-  const afterIt = before.filter(([a]) => names([a], pattern)).map(([, b]) => b)
-  const beforeIt = before.filter(([, b]) => names([b], pattern)).map(([a]) => a)
-  const rules = [
-    ...(names(leaveOut, pattern) ? ['left out'] : []),
-    ...(place > 0 ? [`first, place ${place}`] : names(keep, pattern) ? ['kept'] : []),
-    ...(group ? [`with ${listed(othersOf(group, pattern))}`] : []),
-    ...(beforeIt.length > 0 ? [`after ${listed(beforeIt)}`] : []),
-    ...(afterIt.length > 0 ? [`before ${listed(afterIt)}`] : []),
-  ]
-  return rules.join('; ')
+/** Returns a function that says what constraints hold for a pattern, in a few words; empty where none do. */
+export function ruleReader(constraints: Constraints | null): (pattern: number) => string {
+  if (constraints === null) return () => ''
+  const keep = constraints.keep.map(rangeOf)
+  const leaveOut = constraints.leaveOut.map(rangeOf)
+  const first = constraints.first.map(rangeOf)
+  const together = constraints.together.map((group) => group.map(rangeOf))
+  const before = constraints.before.map(([a, b]) => [rangeOf(a), rangeOf(b)] as const)
+  const isIn = (ranges: readonly Range[], pattern: number): boolean =>
+    ranges.some((range) => holds(range, pattern))
+  return (pattern) => {
+    const place = placeIn(first, pattern)
+    const group = together.find((ranges) => isIn(ranges, pattern))
+    const later = before.flatMap(([a, b]) => (holds(a, pattern) ? [b] : []))
+    const earlier = before.flatMap(([a, b]) => (holds(b, pattern) ? [a] : []))
+    const rules = [
+      ...(isIn(leaveOut, pattern) ? ['left out'] : []),
+      ...(place > 0 ? [`first, place ${place}`] : isIn(keep, pattern) ? ['kept'] : []),
+      ...(group ? [`with ${listed(group.flatMap((range) => rangeWithout(range, pattern)))}`] : []),
+      ...(earlier.length > 0 ? [`after ${listed(earlier)}`] : []),
+      ...(later.length > 0 ? [`before ${listed(later)}`] : []),
+    ]
+    return rules.join('; ')
+  }
 }
 
-function placeIn(entries: readonly Patterns[], pattern: number): number {
+/** The place, from 1, at which ranges one after the other name a pattern; 0 where they do not. */
+function placeIn(ranges: readonly Range[], pattern: number): number {
   let place = 1
-  for (const entry of entries) {
-    const [from = 0, to = from] = String(entry).split('-').map(Number)
-    if (pattern >= from && pattern <= to) return place + pattern - from
+  for (const [from, to] of ranges) {
+    if (holds([from, to], pattern)) return place + pattern - from
     place += to - from + 1
   }
   return 0
 }
 
-function othersOf(group: readonly Patterns[], pattern: number): Patterns[] {
-  return group.flatMap((entry) => {
-    if (!names([entry], pattern)) return [entry]
-    const [from = 0, to = from] = String(entry).split('-').map(Number)
-    return [...rangeOf(from, pattern - 1), ...rangeOf(pattern + 1, to)]
-  })
+function rangeWithout([from, to]: Range, pattern: number): Range[] {
+  if (!holds([from, to], pattern)) return [[from, to]]
+  const sides: readonly Range[] = [
+    [from, pattern - 1],
+    [pattern + 1, to],
+  ]
+  return sides.filter(([start, end]) => start <= end)
 }
 
-function rangeOf(from: number, to: number): Patterns[] {
-  return from > to ? [] : [from === to ? from : `${from}-${to}`]
-}
-
-function listed(entries: readonly Patterns[]): string {
-  const shown = entries.slice(0, NAMED).map((entry) => String(entry).replace('-', '–'))
-  return entries.length > NAMED ? `${shown.join(', ')} …` : shown.join(', ')
+function listed(ranges: readonly Range[]): string {
+  const shown = ranges.slice(0, NAMED).map(([from, to]) => (from === to ? `${from}` : `${from}–${to}`))
+  return ranges.length > NAMED ? `${shown.join(', ')} …` : shown.join(', ')
 }
 
 /** Returns whether a pattern is named by lists of kept, left out or first ones. */
-export function isListed(
-  constraints: Constraints | null,
-  kind: 'keep' | 'leaveOut' | 'first',
-  pattern: number,
-): boolean {
+export function isListed(constraints: Constraints | null, kind: ListKind, pattern: number): boolean {
   return constraints !== null && names(constraints[kind], pattern)
 }
 
@@ -113,7 +123,11 @@ function outOfLists(constraints: Constraints, pattern: number): Constraints {
 }
 
 function without(entries: readonly Patterns[], pattern: number): Patterns[] {
-  return entries.flatMap((entry) => (names([entry], pattern) ? othersOf([entry], pattern) : [entry]))
+  return entries.flatMap((entry) =>
+    names([entry], pattern)
+      ? rangeWithout(rangeOf(entry), pattern).map(([from, to]) => (from === to ? from : `${from}-${to}`))
+      : [entry],
+  )
 }
 
 const NO_CONSTRAINTS: Constraints = { keep: [], leaveOut: [], together: [], before: [], first: [] }

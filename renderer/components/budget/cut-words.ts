@@ -26,10 +26,17 @@ export function cutSentence(
 ): readonly SentencePhrase[] {
   const more = next.cut - at.cut
   const times = n > 1 ? ` detected ${n} times or more` : ''
-  const plainly = textOf(formats.coverage(at.plainCoverage))
-  const base = isWeighted
-    ? ` of the weight of ${formats.count(faults).value} faults${times} (${plainly} of the faults themselves)`
-    : ` of ${formats.count(total).value} faults${times}`
+  const coverage = isWeighted
+    ? [
+        strong(textOf(formats.coverage(at.coverage))),
+        plain(` by weight${times}, `),
+        strong(textOf(formats.coverage(at.plainCoverage))),
+        plain(` of ${formats.count(faults).value} faults`),
+      ]
+    : [
+        strong(textOf(formats.coverage(at.coverage))),
+        plain(` of ${formats.count(total).value} faults${times}`),
+      ]
   return [
     {
       text: `${formats.count(at.cut).value} of ${formats.count(at.patterns).value} patterns`,
@@ -39,8 +46,8 @@ export function cutSentence(
     plain(' in '),
     strong(textOf(formats.milliseconds(at.milliseconds))),
     plain(': '),
-    strong(textOf(formats.coverage(at.coverage))),
-    plain(`${base}, an estimated `),
+    ...coverage,
+    plain(', an estimated '),
     strong(textOf(formats.dppm(at.dppm))),
     plain(`. ${nextWords(at, next, more, formats)}`),
   ]
@@ -85,6 +92,19 @@ export function keptWords(has: { time: boolean; memory: boolean; goal: boolean }
   const parts = [...(fits === '' ? [] : [`fits ${fits}`]), ...(has.goal ? ['meets the goal'] : [])]
   const text = parts.join(', ')
   return text === '' ? 'No limit is set.' : `${text.charAt(0).toUpperCase()}${text.slice(1)}.`
+}
+
+/** Returns what the height of the chart counts. */
+export function coverageAxisTitle(
+  { total, faults, isWeighted }: Pick<BudgetView, 'total' | 'faults' | 'isWeighted'>,
+  n: number,
+  formats: NumberFormats,
+): string {
+  const times = n > 1 ? ` detected ${n} times` : ''
+  const count = formats.count(isWeighted ? faults : total).value
+  return isWeighted
+    ? `Weighted coverage${times}, % of the weight of ${count} faults`
+    : `Fault coverage${times}, % of ${count} faults`
 }
 
 /** Returns what a curve counts: "faults", with how often or by what weight they count. */

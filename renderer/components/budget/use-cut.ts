@@ -37,6 +37,10 @@ export function useCut() {
       ? cutSentence(figures.value, after.value, budget.view, formats, n.value)
       : [],
   )
+  const inForce = computed(() => {
+    const { constraints } = budget.assumptions ?? {}
+    return constraints ? `Constraints in force: ${constraintsInWords(constraints, formats)}.` : ''
+  })
   const state = computed(() => {
     const { view } = budget
     if (!view || !figures.value || !broken.value) return null
@@ -51,7 +55,6 @@ export function useCut() {
     }
     const bound = ceiling.ceiling?.ceiling[budget.cut]
     const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view, n.value, formats)
-    const inForce = constraints ? `Constraints in force: ${constraintsInWords(constraints, formats)}.` : ''
     const fewest =
       budget.order === 'smallest' && view.smallest
         ? `Smallest complete set: ${smallestWords(view.smallest, formats)}.`
@@ -59,7 +62,7 @@ export function useCut() {
     return {
       isBroken: trouble !== '',
       trouble,
-      text: [trouble === '' ? keptWords(has) : '', inForce, fewest, proof]
+      text: [trouble === '' ? keptWords(has) : '', inForce.value, fewest, proof]
         .filter((part) => part !== '')
         .join(' '),
     }
@@ -77,12 +80,15 @@ export function useCut() {
     ].filter((cut): cut is number => cut !== null && Number.isFinite(cut) && cut >= 0)
     return [...new Set(cuts)].sort((a, b) => a - b)
   })
-  const ends = computed(() => ({
-    fewest: limits.value ? (fewestForGoal(limits.value) ?? 0) : 0,
-    most: limits.value
-      ? Math.min(mostInside(limits.value, budget.patterns), budget.patterns)
-      : budget.patterns,
-  }))
+  /** Where Home and End lead: the fewest that meet the goal, the most that fit, as far as constraints let them. */
+  const ends = computed(() => {
+    const { patterns } = budget
+    const mayCut = budget.columns?.mayCut
+    const fewest = limits.value ? (fewestForGoal(limits.value) ?? 0) : 0
+    const most = limits.value ? Math.min(mostInside(limits.value, patterns), patterns) : patterns
+    const kept = { fewest: mayCut?.indexOf(1, fewest) ?? -1, most: mayCut?.lastIndexOf(1, most) ?? -1 }
+    return { fewest: kept.fewest < 0 ? fewest : kept.fewest, most: kept.most < 0 ? most : kept.most }
+  })
 
   function figuresOf(cut: number) {
     return budget.view && budget.columns ? figuresAt(budget.view, budget.columns, cut, n.value) : null

@@ -2,7 +2,7 @@ import { computed, nextTick, onBeforeUnmount, ref, type Ref, watch } from 'vue'
 import { clamp } from '../../charts/plot-geometry.ts'
 import { formats } from '../../formats.ts'
 import { useBudget } from '../../stores/budget.ts'
-import { ruleOf } from './constraint-rules.ts'
+import { ruleReader } from './constraint-rules.ts'
 import { detectedColumn } from './cut-figures.ts'
 import { sortedRows, type SortKey } from './pattern-rows.ts'
 
@@ -60,6 +60,8 @@ export function usePatternWindow(scroller: Readonly<Ref<HTMLElement | null>>, n:
     Array.from({ length: Math.max(0, last.value - first.value) }, (_, index) => rowAt(first.value + index)),
   )
 
+  const ruleOf = computed(() => ruleReader(budget.assumptions?.constraints ?? null))
+
   function gainAt(at: number): number {
     return (detected.value[at + 1] ?? 0) - (detected.value[at] ?? 0)
   }
@@ -74,7 +76,7 @@ export function usePatternWindow(scroller: Readonly<Ref<HTMLElement | null>>, n:
       row,
       at,
       pattern,
-      rule: ruleOf(budget.assumptions?.constraints ?? null, pattern),
+      rule: ruleOf.value(pattern),
       cells: [
         formats.count(at + 1).value,
         formats.count(pattern).value,

@@ -11,6 +11,7 @@ import { cutAfterKey, snapped, typedCut } from '../../../renderer/components/bud
 import {
   brokenWords,
   ceilingWords,
+  coverageAxisTitle,
   cutSentence,
   keptWords,
 } from '../../../renderer/components/budget/cut-words.ts'
@@ -115,4 +116,21 @@ test('figures with a limit say what is left of it or by how much it is passed', 
     figureRows(view, at(cut), 1, formats).flatMap(({ meter }) => (meter ? [meter.left] : []))
   expect(words(330)).toEqual(['1.87 left', '', '475 over'])
   expect(words(640)).toEqual(['1.54 over', 'reload forbidden', '665 below'])
+})
+
+test('with weights, sentence and axis say what counts by weight and what plainly', () => {
+  const weighted = { ...view, isWeighted: true, total: 90_000 }
+  const figures = { ...at(400), coverage: 0.9883, plainCoverage: 0.9728 }
+  const sentence = cutSentence(figures, figures, weighted, formats, 1)
+    .map((phrase) => phrase.text)
+    .join('')
+    .replaceAll('\u00a0', ' ')
+  expect(sentence).toContain('98.83 % by weight, 97.28 % of 40,000 faults, an estimated')
+  expect(coverageAxisTitle(weighted, 3, formats)).toBe(
+    'Weighted coverage detected 3 times, % of the weight of 40,000 faults',
+  )
+  expect(coverageAxisTitle(view, 1, formats)).toBe('Fault coverage, % of 40,000 faults')
+  expect(ceilingWords(figures, 50_000, weighted, 3, formats)).toContain(
+    'more than 50,000 of the weight of faults 3 times or more',
+  )
 })
