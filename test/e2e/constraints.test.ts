@@ -57,6 +57,7 @@ describe.skipIf(!hasChromium)('constraints, weights and better choices in the wi
   it('imposes rules on a pattern from its row, by pointer and by keys', async () => {
     await type('50')
     await expect.poll(() => page.locator('tr.last td:first-child').allTextContents()).toEqual(['50'])
+    await settled()
     const pattern = await page.locator('tr.last td:nth-child(2)').textContent()
     await page.locator('tr.last').click({ button: 'right' })
     await page.getByRole('menu').waitFor()
@@ -65,6 +66,7 @@ describe.skipIf(!hasChromium)('constraints, weights and better choices in the wi
     await expect.poll(state).toContain('1 left out')
     await table().press('Control+z')
     await expect.poll(state).not.toContain('left out')
+    await settled()
     expect(await page.locator('tr.last td:nth-child(2)').textContent()).toBe(pattern)
 
     await table().focus()
@@ -139,11 +141,11 @@ describe.skipIf(!hasChromium)('constraints, weights and better choices in the wi
     expect(await violationsOf(page)).toEqual([])
     await page.getByLabel('Weights file').setInputFiles(file('block,weight\nnowhere,2\nmultiply,5\n'))
     await page.getByRole('button', { name: 'Set weights', exact: true }).click()
-    await page.getByText('Weighted coverage').waitFor()
-    expect(await page.getByText('Plain coverage').isVisible()).toBe(true)
+    await page.getByText('Weighted coverage', { exact: true }).waitFor()
+    expect(await page.getByText('Plain coverage', { exact: true }).isVisible()).toBe(true)
     expect(await page.getByText('Weights: Line 2: nothing in the netlist is called').isVisible()).toBe(true)
     await table().press('Control+z')
-    await page.getByText('Weighted coverage').waitFor({ state: 'detached' })
+    await page.getByText('Weighted coverage', { exact: true }).waitFor({ state: 'detached' })
   })
 
   it('a budget keeps all of it and shows it again exactly', async () => {
