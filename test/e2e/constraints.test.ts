@@ -124,7 +124,7 @@ describe.skipIf(!hasChromium)('constraints, weights and better choices in the wi
     await page.getByLabel('Detections a fault needs').press('Enter')
     await expect.poll(() => page.getByTestId('answer').textContent()).toContain('detected 3 times or more')
     await page.getByRole('button', { name: 'Prove the ceiling' }).click()
-    await page.getByRole('button', { name: 'Ceiling for 3 detections' }).waitFor({ timeout: 60_000 })
+    await page.getByRole('button', { name: 'Ceiling, 3 times' }).waitFor({ timeout: 60_000 })
     expect(await state()).toMatch(
       /No choice of 80 of these patterns can detect more than [\d,]+ faults 3 times or more/,
     )

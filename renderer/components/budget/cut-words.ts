@@ -129,12 +129,20 @@ export function ceilingWords(
     : `${limit} as many: no better choice exists.`
 }
 
-/** Returns what is known of the smallest complete set: "best found 52 patterns, at least 50 (not proven)". */
-export function smallestWords({ patterns, lowerBound, proven }: Smallest, formats: NumberFormats): string {
+/**
+ * Returns what is known of the smallest complete set: "best found 52 patterns, at least 50 (not proven)". It is complete
+ * in single detections, however many (n) the curves count.
+ */
+export function smallestWords(
+  { patterns, lowerBound, proven }: Smallest,
+  n: number,
+  formats: NumberFormats,
+): string {
   const count = (value: number): string => formats.count(value).value
-  return proven
+  const known = proven
     ? `${count(patterns)} patterns, proven the fewest`
     : `best found ${count(patterns)} patterns, at least ${count(lowerBound)} (not proven)`
+  return n > 1 ? `${known}, for one detection of each fault` : known
 }
 
 /** Returns where the nearest cut lies that keeps the constraints; empty where this one does. */

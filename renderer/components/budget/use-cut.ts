@@ -57,7 +57,7 @@ export function useCut() {
     const proof = bound === undefined ? '' : ceilingWords(figures.value, bound, view, n.value, formats)
     const fewest =
       budget.order === 'smallest' && view.smallest
-        ? `Smallest complete set: ${smallestWords(view.smallest, formats)}.`
+        ? `Smallest complete set: ${smallestWords(view.smallest, n.value, formats)}.`
         : ''
     return {
       isBroken: trouble !== '',

@@ -122,10 +122,10 @@ test('a cut against the constraints names the nearest that keeps them', () => {
 })
 
 test('the smallest complete set says what is proven of it', () => {
-  expect(smallestWords({ patterns: 52, lowerBound: 50, proven: false }, formats)).toBe(
+  expect(smallestWords({ patterns: 52, lowerBound: 50, proven: false }, 1, formats)).toBe(
     'best found 52 patterns, at least 50 (not proven)',
   )
-  expect(smallestWords({ patterns: 52, lowerBound: 52, proven: true }, formats)).toBe(
-    '52 patterns, proven the fewest',
+  expect(smallestWords({ patterns: 52, lowerBound: 52, proven: true }, 3, formats)).toBe(
+    '52 patterns, proven the fewest, for one detection of each fault',
   )
 })
