@@ -37,6 +37,7 @@ export const OPERATION_NAMES = [
   'runs.cancel',
   'runs.resume',
   'runs.delete',
+  'runs.curve',
   'budgets.view',
   'budgets.ceiling',
   'budgets.smallest',

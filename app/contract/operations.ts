@@ -10,7 +10,7 @@ import {
   orderNameShape,
   smallestShape,
 } from './shapes/budget.ts'
-import { bytesColumn } from './shapes/columns.ts'
+import { bytesColumn, float64Column } from './shapes/columns.ts'
 import { idShape, nameShape, noteShape } from './shapes/ids.ts'
 import {
   fieldErrorShape,
@@ -158,6 +158,8 @@ export const operations = {
   'runs.cancel': command(byId, runShape),
   'runs.resume': command(byId, runShape),
   'runs.delete': command(byId, undo),
+  /** Faults detected after each pattern that a run has done since the program began; null before its first segment. */
+  'runs.curve': query(byId, z.object({ detected: float64Column.nullable() })),
 
   /** Orders, figures at every cut and markers of one finished run. */
   'budgets.view': query(

@@ -13,6 +13,8 @@ import { found, type Session } from './session.ts'
 import { PARTS_PER_SEGMENT, storedNetlist, storedPatterns, storedSegments } from './stored-inputs.ts'
 import type { QueuedTask, TaskContext, Tasks } from './tasks.ts'
 
+const CURVES_KEPT = 4
+
 const formats = numberFormats('en')
 
 type Entry = { readonly store: ProjectStore; readonly runId: number; readonly task: QueuedTask }
@@ -26,10 +28,12 @@ export function createRuns(options: {
   readonly engine: string
   readonly now: () => number
   readonly onFault: (where: string, error: unknown) => void
-}): Pick<Handlers, 'runs.start' | 'runs.cancel' | 'runs.resume' | 'runs.delete'> {
+}): Pick<Handlers, 'runs.start' | 'runs.cancel' | 'runs.resume' | 'runs.delete' | 'runs.curve'> {
   const { session, events, tasks, desk, engine, now, onFault } = options
   const queue: Entry[] = []
   let current: Entry | null = null
+  /** The last runs' curves so far, by id. */
+  const curves = new Map<number, Float64Array>()
 
   const changed = ({ productId }: Run): void => events.emit('changed', { noun: 'run', productId })
 
@@ -105,7 +109,11 @@ export function createRuns(options: {
         store.packed.add({ runId }, 'segment', segment * PARTS_PER_SEGMENT + part, bytes)
         if (standing === null) return
         store.runs.setSegments(runId, segment + 1)
-        soFar = soFarOf(stand(store, runId, { ...standing, seconds: seconds() }))
+        const { curve, ...changes } = standing
+        curves.delete(runId)
+        curves.set(runId, curve)
+        for (const old of [...curves.keys()].slice(0, -CURVES_KEPT)) curves.delete(old)
+        soFar = soFarOf(stand(store, runId, { ...changes, seconds: seconds() }))
       })
     }
     let lost: unknown = null
@@ -138,6 +146,7 @@ export function createRuns(options: {
   }
 
   session.onClose((store) => {
+    curves.clear()
     const reason = 'The project was closed while this run was under way. It can be resumed where it stood.'
     const waiting = queue.splice(0)
     for (const { runId, task } of waiting) {
@@ -185,6 +194,7 @@ export function createRuns(options: {
       if (isUnderWay(run.state) || run.state === 'done') return run
       return enqueue(store, run)
     },
+    'runs.curve': ({ id }) => ({ detected: curves.get(id) ?? null }),
     'runs.delete': ({ id }) => {
       const { runs, trash } = session.writable()
       const run = found(runs.get(id))

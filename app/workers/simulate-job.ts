@@ -1,6 +1,7 @@
 import { AppError } from '../contract/errors.ts'
 import type { Run } from '../contract/shapes/run.ts'
 import { PATTERNS_PER_BLOCK } from '../engine/simulate/pattern-set.ts'
+import { curveSoFar } from './curve-so-far.ts'
 import { DeskAnswer } from './desk-answer.ts'
 import type { DeskContext } from './desk-context.ts'
 import { deskPool } from './desk-pool.ts'
@@ -28,6 +29,8 @@ export type SimulateJob = {
     readonly standing: {
       readonly patternsDone: number
       readonly figures: NonNullable<Run['figures']>
+      /** Faults detected after each pattern so far; length patternsDone + 1. */
+      readonly curve: Float64Array<ArrayBuffer>
     } | null
   }
 }
@@ -89,10 +92,15 @@ export async function simulateJob(
     sum.add(finished)
     done = to
     const parts = packSegment(finished)
-    const standing = { patternsDone: done, figures: runFigures(faults, sum.profile()) }
+    const profile = sum.profile()
+    const curve = curveSoFar(faults, profile)
+    const standing = { patternsDone: done, figures: runFigures(faults, profile), curve }
     parts.forEach((bytes, part) => {
       const isLast = part === parts.length - 1
-      context.send({ segment, part, bytes, standing: isLast ? standing : null }, [bytes.buffer])
+      context.send({ segment, part, bytes, standing: isLast ? standing : null }, [
+        bytes.buffer,
+        ...(isLast ? [curve.buffer] : []),
+      ])
     })
     const seconds = (performance.now() - startedAt) / 1000
     blocks = Math.max(1, Math.min(4 * blocks, Math.floor((blocks * SEGMENT_SECONDS) / seconds)))

@@ -52,7 +52,7 @@ export const useBudget = defineStore('budget', () => {
 
   /** Opens a product at the cut that it was last looked at with, or at one that a link names. */
   async function open(productId: number, link: Readonly<Record<string, string>> = {}): Promise<void> {
-    if (product.value?.id !== productId) {
+    if (product.value?.id !== productId || state.value.status === 'no-run') {
       wantsSmallest = false
       view.value = null
       state.value = { status: 'loading' }

@@ -41,6 +41,19 @@ describe('runs', () => {
     })
   })
 
+  test('a run tells what its patterns have detected so far, in file order', async () => {
+    const application = testApplication()
+    const { runId } = await finishedRun(application)
+    const { detected } = await application.call('runs.curve', { id: runId })
+    const { view } = await application.call('budgets.view', {
+      runId,
+      orders: ['as-delivered'],
+      assumptions: ASSUMPTIONS,
+    })
+    expect(detected).toEqual(view?.orders[0]?.detected)
+    expect(await application.call('runs.curve', { id: 999 })).toEqual({ detected: null })
+  })
+
   test('a run that is under way keeps what it needs, and is numbered on after one was deleted', async () => {
     const application = testApplication()
     const { call } = application
