@@ -152,7 +152,7 @@ describe.skipIf(!hasChromium)('the main job in a browser', () => {
     await page.getByRole('button', { name: 'Bench garden' }).click()
     await page.getByRole('heading', { level: 1, name: 'Fennel' }).waitFor()
     await page.getByRole('link', { name: 'Launch' }).click()
-    await expect.poll(() => answerOf(page)).toContain('60 of 1,000 patterns')
+    await expect.poll(() => answerOf(page), { timeout: 10_000 }).toContain('60 of 1,000 patterns')
   })
 
   it('takes back what was deleted', async () => {
