@@ -6,7 +6,7 @@ export function planJson({ plan, lost, constraintCosts, improvement }: PlanOfFil
   return {
     ...result,
     orderName,
-    lost: lost.filter((block) => block.lost > 0),
+    lost: lost === null ? null : lost.filter((block) => block.lost > 0),
     constraintCosts: constraintCosts.map(({ part, cost, isInTheWay }) => ({
       kind: part.kind,
       entry: JSON.parse(part.text) as unknown,

@@ -32,6 +32,15 @@ export const PLAN_OPTIONS = {
     value: 'S',
     help: 'searches for a smallest set and a better choice end with the best so far after S seconds (default 30)',
   },
+  sample: {
+    value: 'N',
+    help: 'choose on N faults drawn at random and quote the coverage from N others; done by itself where the record of all would take over 1 GB',
+  },
+  accuracy: {
+    value: 'A',
+    help: 'the same with as many faults as a band of ± A around a coverage of 0.9 takes, such as 0.005',
+  },
+  seed: { value: 'N', help: 'begins the random numbers that faults are drawn by (default 1)' },
   'max-patterns': { value: 'N', help: 'at most N patterns; limits are inclusive and may be combined' },
   'max-cycles': { value: 'N', help: 'at most N tester cycles' },
   'max-ms': { value: 'T', help: 'at most T milliseconds on one site, set-up included' },

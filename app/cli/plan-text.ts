@@ -7,7 +7,7 @@ import { aligned, formats } from './print-text.ts'
 /** A plan for people: the answer in a sentence, and the figures of the cut. */
 export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): string {
   const { result, pricing } = plan
-  const { budget, ceiling, gap, smallest } = result
+  const { budget, ceiling, gap, smallest, sample } = result
   const { count, coverage, milliseconds, dppm, costPerThousand } = formats
   const bound = ceiling[budget.patterns - 1]
   const rows: [string, string][] = [
@@ -21,10 +21,17 @@ export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): 
       `${count(budget.detected).value} of ${count(result.total).value} ${countedWords(result)}, ${textOf(coverage(budget.coverage))}`,
     ],
   ]
+  if (sample !== undefined) {
+    const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
+    rows.push([
+      'Sample',
+      `${count(sample.size).value} of ${count(sample.population).value} faults: all of them lie between ${coverage(coverageLow).value} and ${textOf(coverage(coverageHigh))} (3 sigma), ${dppm(dppmLow).value} and ${textOf(dppm(dppmHigh))}`,
+    ])
+  }
   if (bound !== undefined) {
     rows.push([
       'Ceiling',
-      `no choice of ${count(budget.patterns).value} of these patterns detects more than ${count(bound).value}`,
+      `no choice of ${count(budget.patterns).value} of these patterns detects more than ${count(bound).value}${sample === undefined ? '' : ', by the faults drawn'}`,
     ])
   }
   if (gap !== null && gap > 0)

@@ -4,15 +4,16 @@ import type { Goal, Limit } from '../engine/choose/budget.ts'
 import { ceilingProof } from '../engine/choose/ceiling-proof.ts'
 import { findInstallation, versionOf } from '../installation.ts'
 import type { ReportFormat } from '../report/report-of-plan.ts'
-import { readRunFiles, simulateFiles, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
+import { readRunFiles, simulateForPlan, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
 import { budgetRows } from '../services/on-files/fault-rows.ts'
 import { inputFile } from '../services/on-files/input-file.ts'
 import { PATTERN_EXTENSIONS, patternParts } from '../workers/pattern-parts.ts'
 import type { PlanChoice } from '../services/on-files/plan-choice.ts'
-import { planOfFiles, refuseTooLarge, type PlanOfFiles } from '../services/on-files/plan-of-files.ts'
+import { planOfFiles, type PlanOfFiles } from '../services/on-files/plan-of-files.ts'
 import { planReport, type ReportOrigin } from '../services/on-files/plan-report.ts'
 import { checkConstraints, readAssumptionFiles } from '../services/on-files/read-assumptions.ts'
 import type { NetlistFiles } from '../services/on-files/read-netlist-files.ts'
+import { samplesOf, type SampleRequest, type Samples } from '../services/on-files/sampling.ts'
 import { createHighsSolver } from '../workers/highs-solver.ts'
 import { UsageError, type Arguments, type NumberRange } from './arguments.ts'
 import { ExitCode, type Command } from './command.ts'
@@ -30,6 +31,8 @@ import { checkOutput, writeFile } from './write-file.ts'
 
 const REPORT_FORMATS: readonly ReportFormat[] = ['html', 'pdf', 'xlsx', 'csv']
 const ASSUMPTIONS = ['tester', 'product', 'program', 'constraints', 'weights'] as const
+const NO_FAULTS_OF_SAMPLE =
+  '--faults lists what becomes of every fault under the budget, and a plan from a sample knows that of the faults drawn alone. Leave it away; "coverage --faults" lists them under the whole set.'
 const OUTPUTS = ['faults', 'report', 'export', 'proof'] as const
 
 export const plan: Command = {
@@ -53,13 +56,17 @@ export const plan: Command = {
     try {
       const assumptions = await readAssumptionFiles(request.assumptions, terminal)
       const files = await readRunFiles(request.netlist, request.patterns, terminal)
-      refuseTooLarge(files)
+      const samples = samplesOf(files, request.sample)
       checkConstraints(assumptions, files.patterns.nPatterns, terminal)
-      const run = await simulateFiles(files, { detectionLimit: 0, wantMatrix: true }, simulator, terminal)
+      if (samples !== null) {
+        if (args.text('faults') !== null) throw new UsageError(NO_FAULTS_OF_SAMPLE)
+        warnOfSamples(samples, request.choice, terminal)
+      }
+      const run = await simulateForPlan(files, samples?.classes ?? null, simulator, terminal)
       warnOfMismatches(run, terminal)
       const solver = createHighsSolver(findInstallation(io.entryUrl).thread('highs-worker'))
       const patternFile = basename(request.patterns[0] ?? '')
-      const planned = planOfFiles(run, assumptions, request.choice, solver, patternFile, terminal)
+      const planned = planOfFiles(run, samples, assumptions, request.choice, solver, patternFile, terminal)
       await writeOutputs(args, request, run, planned, terminal, io)
       terminal.clear()
       if (args.has('json')) {
@@ -80,6 +87,7 @@ type PlanRequest = {
   readonly patterns: readonly string[]
   readonly assumptions: Readonly<Record<(typeof ASSUMPTIONS)[number], string | null>>
   readonly choice: PlanChoice
+  readonly sample: SampleRequest
 }
 
 /** Reads and checks everything that the command line alone tells, so that nothing fails after the work is done. */
@@ -102,7 +110,35 @@ async function requestOf(args: Arguments): Promise<PlanRequest> {
   if (report !== null) extensionOf('report', report, REPORT_FORMATS)
   const exported = args.text('export')
   if (exported !== null) extensionOf('export', exported, Object.keys(PATTERN_EXTENSIONS))
-  return { netlist, patterns, assumptions, choice: choiceOf(args) }
+  return { netlist, patterns, assumptions, choice: choiceOf(args), sample: sampleOf(args) }
+}
+
+function sampleOf(args: Arguments): SampleRequest {
+  const size = args.number('sample', { least: 1, most: 1e9, whole: true, what: 'a number of faults from 1' })
+  const accuracy = args.number('accuracy', { least: 0.0001, most: 0.5, what: 'a share from 0.0001 to 0.5' })
+  if (size !== null && accuracy !== null) {
+    throw new UsageError('--sample and --accuracy both say how many faults are drawn. Leave one away.')
+  }
+  const seed = args.number('seed', {
+    least: 0,
+    most: 2 ** 32 - 1,
+    whole: true,
+    what: 'a whole number from 0',
+  })
+  return { size, accuracy, seed: seed ?? 1 }
+}
+
+function warnOfSamples(
+  { choose, quote, population, isForced }: Samples,
+  { order }: PlanChoice,
+  terminal: Terminal,
+): void {
+  const { count } = formats
+  const why = isForced ? 'The record of which pattern detects which fault would take more than 1 GB. ' : ''
+  terminal.warn(
+    `${why}The order is chosen on ${count(choose.size).value} and its coverage quoted from ${count(quote.size).value} other faults of ${count(population).value}, drawn at random: figures are estimates, between the limits that are given.`,
+  )
+  if (order === 'smallest') terminal.warn('The set is complete for the faults drawn, not for all.')
 }
 
 function choiceOf(args: Arguments): PlanChoice {

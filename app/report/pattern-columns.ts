@@ -28,6 +28,7 @@ export function patternColumns({ plan, curve, priced, pricing }: ReportInput): r
     },
     { name: 'detected', head: 'Detected, faults', format: '#,##0', at: of(curve.detected) },
     { name: 'coverage', head: 'Coverage', format: '0.000%', at: share },
+    ...bandColumns(plan),
     { name: 'cycles', head: 'Cycles', format: '#,##0', at: of(priced.cycles) },
     { name: 'milliseconds', head: 'One site, ms', format: '#,##0.000', at: of(priced.milliseconds) },
     {
@@ -63,4 +64,14 @@ export function patternColumns({ plan, curve, priced, pricing }: ReportInput): r
     if (values !== null) columns.push({ name, head, format: '#,##0', at: of(values) })
   }
   return columns
+}
+
+/** Between what the faults detected of the whole list lie, where the curve is of a sample. */
+function bandColumns({ sample }: ReportInput['plan']): readonly PatternColumn[] {
+  if (sample === undefined) return []
+  const { low, high } = sample
+  return [
+    { name: 'detected_low', head: 'Detected, low', format: '#,##0', at: (k) => low[k - 1] ?? 0 },
+    { name: 'detected_high', head: 'Detected, high', format: '#,##0', at: (k) => high[k - 1] ?? 0 },
+  ]
 }

@@ -85,6 +85,32 @@ describe('plan', () => {
     expect(stderr).toContain('the limit of 2 patterns stands in the way. The nearest is 83.33 %')
   })
 
+  // c17 has 34 faults (Brglez & Fujiwara 1985, from memory), all detected by its 32 patterns: half of them drawn stand for all.
+  it('plans from a sample where asked to, and says between what the whole list lies', async () => {
+    const json = await runJson(['plan', c17, all32, '--sample', '17', '--seed', '5'])
+    const { sample, detected, total, lost } = json as unknown as {
+      sample: { size: number; population: number; seed: number; atCut: Record<string, number> }
+      detected: { total: number }
+      total: number
+      lost: null
+    }
+    expect(sample).toMatchObject({ size: 17, population: 34, seed: 5 })
+    expect({ detected: detected.total, total, lost }).toEqual({ detected: 34, total: 34, lost: null })
+    expect(sample.atCut['coverageLow']).toBeGreaterThan(0.5)
+    expect(sample.atCut['coverageHigh']).toBeCloseTo(1, 12)
+    const { stdout, stderr } = await runCli(['plan', c17, all32, '--accuracy', '0.2'])
+    expect(stdout).toMatch(/Sample +\d+ of 34 faults: all of them lie between/)
+    expect(stderr).toContain('figures are estimates')
+  })
+
+  it('refuses a sample that is asked for twice, and a list of all faults from one', async () => {
+    const both = await runCli(['plan', c17, all32, '--sample', '9', '--accuracy', '0.1'])
+    expect(both).toMatchObject({ code: 2, stdout: '' })
+    const listed = await runCli(['plan', c17, all32, '--sample', '9', '--faults', file('out.csv', '')])
+    expect(listed).toMatchObject({ code: 2, stdout: '' })
+    expect(listed.stderr).toContain('knows that of the faults drawn alone')
+  })
+
   // 4 patterns are the smallest complete set of c17 (test-generation literature, from memory).
   it('finds the smallest complete set, and says whether it is proven', async () => {
     const plan = await planJson(c17, all32, '--order', 'smallest')

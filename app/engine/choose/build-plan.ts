@@ -23,6 +23,7 @@ import { figuresAt, type PointFigures } from './point-figures.ts'
 import { type PlanBasis, planPricing } from './plan-pricing.ts'
 import { planProblems } from './plan-problems.ts'
 import { type PricedOrder, type Pricing, priceOrder } from './price.ts'
+import { sampleBand } from './sample-band.ts'
 import { leastTotal, nextMillisecondBuysLess } from './stopping-rules.ts'
 
 /** Everything that a plan is made from. */
@@ -104,6 +105,11 @@ function planOf(input: PlanInput): Plan {
           ? null
           : headroomOf(figures, cut, { ceiling: input.ceiling, ceilingWithin: input.ceilingWithin, pricing }),
       ...(input.smallest === null ? {} : { smallest: input.smallest }),
+      ...(input.sample === undefined
+        ? {}
+        : {
+            sample: sampleBand(input.sample, isWeighted ? plainCurve : curve, cut.patterns, counts, pricing),
+          }),
       isReached: cut.broken === null && cut.unmet.length === 0,
       cut,
       limitStop: atLimits.stop,

@@ -29,6 +29,8 @@ export type BasisInput = {
   readonly constraints: Source | null
   readonly weights: Source | null
   readonly detections: number
+  /** Length nClasses: how many faults each class stands for, where the matrix holds a sample. Absent: all that it has. */
+  readonly standsFor?: Float64Array
 }
 
 /** Returns the choice that constraints and weights make of a run; codes are those of their readers. */
@@ -48,7 +50,13 @@ export function choiceBasis(input: BasisInput): Reading<ChoiceBasis> {
   const weighed =
     rows === null || input.weights === null ? null : weighFaults(faults, rows, input.weights.name)
   diagnostics.push(...(weighed?.diagnostics ?? []))
-  const ofClass = weighed?.ofClass ?? faults.classSize
+  const { standsFor } = input
+  const ofClass =
+    weighed === null
+      ? (standsFor ?? faults.classSize)
+      : standsFor === undefined
+        ? weighed.ofClass
+        : standsFor.map((count, group) => (count * weighed.ofClass[group]) / faults.classSize[group])
   const task: ChoiceTask = {
     matrix,
     weights: Float64Array.from(matrix.classOfRow, (group) => ofClass[group]),

@@ -44,6 +44,17 @@ export function sampledPopulation({ lines, nFaults }: FaultList): Uint32Array {
   )
 }
 
+/** Returns how many faults of the population each class stands for, length nClasses: the drawn ones, scaled up. */
+export function standsFor(
+  { size, classes, drawn }: FaultSample,
+  population: number,
+  nClasses: number,
+): Float64Array {
+  const stands = new Float64Array(nClasses)
+  for (let at = 0; at < classes.length; at++) stands[classes[at]] = (drawn[at] * population) / size
+  return stands
+}
+
 /** SOURCE: the first steps of the shuffle of Fisher & Yates 1938 (Durstenfeld 1964). */
 function drawToFront(items: Uint32Array, count: number, random: Random): void {
   for (let at = 0; at < count; at++) {

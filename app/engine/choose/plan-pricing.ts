@@ -29,6 +29,19 @@ export type PlanBasis = {
   readonly tester: Tester
   readonly product: Product
   readonly program: readonly ProgramRow[]
+  /** What the matrix of the task holds where it is of a sample; absent where it is of all faults. */
+  readonly sample?: SampledFaults
+}
+
+/** A random sample of faults in place of them all; counts made from it are estimates of the whole list's. */
+export type SampledFaults = {
+  /** Faults drawn. */
+  readonly size: number
+  /** Faults that they were drawn from: all but those that the chain test covers. */
+  readonly population: number
+  readonly seed: number
+  /** Length nClasses: how many faults of the population each class stands for. */
+  readonly standsFor: Float64Array
 }
 
 /** How orders over one basis are priced. */
@@ -54,7 +67,8 @@ export type PlanPricing = {
 export function planPricing(basis: PlanBasis): PlanPricing {
   const { faults, untestable, task, tester, product } = basis
   const counts = countFaults(faults, untestable)
-  const weights = Float64Array.from(task.matrix.classOfRow, (one) => faults.classSize[one])
+  const ofClass = basis.sample?.standsFor ?? faults.classSize
+  const weights = Float64Array.from(task.matrix.classOfRow, (one) => ofClass[one])
   const plainTask = { ...task, weights, detections: 1 }
   const everyPattern = Uint32Array.from({ length: task.matrix.nPatterns }, (_, pattern) => pattern)
   const deliveredCoverage = testCoverage(detectedWeight(plainTask, everyPattern), counts)
@@ -93,7 +107,7 @@ function pricingOf(
  * reckoned from: over all faults, or by area where the product gives shares.
  */
 function coveragesForQuality(
-  { faults, untestable, product }: PlanBasis,
+  { faults, untestable, product, sample }: PlanBasis,
   plainTask: ChoiceTask,
   counts: FaultCounts,
 ): (order: Order, plainCurve: CoverageCurve) => Float64Array {
@@ -109,7 +123,11 @@ function coveragesForQuality(
     const curves = classWeights.map((weights) => {
       const task = {
         ...plainTask,
-        weights: Float64Array.from(plainTask.matrix.classOfRow, (one) => weights[one]),
+        weights: Float64Array.from(plainTask.matrix.classOfRow, (one) =>
+          sample === undefined
+            ? weights[one]
+            : (weights[one] * sample.standsFor[one]) / faults.classSize[one],
+        ),
       }
       return curveOf(task, order, 0).detected
     })

@@ -6,6 +6,7 @@ import type { YieldOrigin } from '../quality/yield.ts'
 import type { Cut, Goal, Limit, Stop } from './budget.ts'
 import type { OrderName } from './order.ts'
 import type { PointFigures } from './point-figures.ts'
+import type { SampleBand } from './sample-band.ts'
 
 /** A plan as the command line prints it in JSON and as reports and the window show it. Patterns are numbered from 1. */
 export type PlanResult = {
@@ -28,6 +29,8 @@ export type PlanResult = {
   /** The ceiling under the limit that binds, minus what is detected. Null without a ceiling. */
   readonly gap: number | null
   readonly smallest?: { readonly patterns: number; readonly lowerBound: number; readonly proven: boolean }
+  /** Where all of it is estimated from a sample of the faults: the sample, and between what the whole list lies. */
+  readonly sample?: SampleBand
   /** True where all goals are met and no limit is broken. */
   readonly isReached: boolean
   readonly cut: Cut

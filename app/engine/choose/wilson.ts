@@ -9,8 +9,10 @@ const SMALL_PART = 0.05
 
 /**
  * Estimates the coverage of a population of faults from a random sample of them drawn without replacement.
- * SOURCE: Wilson 1927 score interval at z = 3, clamped to 0 … 1; the half width carries sqrt(1 − N/M) where the sample N
- * is over 5 % of the population M (finite population correction). Common practice for fault samples: Agrawal & Kato 1990.
+ * SOURCE: Wilson 1927 score interval at z = 3, clamped to 0 … 1. Where the sample N is over 5 % of the population M it counts
+ * as N / (1 − N/M) draws (finite population correction), so that the half width shrinks by sqrt(1 − N/M) to first order and
+ * the centre moves with it: with the half width alone corrected, the limits would leave the estimate itself out near
+ * 100 %. Common practice for fault samples: Agrawal & Kato 1990.
  */
 export function wilsonEstimate(detected: number, sample: number, population: number): Estimate {
   const share = detected / sample
@@ -35,8 +37,9 @@ export function sampleSizeFor(accuracy: number, expected: number, population: nu
 }
 
 function wilson(share: number, sample: number, population: number): { centre: number; half: number } {
-  const spread = (Z * Z) / sample
-  const correction = sample > SMALL_PART * population ? Math.sqrt(1 - sample / population) : 1
-  const deviation = Math.sqrt((share * (1 - share)) / sample + spread / (4 * sample))
-  return { centre: (share + spread / 2) / (1 + spread), half: (correction * Z * deviation) / (1 + spread) }
+  if (sample >= population) return { centre: share, half: 0 }
+  const draws = sample > SMALL_PART * population ? sample / (1 - sample / population) : sample
+  const spread = (Z * Z) / draws
+  const deviation = Math.sqrt((share * (1 - share)) / draws + spread / (4 * draws))
+  return { centre: (share + spread / 2) / (1 + spread), half: (Z * deviation) / (1 + spread) }
 }

@@ -2,6 +2,7 @@ import { type NumberFormats, textOf } from '../../contract/format-number.ts'
 import { counted, stopWords } from '../../contract/plan-words.ts'
 import type { Stop } from '../../engine/choose/budget.ts'
 import type { PlanResult } from '../../engine/choose/plan-result.ts'
+import type { SampleBand } from '../../engine/choose/sample-band.ts'
 import type { Chart } from '../report-document.ts'
 import { PALETTE } from './palette.ts'
 import { linearScale, type Scale, thinned, ticksOf } from './scale.ts'
@@ -46,6 +47,9 @@ export function coverageChart(plan: PlanResult, formats: NumberFormats): Chart {
   if (ceiling.length > 0) {
     const edge = within(thinned(ceiling, 0, last, pixels))
     parts.push(element('g', inPlot, hatching(edge, PLOT), path(edge, CEILING)))
+  }
+  if (plan.sample !== undefined && !plan.isWeighted) {
+    parts.push(element('g', inPlot, bandArea(plan.sample, share, last, pixels, within)))
   }
   if (limitAt !== null && plan.limitStop !== null) {
     parts.push(limitLine(plan.limitStop, x(Math.min(limitAt, last)), formats))
@@ -146,6 +150,21 @@ function hatching(
       element('path', { d: strokes.join(''), stroke: PALETTE.hatch, 'stroke-width': 1, fill: 'none' }),
     ),
   ].join('')
+}
+
+/** Between what the curve of all faults lies where this one is of a sample. */
+function bandArea(
+  { low, high }: SampleBand,
+  share: (weight: number) => number,
+  last: number,
+  pixels: number,
+  within: (points: readonly (readonly [number, number])[]) => (readonly [number, number])[],
+): string {
+  const edge = (values: readonly number[]): (readonly [number, number])[] =>
+    within(thinned([0, ...values].map(share), 0, last, pixels))
+  const outline = [...edge(low), ...edge(high).reverse()]
+  const d = `M${outline.map(([x, y]) => `${x.toFixed(2)} ${y.toFixed(2)}`).join('L')}Z`
+  return element('path', { d, fill: PALETTE.series1, 'fill-opacity': 0.13 })
 }
 
 function axes(x: Scale, y: Scale, formats: NumberFormats): string {

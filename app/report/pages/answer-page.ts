@@ -9,6 +9,7 @@ import {
   shortfallsOf,
   stopWords,
 } from '../../contract/plan-words.ts'
+import type { PlanResult } from '../../engine/choose/plan-result.ts'
 import type { PointFigures } from '../../engine/choose/point-figures.ts'
 import { coverageChart } from '../charts/coverage-chart.ts'
 import type { Block, LabelledFigure, ReportPage, Table } from '../report-document.ts'
@@ -53,7 +54,12 @@ function chartCaption({ plan, counts, faultBase }: ReportInput, formats: NumberF
   return [
     `${coverageWords(plan)} against patterns applied. Base: ${formats.count(counts.all).value} stuck-at faults on ${faultBase}, uncollapsed.`,
     inside.length > 0 ? `White: ${inside.join(' and ')}.` : '',
-    plan.ceiling.length > 0 ? 'Hatched: proven out of reach for any choice of these patterns.' : '',
+    plan.ceiling.length > 0
+      ? `Hatched: proven out of reach for any choice of these patterns${plan.sample === undefined ? '' : ', of the faults drawn'}.`
+      : '',
+    plan.sample !== undefined && !plan.isWeighted
+      ? 'Band: where the curve of all faults lies, at 3 sigma.'
+      : '',
   ]
     .filter(Boolean)
     .join(' ')
@@ -194,6 +200,15 @@ function movesTable({ plan }: ReportInput, formats: NumberFormats): Table {
 export const CAUTION =
   'All figures are estimates of a model. This plan is no safety case: where the part can hurt someone, the governing standard and the people licensed to apply it decide.'
 
+function sampleWords({ sample }: PlanResult, formats: NumberFormats): string {
+  if (sample === undefined) return ''
+  const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
+  return [
+    `Coverage is estimated from ${formats.count(sample.size).value} of ${formats.count(sample.population).value} faults, drawn at random (seed ${sample.seed}); the order was chosen on as many others. `,
+    `That of all faults lies between ${textOf(formats.coverage(coverageLow))} and ${textOf(formats.coverage(coverageHigh))} (3 sigma, Wilson 1927), which alone is ${formats.dppm(dppmLow).value} to ${textOf(formats.dppm(dppmHigh))}. `,
+  ].join('')
+}
+
 function careWords({ plan, pricing }: ReportInput, formats: NumberFormats): string {
   const { budget } = plan
   const model =
@@ -203,6 +218,7 @@ function careWords({ plan, pricing }: ReportInput, formats: NumberFormats): stri
   const band = `${formats.dppm(budget.dppmLow).value} to ${textOf(formats.dppm(budget.dppmHigh))}`
   const origin = plan.yield.origin === 'assumed' ? ' (assumed, not measured)' : ''
   return [
+    sampleWords(plan, formats),
     `The escape rate follows ${model} with yield Y = ${textOf(formats.share(pricing.trueYield))}${origin} `,
     `and T the test coverage, ${textOf(formats.coverage(budget.testCoverage))}; over both models and the ranges of their inputs it runs from ${band}. `,
     'It counts stuck-at faults only. ',

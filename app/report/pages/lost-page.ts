@@ -13,7 +13,7 @@ export function lostPage({ plan, lost, states, counts }: ReportInput, formats: N
   const total = sorted.reduce((sum, block) => sum + block.lost, 0)
   const words =
     lost === null
-      ? 'What is lost by block was not worked out.'
+      ? `What is lost by block was not worked out${plan.sample === undefined ? '' : ': the plan is made from a sample of the faults'}.`
       : total === 0
         ? 'The cut loses nothing: it detects all that the whole pattern set detects.'
         : `The cut loses ${counted(total, 'fault', formats)} that the whole pattern set detects, in ${count(sorted.filter((block) => block.lost > 0).length)} of ${counted(sorted.length, 'block', formats)}.`

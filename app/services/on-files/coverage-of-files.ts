@@ -4,7 +4,7 @@ import { countStates, type StateCounts } from '../../engine/faults/fault-state.t
 import type { Netlist } from '../../engine/circuit/netlist.ts'
 import type { PatternReading } from '../../engine/formats/registry.ts'
 import { compareResponse, type ResponseComparison } from '../../engine/simulate/compare-response.ts'
-import type { SimulationResult } from '../../engine/simulate/simulation.ts'
+import type { SimulationResult, SimulationTask } from '../../engine/simulate/simulation.ts'
 import type { FileWork } from './file-work.ts'
 import { readNetlistFiles, type NetlistFiles } from './read-netlist-files.ts'
 import { readPatternSources } from './read-pattern-sources.ts'
@@ -56,7 +56,7 @@ export async function readOtherPatterns(
 /** Simulates what was read: up to so many detections of each fault, 0 for all. Throws AppError 'cancelled'. */
 export async function simulateFiles(
   files: ReadFiles,
-  options: { readonly detectionLimit: number; readonly wantMatrix: boolean },
+  options: Pick<SimulationTask, 'detectionLimit' | 'wantMatrix'>,
   simulator: Simulator,
   work: FileWork,
 ): Promise<CoverageRun> {
@@ -73,5 +73,27 @@ export async function simulateFiles(
     states: countStates(faults, result.profile),
     comparison,
     simulateSeconds: kernelSeconds,
+  }
+}
+
+/**
+ * Simulates what a plan is made from: every fault to its first detection, and which patterns detect which fault of the
+ * classes given. Null for all classes, whose every detection is counted then. Throws AppError 'cancelled'.
+ */
+export async function simulateForPlan(
+  files: ReadFiles,
+  classes: Uint32Array | null,
+  simulator: Simulator,
+  work: FileWork,
+): Promise<CoverageRun> {
+  if (classes === null) return simulateFiles(files, { detectionLimit: 0, wantMatrix: true }, simulator, work)
+  const run = await simulateFiles(files, { detectionLimit: 1, wantMatrix: false }, simulator, work)
+  const { netlist, faults, patterns } = files
+  const task = { circuit: netlist.circuit, faults, patterns, classes, detectionLimit: 0, wantMatrix: true }
+  const { result, kernelSeconds } = await simulator.run(task, work)
+  return {
+    ...run,
+    result: { ...run.result, matrix: result.matrix },
+    simulateSeconds: run.simulateSeconds + kernelSeconds,
   }
 }

@@ -71,16 +71,21 @@ function moreAtLimit(
 ): Improved {
   const { result, pricing } = start.plan
   const { stop, patterns } = result.cut
-  const nothing = { ...start, improvement: { gained: 0, patternsSaved: 0, proven: result.gap === 0 } }
+  const nothing = {
+    ...start,
+    improvement: { gained: 0, patternsSaved: 0, proven: result.gap === 0 && input.sample === undefined },
+  }
   const spending = stop === null ? null : spendingUnder(stop, pricing)
   if (spending === null || patterns === 0) return nothing
   const task: ChoiceTask = { ...basis.task, costs: spending.costs }
   const chosen = result.budget.chosen.map((pattern) => pattern - 1)
-  const bound = result.gap === null ? {} : { bound: result.budget.detected + result.gap }
+  // A bound on the sample that is quoted from says nothing of the one that is chosen on.
+  const isWhole = input.sample === undefined
+  const bound = result.gap === null || !isWhole ? {} : { bound: result.budget.detected + result.gap }
   const found = improveAtBudget(task, chosen, spending.budget, { ...search, ...bound })
   if (found === null) return nothing
-  const { proven } = found
-  const tighter = { ...input, ceiling: tightenedCeiling(input, spending, found.bound) }
+  const proven = isWhole && found.proven
+  const tighter = isWhole ? { ...input, ceiling: tightenedCeiling(input, spending, found.bound) } : input
   const candidate = found.gained === 0 ? null : planKeeping(tighter, basis, found.patterns, work)
   if (candidate === null || !isBetter(candidate.plan, start.plan)) {
     const plan = requirePlan({ ...tighter, order: start.order })
@@ -117,7 +122,7 @@ function fewerToGoal(
   while (best.plan.result.budget.patterns > 1 && search.onProgress()) {
     const { chosen, patterns } = best.plan.result.budget
     const fewer = chosen.slice(0, patterns - 1).map((pattern) => pattern - 1)
-    const bound = input.ceiling?.[patterns - 2]
+    const bound = input.sample === undefined ? input.ceiling?.[patterns - 2] : undefined
     if (bound !== undefined && !reaches(input, bound)) {
       proven = true
       break
@@ -130,7 +135,7 @@ function fewerToGoal(
     const candidate = planKeeping(input, basis, found.patterns, work)
     const { isReached, budget } = candidate.plan.result
     if (!isReached || budget.patterns >= patterns) {
-      proven = found.proven
+      proven = input.sample === undefined && found.proven
       break
     }
     best = { ...candidate, improvement: null }

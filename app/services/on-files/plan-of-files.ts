@@ -10,19 +10,23 @@ import {
 import type { ChoiceTask } from '../../engine/choose/choice-task.ts'
 import { constraintCosts, type ConstraintCost } from '../../engine/choose/constraint-costs.ts'
 import { deliveredOrder } from '../../engine/choose/delivered-order.ts'
+import { type FaultSample, standsFor } from '../../engine/choose/fault-sample.ts'
 import { lostBlocks, type LostBlock } from '../../engine/choose/lost-blocks.ts'
 import type { MipSolver } from '../../engine/choose/mip.ts'
 import type { Order } from '../../engine/choose/order.ts'
+import type { SampledFaults } from '../../engine/choose/plan-pricing.ts'
 import type { PlanResult } from '../../engine/choose/plan-result.ts'
+import type { FaultList } from '../../engine/faults/fault-list.ts'
 import { smallestCompleteSet } from '../../engine/choose/smallest-complete-set.ts'
 import { steepestFirst } from '../../engine/choose/steepest-first.ts'
 import { buildTimeModel } from '../../engine/tester/time-model.ts'
-import type { CoverageRun, ReadFiles } from './coverage-of-files.ts'
+import type { CoverageRun } from './coverage-of-files.ts'
 import { progressOf, valueOf, wholeOf, type FileWork } from './file-work.ts'
 import { improvePlan, type Improvement } from './improve-plan.ts'
 import { requirePlan, untilLater, withEvenCosts, type PlanChoice } from './plan-choice.ts'
 import { rowsByBurst, withProgram } from './program-constraints.ts'
 import type { FileAssumptions } from './read-assumptions.ts'
+import type { Samples } from './sampling.ts'
 
 export type PlanOfFiles = {
   readonly plan: Plan
@@ -30,30 +34,22 @@ export type PlanOfFiles = {
   readonly order: Order
   /** By number of patterns. */
   readonly ceiling: Ceiling
-  readonly lost: readonly LostBlock[]
+  /** Null where the plan is made from a sample: faults that were not drawn are not known to be lost. */
+  readonly lost: readonly LostBlock[] | null
   /** What each constraint costs at the cut; empty where there are none. */
   readonly constraintCosts: readonly ConstraintCost[]
   /** Null where none was asked for. */
   readonly improvement: Improvement | null
 }
 
-/** The most that the record of which pattern detects which fault may take. */
-const MOST_MATRIX_BYTES = 1024 ** 3
-
-/** Throws AppError 'bad-input' where a plan would need more memory than it may take; said before anything is simulated. */
-export function refuseTooLarge({ faults, patterns }: ReadFiles): void {
-  const bytes = (faults.nClasses * patterns.nPatterns) / 8
-  if (bytes <= MOST_MATRIX_BYTES) return
-  const gigabytes = (bytes / 1024 ** 3).toFixed(1)
-  throw new AppError(
-    'bad-input',
-    `A plan keeps which of ${patterns.nPatterns} patterns detect which of ${faults.nClasses} collapsed faults; that would take ${gigabytes} GB, and 1 GB is the most. Plan fewer patterns; "coverage" has no such limit.`,
-  )
-}
-
-/** Chooses an order and a cut of a simulated set. Throws AppError 'bad-file', 'bad-input', 'cancelled'. */
+/**
+ * Chooses an order and a cut of a simulated set. From samples the order is chosen on one and everything is quoted from the
+ * other, since an order looks better on the faults that it was chosen on. Throws AppError 'bad-file', 'bad-input',
+ * 'cancelled'.
+ */
 export function planOfFiles(
   run: CoverageRun,
+  samples: Samples | null,
   assumptions: FileAssumptions,
   choice: PlanChoice,
   solveMip: MipSolver,
@@ -64,14 +60,19 @@ export function planOfFiles(
   const { netlist, faults, patterns } = run
   const program = rowsByBurst(assumptions.program, patterns)
   const scan = scanFactsOf(netlist)
-  const basis = basisOf(run, { ...assumptions, program }, choice.detections, patternFile, work)
+  const basisFrom = (sample: FaultSample | null): ChoiceBasis =>
+    basisOf(run, sample, samples, { ...assumptions, program }, choice.detections, patternFile, work)
+  const basis = basisFrom(samples?.quote ?? null)
+  const choosing = samples === null ? basis : basisFrom(samples.choose)
   const { task, total } = basis
   const ceiling = wholeOf(
     ceilingOf(withEvenCosts(task), patternBudgets(patterns.nPatterns), {
       onProgress: progressOf(work, 'Proving the ceiling'),
     }),
   )
-  const { order, smallest } = orderOf(basis, choice, solveMip, work)
+  const { order: chosenOrder, smallest } = orderOf(choosing, choice, solveMip, work)
+  // Patterns without a gain on the sample may well detect faults that were not drawn.
+  const order = samples === null ? chosenOrder : { ...chosenOrder, chosen: chosenOrder.runs }
   const input: PlanInput = {
     faults,
     untestable: null,
@@ -88,10 +89,12 @@ export function planOfFiles(
     goals: choice.goals,
     ceiling: ceiling.bounds,
     ceilingWithin: (costs, budget) => ceilingWithin({ ...task, costs }, budget, work),
-    smallest,
+    // Of a sample it is no smallest set of the whole list.
+    smallest: samples === null ? smallest : null,
+    ...(samples === null ? {} : { sample: sampledFaults(samples, faults) }),
   }
   const first = requirePlan(input)
-  const improved = improvePlan(input, first, basis, choice, solveMip, work)
+  const improved = improvePlan(input, first, choosing, choice, solveMip, work)
   const plan = improved?.plan ?? first
   const chosen = plan.result.budget.chosen.map((pattern) => pattern - 1)
   const constraints = basis.constraints
@@ -100,13 +103,13 @@ export function planOfFiles(
     basis,
     order: improved?.order ?? order,
     ceiling,
-    lost: lostBlocks(task, faults, chosen),
+    lost: samples === null ? lostBlocks(task, faults, chosen) : null,
     constraintCosts:
       constraints === null || constraints.parts.length === 0
         ? []
         : wholeOf(
             constraintCosts(
-              task,
+              choosing.task,
               constraints.constraints,
               constraints.parts,
               chosen.reduce((sum, pattern) => sum + (task.costs[pattern] ?? 0), 0),
@@ -119,6 +122,8 @@ export function planOfFiles(
 
 function basisOf(
   { netlist, faults, patterns, result: { matrix } }: CoverageRun,
+  sample: FaultSample | null,
+  samples: Samples | null,
   { tester, product, program, constraints, weights }: FileAssumptions,
   detections: number,
   patternFile: string,
@@ -126,9 +131,23 @@ function basisOf(
 ): ChoiceBasis {
   if (matrix === null) throw new Error('a plan needs the matrix of detections')
   const costs = buildTimeModel(tester, product, patterns, scanFactsOf(netlist)).patternCycles
-  const reading = choiceBasis({ faults, matrix, costs, constraints, weights, detections })
+  const reading = choiceBasis({
+    faults,
+    matrix,
+    costs,
+    constraints,
+    weights,
+    detections,
+    ...(sample === null || samples === null
+      ? {}
+      : { standsFor: standsFor(sample, samples.population, faults.nClasses) }),
+  })
   const sources = [constraints, weights].filter((source) => source !== null)
   return withProgram(valueOf(work, reading, sources), program, patterns, patternFile)
+}
+
+function sampledFaults({ quote, population, seed }: Samples, { nClasses }: FaultList): SampledFaults {
+  return { size: quote.size, population, seed, standsFor: standsFor(quote, population, nClasses) }
 }
 
 function orderOf(

