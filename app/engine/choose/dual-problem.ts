@@ -38,7 +38,8 @@ export type DualProblem = {
 /** Returns the linear problem of a task, or null when `goOn`, asked every few milliseconds, said no. */
 export function buildDualProblem(task: ChoiceTask, goOn: () => boolean = () => true): DualProblem | null {
   const { kept } = task.rules
-  const units = buildUnitMatrix(task)
+  const units = buildUnitMatrix(task, goOn)
+  if (units === null) return null
   const rows = listRows(units, kept, task.detections, goOn)
   if (rows === null) return null
   const { rowStart, rowItems, unitRow, need, keptWeight } = rows

@@ -23,13 +23,20 @@ export class Gains {
   /** A bit for each row that lacks any. */
   readonly #open: Uint32Array
 
-  constructor(units: UnitMatrix, detections: number) {
-    const { nRows, nUnits, words, rowAt, levelStart } = units
+  /** Returns the gains of a matrix, not yet counted; null when `goOn`, asked every few milliseconds, said no. */
+  static of(units: UnitMatrix, detections: number, goOn?: () => boolean): Gains | null {
+    const { words, rowAt, levelStart } = units
+    const columns = transposeBits(words, rowAt, levelStart[levelStart.length - 1], goOn)
+    return columns === null ? null : new Gains(units, detections, columns)
+  }
+
+  private constructor(units: UnitMatrix, detections: number, columns: BitColumns) {
+    const { nRows, nUnits } = units
     this.#units = units
     this.gain = new Float64Array(nUnits)
     this.#step = Float64Array.of(0, ...STEP.slice(0, detections))
     if (detections === 1) this.#step[1] = 1
-    this.#columns = transposeBits(words, rowAt, levelStart[levelStart.length - 1])
+    this.#columns = columns
     this.#missing = new Uint8Array(nRows)
     this.#open = new Uint32Array(this.#columns.wordsPerColumn)
     for (let row = 0; row < nRows; row++) {

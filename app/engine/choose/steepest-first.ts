@@ -40,9 +40,10 @@ function orderBySteps(
   onProgress: ChoiceProgress,
 ): Order | null {
   const { rules } = task
-  const units = buildUnitMatrix(task)
-  if (!onProgress(0, units.nRows + units.nUnits)) return null
-  const gains = new Gains(units, task.detections)
+  const goOn = (): boolean => onProgress(0, task.matrix.nRows + rules.nUnits)
+  const units = buildUnitMatrix(task, goOn)
+  const gains = units === null ? null : Gains.of(units, task.detections, goOn)
+  if (units === null || gains === null) return null
   const order = new UnitSequence(rules)
   const place = (unit: number): void => {
     order.place(unit)

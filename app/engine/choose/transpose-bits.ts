@@ -8,15 +8,22 @@ export type BitColumns = {
 const LINE = 16
 
 /**
- * Returns the columns of a bit matrix whose rows are `wordsPerRow` words from `words[rowAt[row]]`.
+ * Returns the columns of a bit matrix whose rows are `wordsPerRow` words from `words[rowAt[row]]`; null when `goOn`, asked
+ * every few milliseconds, said no.
  * SOURCE: transposing 32 × 32 bits by halves, Warren, Hacker's Delight, section 7-3.
  */
-export function transposeBits(words: Uint32Array, rowAt: Uint32Array, wordsPerRow: number): BitColumns {
+export function transposeBits(
+  words: Uint32Array,
+  rowAt: Uint32Array,
+  wordsPerRow: number,
+  goOn: () => boolean = () => true,
+): BitColumns | null {
   const nRows = rowAt.length
   const wordsPerColumn = Math.ceil(nRows / 32)
   const columns = new Uint32Array(32 * wordsPerRow * wordsPerColumn)
   const block = new Uint32Array(32)
   for (let line = 0; line < wordsPerRow; line += LINE) {
+    if (!goOn()) return null
     for (let place = 0; place < wordsPerColumn; place++) {
       const height = Math.min(32, nRows - 32 * place)
       for (let word = line; word < Math.min(line + LINE, wordsPerRow); word++) {

@@ -32,17 +32,22 @@ export type UnitMatrix = {
   readonly unitSize: Float64Array
 }
 
-/** Returns the matrix of a task's units. Rows of weight 0 stay; rows that only left-out patterns detect go. */
-export function buildUnitMatrix(task: ChoiceTask): UnitMatrix {
+/**
+ * Returns the matrix of a task's units. Rows of weight 0 stay; rows that only left-out patterns detect go. Null when `goOn`,
+ * asked every few milliseconds, said no.
+ */
+export function buildUnitMatrix(task: ChoiceTask, goOn: () => boolean = () => true): UnitMatrix | null {
   const { matrix, rules, costs } = task
   const { unitStart, unitPatterns, nUnits } = rules
   const layout = layOutBits(task)
   const everyPatternAlone = nUnits === matrix.nPatterns
   const wordsPerRow = everyPatternAlone ? matrix.wordsPerRow : layout.levelStart[layout.levelStart.length - 1]
-  const words = everyPatternAlone ? matrix.words : gatherUnits(task, layout, wordsPerRow)
+  const words = everyPatternAlone ? matrix.words : gatherUnits(task, layout, wordsPerRow, goOn)
+  if (words === null) return null
 
   const { whole, scale } = wholeWeights(task.weights)
-  const merged = mergeRows(words, matrix.nRows, wordsPerRow)
+  const merged = mergeRows(words, matrix.nRows, wordsPerRow, goOn)
+  if (merged === null) return null
   const weight = new Float64Array(merged.rowAt.length)
   for (let row = 0; row < matrix.nRows; row++) {
     if (merged.mergedRow[row] >= 0) weight[merged.mergedRow[row]] += whole[row]
@@ -66,6 +71,9 @@ export function buildUnitMatrix(task: ChoiceTask): UnitMatrix {
     unitSize,
   }
 }
+
+/** Rows between two questions whether to go on. */
+const ROWS_AT_A_TIME = 1024
 
 type BitLayout = Pick<UnitMatrix, 'levelStart' | 'unitOfBit' | 'bitStart' | 'bits'>
 
@@ -98,10 +106,12 @@ function gatherUnits(
   { matrix, rules }: ChoiceTask,
   { bitStart, bits }: BitLayout,
   wordsPerRow: number,
-): Uint32Array {
+  goOn: () => boolean,
+): Uint32Array | null {
   const { unitStart, unitPatterns, nUnits } = rules
   const words = new Uint32Array(matrix.nRows * wordsPerRow)
   for (let row = 0; row < matrix.nRows; row++) {
+    if (row % ROWS_AT_A_TIME === 0 && !goOn()) return null
     const from = row * matrix.wordsPerRow
     const to = row * wordsPerRow
     for (let unit = 0; unit < nUnits; unit++) {
@@ -122,11 +132,13 @@ function mergeRows(
   words: Uint32Array,
   nRows: number,
   wordsPerRow: number,
-): { rowAt: Uint32Array; mergedRow: Int32Array } {
+  goOn: () => boolean,
+): { rowAt: Uint32Array; mergedRow: Int32Array } | null {
   const mergedRow = new Int32Array(nRows).fill(-1)
   const rowAt: number[] = []
   const byHash = new Map<number, number[]>()
   for (let row = 0; row < nRows; row++) {
+    if (row % ROWS_AT_A_TIME === 0 && !goOn()) return null
     const at = row * wordsPerRow
     let hash = 0
     let any = 0

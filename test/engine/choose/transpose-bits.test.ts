@@ -13,6 +13,7 @@ test.each([
   const words = Uint32Array.from({ length: nRows * wordsPerRow + 5 }, () => random.bits())
   const rowAt = Uint32Array.from({ length: nRows }, (_, row) => 5 + row * wordsPerRow)
   const columns = transposeBits(words, rowAt, wordsPerRow)
+  if (columns === null) throw new Error('nothing asked it to end')
   for (let row = 0; row < nRows; row++) {
     for (let column = 0; column < 32 * wordsPerRow; column++) {
       const there = (words[rowAt[row] + (column >>> 5)] >>> (column & 31)) & 1
