@@ -146,7 +146,7 @@ function planOf(input: PlanInput): Plan {
     const places: [MarkerName, number | null][] = [
       ['goal', goals.length > 0 ? cut.patterns : null],
       ['limit', atLimits.stop === null ? null : atLimits.patterns],
-      ['knee', kneeOf(curve)],
+      ['knee', kneeOf(curve, priced.milliseconds)],
       [
         'next millisecond',
         nextMillisecondBuysLess(curve, priced.milliseconds, order.chosen, worthOfMillisecond),
@@ -252,7 +252,12 @@ function planOf(input: PlanInput): Plan {
             evaluate,
           )
         : null,
-      sitesByEfficiency: sitesByEfficiency(now, steppedAround(tester.sites), EFFICIENCIES, evaluate),
+      sitesByEfficiency: sitesByEfficiency(
+        now,
+        steppedAround(tester.sites),
+        [...new Set([...EFFICIENCIES, tester.multiSiteEfficiency])].sort((a, b) => a - b),
+        evaluate,
+      ),
     }
   }
 }
