@@ -28,6 +28,10 @@ export const PLAN_OPTIONS = {
   improve: {
     help: 'improve the choice at the cut beyond the order’s prefix: more under a limit, fewer for a goal',
   },
+  'smallest-by': {
+    value: 'WHAT',
+    help: 'what --order smallest makes least: patterns (default), or cycles of the tester',
+  },
   'search-seconds': {
     value: 'S',
     help: 'searches for a smallest set and a better choice end with the best so far after S seconds (default 30)',

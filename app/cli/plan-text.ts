@@ -1,8 +1,18 @@
 import { textOf } from '../contract/format-number.ts'
 import { answerPhrases, countedWords } from '../contract/plan-words.ts'
 import type { CoverageRun } from '../services/on-files/coverage-of-files.ts'
+import type { PlanResult } from '../engine/choose/plan-result.ts'
 import type { PlanOfFiles } from '../services/on-files/plan-of-files.ts'
 import { aligned, formats } from './print-text.ts'
+
+type Smallest = NonNullable<PlanResult['smallest']>
+
+function smallestWords({ by, patterns, cycles, lowerBound, proven }: Smallest): string {
+  const { count } = formats
+  const found = `${count(patterns).value} patterns${by === 'cycles' ? `, ${count(cycles).value} cycles` : ''}`
+  const unit = by === 'cycles' ? ' cycles' : ''
+  return `${found}${proven ? ', proven' : `, at least ${count(lowerBound).value}${unit}`}`
+}
 
 /** A plan for people: the answer in a sentence, and the figures of the cut. */
 export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): string {
@@ -37,10 +47,7 @@ export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): 
   if (gap !== null && gap > 0)
     rows.push(['Gap', `${count(gap).value} below the ceiling under what ends the cut`])
   if (smallest !== undefined) {
-    rows.push([
-      'Smallest set',
-      `${count(smallest.patterns).value} patterns${smallest.proven ? ', proven' : `, at least ${count(smallest.lowerBound).value}`}`,
-    ])
+    rows.push(['Smallest set', smallestWords(smallest)])
   }
   if (improvement !== null) {
     rows.push([

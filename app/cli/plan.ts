@@ -146,6 +146,10 @@ function choiceOf(args: Arguments): PlanChoice {
   if (order !== 'as-delivered' && order !== 'steepest' && order !== 'smallest') {
     throw new UsageError(`--order takes as-delivered, steepest or smallest; "${order}" was given.`)
   }
+  const smallestBy = args.text('smallest-by') ?? 'patterns'
+  if (smallestBy !== 'patterns' && smallestBy !== 'cycles') {
+    throw new UsageError(`--smallest-by takes patterns or cycles; "${smallestBy}" was given.`)
+  }
   const detections =
     args.number('n', { least: 1, most: 10, whole: true, what: 'a whole number from 1 to 10' }) ?? 1
   if (order === 'smallest' && detections > 1) {
@@ -174,6 +178,7 @@ function choiceOf(args: Arguments): PlanChoice {
   const seconds = { least: 0, most: 86_400, what: 'a number of seconds from 0 to 86,400' }
   return {
     order,
+    smallestBy,
     detections,
     limits,
     goals,

@@ -28,7 +28,15 @@ export type PlanResult = {
   readonly budget: Budget
   /** The ceiling under the limit that binds, minus what is detected. Null without a ceiling. */
   readonly gap: number | null
-  readonly smallest?: { readonly patterns: number; readonly lowerBound: number; readonly proven: boolean }
+  readonly smallest?: {
+    /** What was to be least, and what lowerBound counts. */
+    readonly by: 'patterns' | 'cycles'
+    readonly patterns: number
+    /** Tester cycles of these patterns, without set-up and unload. */
+    readonly cycles: number
+    readonly lowerBound: number
+    readonly proven: boolean
+  }
   /** Where all of it is estimated from a sample of the faults: the sample, and between what the whole list lies. */
   readonly sample?: SampleBand
   /** True where all goals are met and no limit is broken. */

@@ -7,6 +7,8 @@ import type { FileWork } from './file-work.ts'
 /** How patterns are to be chosen, and where the cut is to lie. */
 export type PlanChoice = {
   readonly order: 'as-delivered' | 'steepest' | 'smallest'
+  /** What a smallest complete set has least of. */
+  readonly smallestBy: 'patterns' | 'cycles'
   /** How many patterns have to detect a fault. */
   readonly detections: number
   readonly limits: readonly Limit[]

@@ -164,7 +164,10 @@ function orderOf(
       return { order: wholeOf(steepestFirst(task, progressOf(work, 'Ordering'))), smallest: null }
     case 'smallest': {
       const onProgress = untilLater(work, 'Looking for the smallest complete set', choice.searchSeconds)
-      const found = smallestCompleteSet(withEvenCosts(task), { solveMip, onProgress })
+      const found = smallestCompleteSet(choice.smallestBy === 'cycles' ? task : withEvenCosts(task), {
+        solveMip,
+        onProgress,
+      })
       if (work.isCancelled()) throw new AppError('cancelled')
       if (found === null) {
         throw new AppError(
@@ -173,9 +176,10 @@ function orderOf(
         )
       }
       const { patterns, lowerBound, proven } = found
+      const cycles = patterns.reduce((sum, pattern) => sum + (task.costs[pattern] ?? 0), 0)
       return {
         order: orderOfChoice(basis, patterns),
-        smallest: { patterns: patterns.length, lowerBound, proven },
+        smallest: { by: choice.smallestBy, patterns: patterns.length, cycles, lowerBound, proven },
       }
     }
   }

@@ -39,6 +39,7 @@ const assumptions = {
 }
 const choice = {
   order: 'steepest',
+  smallestBy: 'patterns',
   detections: 1,
   limits: [{ kind: 'patterns', most: 8 }],
   goals: [],
