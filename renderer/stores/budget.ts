@@ -70,16 +70,14 @@ export const useBudget = defineStore('budget', () => {
       assumptions.value = subject.assumptions
       const isKept =
         subjects.subjects.has(productId) || budgets.value.some((each) => each.runId === runId.value)
+      const wanted = link['cut'] !== undefined ? Number(link['cut']) : isKept ? subject.cut : null
+      // What is shown already can be moved at once: figures that come later leave the cut where it is then.
+      const isShown = view.value?.runId === runId.value
+      if (isShown && wanted !== null) moveTo(wanted)
       await loadView()
       const ready = view.value as BudgetView | null
-      if (ready === null || columns.value === null) return
-      moveTo(
-        link['cut'] !== undefined
-          ? Number(link['cut'])
-          : isKept
-            ? subject.cut
-            : firstCut(ready, columns.value),
-      )
+      if (isShown || ready === null || columns.value === null) return
+      moveTo(wanted ?? firstCut(ready, columns.value))
     } catch (error) {
       state.value = { status: 'failed', message: messageOf(error) }
     }
