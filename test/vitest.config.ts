@@ -30,7 +30,15 @@ export default defineConfig({
         test: { name: 'renderer', include: ['test/renderer/**/*.test.ts'], environment: 'happy-dom' },
       },
       // By itself, after all others: it looks at how quickly the window answers.
-      { ...e2e, test: { ...e2e.test, maxWorkers: 1, sequence: { groupOrder: 1 } } },
+      {
+        ...e2e,
+        test: {
+          ...e2e.test,
+          maxWorkers: 1,
+          sequence: { groupOrder: 1 },
+          expect: { poll: { timeout: 5000 } },
+        },
+      },
     ],
   },
 })

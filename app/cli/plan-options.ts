@@ -69,7 +69,9 @@ export function planDetails(): readonly string[] {
       'A goal that can’t be met ends with exit code 1 and the nearest that can be. The ceiling says what no choice of\n' +
       'so many of these patterns can beat.',
     'JSON: what "coverage" prints, and order, curve (in that order), ceiling, budget, gap, smallest, improvement,\n' +
-      'markers, sensitivity, whatIf, asDelivered, insertions, lost, constraintCosts. Patterns are numbered from 1.',
+      'markers, sensitivity, whatIf, asDelivered, insertions, lost, constraintCosts. Patterns are numbered from 1.\n' +
+      'From a sample, "sample" holds its size, the faults that the whole set detects (population), and between what curve and\n' +
+      'coverage lie; numbers of faults are estimates of the whole list then.',
     `Keys of tester.json, all optional:\n${fieldTable(TESTER_FIELDS)}`,
     `Keys of product.json, all optional:\n${fieldTable(PRODUCT_FIELDS)}`,
   ]

@@ -7,11 +7,10 @@ import { aligned, formats } from './print-text.ts'
 
 type Smallest = NonNullable<PlanResult['smallest']>
 
-function smallestWords({ by, patterns, cycles, lowerBound, proven }: Smallest): string {
+function smallestWords({ patterns, cycles, lowerBound, proven }: Smallest): string {
   const { count } = formats
-  const found = `${count(patterns).value} patterns${by === 'cycles' ? `, ${count(cycles).value} cycles` : ''}`
-  const unit = by === 'cycles' ? ' cycles' : ''
-  return `${found}${proven ? ', proven' : `, at least ${count(lowerBound).value}${unit}`}`
+  const [taken, unit] = cycles === undefined ? ['', ''] : [`, ${count(cycles).value} cycles`, ' cycles']
+  return `${count(patterns).value} patterns${taken}${proven ? ', proven' : `, at least ${count(lowerBound).value}${unit}`}`
 }
 
 /** A plan for people: the answer in a sentence, and the figures of the cut. */
@@ -35,7 +34,7 @@ export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): 
     const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
     rows.push([
       'Sample',
-      `${count(sample.size).value} of ${count(sample.population).value} faults: all of them lie between ${coverage(coverageLow).value} and ${textOf(coverage(coverageHigh))} (3 sigma), ${dppm(dppmLow).value} and ${textOf(dppm(dppmHigh))}`,
+      `${count(sample.size).value} of ${count(sample.population).value} detectable faults: with all of them it lies between ${coverage(coverageLow).value} and ${textOf(coverage(coverageHigh))} (3 sigma), ${dppm(dppmLow).value} and ${textOf(dppm(dppmHigh))}`,
     ])
   }
   if (bound !== undefined) {

@@ -4,7 +4,12 @@ import type { Goal, Limit } from '../engine/choose/budget.ts'
 import { ceilingProof } from '../engine/choose/ceiling-proof.ts'
 import { findInstallation, versionOf } from '../installation.ts'
 import type { ReportFormat } from '../report/report-of-plan.ts'
-import { readRunFiles, simulateForPlan, type CoverageRun } from '../services/on-files/coverage-of-files.ts'
+import {
+  readRunFiles,
+  simulateFiles,
+  withRecordOf,
+  type CoverageRun,
+} from '../services/on-files/coverage-of-files.ts'
 import { budgetRows } from '../services/on-files/fault-rows.ts'
 import { inputFile } from '../services/on-files/input-file.ts'
 import { PATTERN_EXTENSIONS, patternParts } from '../workers/pattern-parts.ts'
@@ -13,7 +18,7 @@ import { planOfFiles, type PlanOfFiles } from '../services/on-files/plan-of-file
 import { planReport, type ReportOrigin } from '../services/on-files/plan-report.ts'
 import { checkConstraints, readAssumptionFiles } from '../services/on-files/read-assumptions.ts'
 import type { NetlistFiles } from '../services/on-files/read-netlist-files.ts'
-import { samplesOf, type SampleRequest, type Samples } from '../services/on-files/sampling.ts'
+import { needsSamples, samplesOf, type SampleRequest, type Samples } from '../services/on-files/sampling.ts'
 import { createHighsSolver } from '../workers/highs-solver.ts'
 import { UsageError, type Arguments, type NumberRange } from './arguments.ts'
 import { ExitCode, type Command } from './command.ts'
@@ -56,17 +61,19 @@ export const plan: Command = {
     try {
       const assumptions = await readAssumptionFiles(request.assumptions, terminal)
       const files = await readRunFiles(request.netlist, request.patterns, terminal)
-      const samples = samplesOf(files, request.sample)
+      const isSampled = needsSamples(files, request.sample)
+      if (isSampled && args.text('faults') !== null) throw new UsageError(NO_FAULTS_OF_SAMPLE)
       checkConstraints(assumptions, files.patterns.nPatterns, terminal)
-      if (samples !== null) {
-        if (args.text('faults') !== null) throw new UsageError(NO_FAULTS_OF_SAMPLE)
-        warnOfSamples(samples, request.choice, terminal)
-      }
-      const run = await simulateForPlan(files, samples?.classes ?? null, simulator, terminal)
+      const limits = { detectionLimit: isSampled ? 1 : 0, wantMatrix: !isSampled }
+      const whole = await simulateFiles(files, limits, simulator, terminal)
+      const samples = isSampled ? samplesOf(files, whole.result.profile, request.sample) : null
+      if (samples !== null) warnOfSamples(samples, request.choice, terminal)
+      const run = samples === null ? whole : await withRecordOf(whole, samples.classes, simulator, terminal)
       warnOfMismatches(run, terminal)
       const solver = createHighsSolver(findInstallation(io.entryUrl).thread('highs-worker'))
       const patternFile = basename(request.patterns[0] ?? '')
       const planned = planOfFiles(run, samples, assumptions, request.choice, solver, patternFile, terminal)
+      if (samples !== null) warnOfEnd(planned, terminal)
       await writeOutputs(args, request, run, planned, terminal, io)
       terminal.clear()
       if (args.has('json')) {
@@ -136,9 +143,18 @@ function warnOfSamples(
   const { count } = formats
   const why = isForced ? 'The record of which pattern detects which fault would take more than 1 GB. ' : ''
   terminal.warn(
-    `${why}The order is chosen on ${count(choose.size).value} and its coverage quoted from ${count(quote.size).value} other faults of ${count(population).value}, drawn at random: figures are estimates, between the limits that are given.`,
+    `${why}The order is chosen on ${count(choose.size).value} and its coverage quoted from ${count(quote.size).value} other faults of the ${count(population).value} that the whole set detects, drawn at random: figures are estimates, between the limits that are given.`,
   )
   if (order === 'smallest') terminal.warn('The set is complete for the faults drawn, not for all.')
+}
+
+/** Under a limit an order ends where the faults drawn show no more gain, although others may gain. */
+function warnOfEnd({ plan: { result } }: PlanOfFiles, terminal: Terminal): void {
+  const { limits, goals, cut } = result
+  if (limits.length === 0 || goals.length > 0 || cut.stop !== null) return
+  terminal.warn(
+    `After ${formats.count(cut.patterns).value} patterns the faults drawn show no more gain, so the limit is not used up. A larger --sample goes on.`,
+  )
 }
 
 function choiceOf(args: Arguments): PlanChoice {

@@ -88,7 +88,8 @@ describe('plan', () => {
   // c17 has 34 faults (Brglez & Fujiwara 1985, from memory), all detected by its 32 patterns: half of them drawn stand for all.
   it('plans from a sample where asked to, and says between what the whole list lies', async () => {
     const json = await runJson(['plan', c17, all32, '--sample', '17', '--seed', '5'])
-    const { sample, detected, total, lost } = json as unknown as {
+    const { sample, detected, total, lost, budget } = json as unknown as {
+      budget: Budget
       sample: { size: number; population: number; seed: number; atCut: Record<string, number> }
       detected: { total: number }
       total: number
@@ -97,9 +98,10 @@ describe('plan', () => {
     expect(sample).toMatchObject({ size: 17, population: 34, seed: 5 })
     expect({ detected: detected.total, total, lost }).toEqual({ detected: 34, total: 34, lost: null })
     expect(sample.atCut['coverageLow']).toBeGreaterThan(0.5)
-    expect(sample.atCut['coverageHigh']).toBeCloseTo(1, 12)
+    expect(sample.atCut['coverageHigh']).toBeGreaterThanOrEqual(budget.coverage)
+    expect(sample.atCut['coverageHigh']).toBeLessThanOrEqual(1)
     const { stdout, stderr } = await runCli(['plan', c17, all32, '--accuracy', '0.2'])
-    expect(stdout).toMatch(/Sample +\d+ of 34 faults: all of them lie between/)
+    expect(stdout).toMatch(/Sample +\d+ of 34 detectable faults: with all of them it lies between/)
     expect(stderr).toContain('figures are estimates')
   })
 
@@ -116,7 +118,7 @@ describe('plan', () => {
     const argv = ['-', '--order', 'smallest', '--smallest-by', 'cycles', '--json']
     const { stdout } = await runCli(['plan', nand, ...argv], { stdin: '01 @5\n11 @9\n10 @3\n11 @2\n' })
     const { smallest, budget } = JSON.parse(stdout) as PlanJson
-    expect(smallest).toEqual({ by: 'cycles', patterns: 3, cycles: 10, lowerBound: 10, proven: true })
+    expect(smallest).toEqual({ patterns: 3, cycles: 10, lowerBound: 10, proven: true })
     expect([...budget.chosen].sort()).toEqual([1, 3, 4])
     expect((await runCli(['plan', nand, patterns, '--smallest-by', 'weight'])).code).toBe(2)
   })
@@ -124,7 +126,7 @@ describe('plan', () => {
   // 4 patterns are the smallest complete set of c17 (test-generation literature, from memory).
   it('finds the smallest complete set, and says whether it is proven', async () => {
     const plan = await planJson(c17, all32, '--order', 'smallest')
-    expect(plan.smallest).toMatchObject({ patterns: 4, lowerBound: 4, proven: true })
+    expect(plan.smallest).toEqual({ patterns: 4, lowerBound: 4, proven: true })
     expect(plan.budget).toMatchObject({ patterns: 4, detected: 34 })
   })
 

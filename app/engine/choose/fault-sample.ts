@@ -13,14 +13,15 @@ export type FaultSample = {
 /**
  * Draws two samples of uncollapsed faults without a fault in common: one to choose an order on, and one to quote its
  * coverage from, since an order looks better on the sample that it was chosen on. Faults that the chain test covers are
- * not drawn. A list too small for both gives each at most half.
+ * not drawn. A population too small for both gives each at most half. `from` are the faults to draw from, where not all.
  */
 export function drawTwoSamples(
   faults: FaultList,
   size: number,
   random: Random,
+  from: Uint32Array = sampledPopulation(faults),
 ): { choose: FaultSample; quote: FaultSample } {
-  const population = sampledPopulation(faults)
+  const population = from.slice()
   const each = Math.min(size, population.length >>> 1)
   drawToFront(population, 2 * each, random)
   return {

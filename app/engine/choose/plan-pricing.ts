@@ -37,7 +37,7 @@ export type PlanBasis = {
 export type SampledFaults = {
   /** Faults drawn. */
   readonly size: number
-  /** Faults that they were drawn from: all but those that the chain test covers. */
+  /** Faults that they were drawn from: those that the whole set detects. */
   readonly population: number
   readonly seed: number
   /** Length nClasses: how many faults of the population each class stands for. */

@@ -29,11 +29,9 @@ export type PlanResult = {
   /** The ceiling under the limit that binds, minus what is detected. Null without a ceiling. */
   readonly gap: number | null
   readonly smallest?: {
-    /** What was to be least, and what lowerBound counts. */
-    readonly by: 'patterns' | 'cycles'
     readonly patterns: number
-    /** Tester cycles of these patterns, without set-up and unload. */
-    readonly cycles: number
+    /** Tester cycles of these patterns, without set-up and unload, where they were to be least; lowerBound counts them then. */
+    readonly cycles?: number
     readonly lowerBound: number
     readonly proven: boolean
   }

@@ -204,8 +204,8 @@ function sampleWords({ sample }: PlanResult, formats: NumberFormats): string {
   if (sample === undefined) return ''
   const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
   return [
-    `Coverage is estimated from ${formats.count(sample.size).value} of ${formats.count(sample.population).value} faults, drawn at random (seed ${sample.seed}); the order was chosen on as many others. `,
-    `That of all faults lies between ${textOf(formats.coverage(coverageLow))} and ${textOf(formats.coverage(coverageHigh))} (3 sigma, Wilson 1927), which alone is ${formats.dppm(dppmLow).value} to ${textOf(formats.dppm(dppmHigh))}. `,
+    `Coverage is estimated from ${formats.count(sample.size).value} of the ${formats.count(sample.population).value} faults that the whole set detects, drawn at random (seed ${sample.seed}); the order was chosen on as many others. `,
+    `With all of them it lies between ${textOf(formats.coverage(coverageLow))} and ${textOf(formats.coverage(coverageHigh))} (3 sigma, Wilson 1927), which alone is ${formats.dppm(dppmLow).value} to ${textOf(formats.dppm(dppmHigh))}. `,
   ].join('')
 }
 

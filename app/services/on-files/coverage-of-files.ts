@@ -76,19 +76,14 @@ export async function simulateFiles(
   }
 }
 
-/**
- * Simulates what a plan is made from: every fault to its first detection, and which patterns detect which fault of the
- * classes given. Null for all classes, whose every detection is counted then. Throws AppError 'cancelled'.
- */
-export async function simulateForPlan(
-  files: ReadFiles,
-  classes: Uint32Array | null,
+/** Returns a run with the record of which pattern detects which of these classes. Throws AppError 'cancelled'. */
+export async function withRecordOf(
+  run: CoverageRun,
+  classes: Uint32Array,
   simulator: Simulator,
   work: FileWork,
 ): Promise<CoverageRun> {
-  if (classes === null) return simulateFiles(files, { detectionLimit: 0, wantMatrix: true }, simulator, work)
-  const run = await simulateFiles(files, { detectionLimit: 1, wantMatrix: false }, simulator, work)
-  const { netlist, faults, patterns } = files
+  const { netlist, faults, patterns } = run
   const task = { circuit: netlist.circuit, faults, patterns, classes, detectionLimit: 0, wantMatrix: true }
   const { result, kernelSeconds } = await simulator.run(task, work)
   return {

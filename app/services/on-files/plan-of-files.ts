@@ -71,8 +71,9 @@ export function planOfFiles(
     }),
   )
   const { order: chosenOrder, smallest } = orderOf(choosing, choice, solveMip, work)
-  // Patterns without a gain on the sample may well detect faults that were not drawn.
-  const order = samples === null ? chosenOrder : { ...chosenOrder, chosen: chosenOrder.runs }
+  // Patterns without a gain on the sample may detect faults that were not drawn: a goal looks at all of them.
+  const goesOn = samples !== null && choice.goals.length > 0
+  const order = goesOn ? { ...chosenOrder, chosen: chosenOrder.runs } : chosenOrder
   const input: PlanInput = {
     faults,
     untestable: null,
@@ -175,11 +176,15 @@ function orderOf(
           `No complete set was found in ${choice.searchSeconds} s. Give the search longer with --search-seconds, or take --order steepest, which detects as much.`,
         )
       }
-      const { patterns, lowerBound, proven } = found
-      const cycles = patterns.reduce((sum, pattern) => sum + (task.costs[pattern] ?? 0), 0)
+      const { patterns, cost, lowerBound, proven } = found
       return {
         order: orderOfChoice(basis, patterns),
-        smallest: { by: choice.smallestBy, patterns: patterns.length, cycles, lowerBound, proven },
+        smallest: {
+          patterns: patterns.length,
+          lowerBound,
+          proven,
+          ...(choice.smallestBy === 'cycles' ? { cycles: cost } : {}),
+        },
       }
     }
   }

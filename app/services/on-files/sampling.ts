@@ -1,6 +1,7 @@
 import { AppError } from '../../contract/errors.ts'
 import { drawTwoSamples, type FaultSample, sampledPopulation } from '../../engine/choose/fault-sample.ts'
 import { sampleSizeFor } from '../../engine/choose/wilson.ts'
+import type { DetectionProfile } from '../../engine/simulate/detection-profile.ts'
 import { createRandom } from '../../engine/source/random.ts'
 import type { ReadFiles } from './coverage-of-files.ts'
 
@@ -17,6 +18,7 @@ export type SampleRequest = {
 export type Samples = {
   readonly choose: FaultSample
   readonly quote: FaultSample
+  /** The faults that they are drawn from: those that the whole set detects. No choice detects another. */
   readonly population: number
   readonly seed: number
   /** The classes of both, ascending. */
@@ -29,36 +31,53 @@ export type Samples = {
 const MOST_MATRIX_BYTES = 1024 ** 3
 /** What a sample is accurate to where the record of all faults is too large and nothing was asked for. */
 const ACCURACY = 0.005
-/** Sizes are for coverages from here up; a lower one has a wider band, which is shown. */
+/** Sizes are for a cut that keeps this share of what the set detects, or more; a lower one has a wider band, which is shown. */
 const EXPECTED_COVERAGE = 0.9
 
+/** True where a plan is made from samples: they are asked for, or the record of all faults would be too large. */
+export function needsSamples({ faults, patterns }: ReadFiles, { size, accuracy }: SampleRequest): boolean {
+  return size !== null || accuracy !== null || faults.nClasses > mostClasses(patterns.nPatterns)
+}
+
 /**
- * Draws the samples that a plan is made from, or returns null where it is made from all faults. Throws AppError 'bad-input'
- * where even the samples' record would take more memory than it may.
+ * Draws the samples that a plan is made from, among the faults that the whole set detects by its profile: what it does not
+ * detect is known, so that it need not be estimated. Throws AppError 'bad-input' where even the samples' record would take
+ * more memory than it may.
  */
-export function samplesOf({ faults, patterns }: ReadFiles, request: SampleRequest): Samples | null {
-  const { size, accuracy, seed } = request
-  const mostClasses = Math.floor((8 * MOST_MATRIX_BYTES) / patterns.nPatterns)
+export function samplesOf(
+  { faults, patterns }: ReadFiles,
+  profile: DetectionProfile,
+  { size, accuracy, seed }: SampleRequest,
+): Samples {
+  const most = Math.floor(mostClasses(patterns.nPatterns) / 2)
   const isForced = size === null && accuracy === null
-  if (isForced && faults.nClasses <= mostClasses) return null
-  const population = sampledPopulation(faults).length
-  const wanted = size ?? sampleSizeFor(accuracy ?? ACCURACY, EXPECTED_COVERAGE, population)
-  if (!isForced && 2 * wanted > mostClasses && faults.nClasses > mostClasses) {
+  const detected = sampledPopulation(faults).filter(
+    (fault) => (profile.detections[faults.classOf[fault] ?? 0] ?? 0) > 0,
+  )
+  if (detected.length < 2) {
+    throw new AppError('bad-input', 'These patterns detect next to nothing, so there is nothing to sample.')
+  }
+  // Accuracy is asked of the coverage of all faults, of which those that can be detected are a part.
+  const ofDetected = ((accuracy ?? ACCURACY) * faults.nFaults) / detected.length
+  const wanted = size ?? sampleSizeFor(ofDetected, EXPECTED_COVERAGE, detected.length)
+  if (most < 1 || (!isForced && wanted > most && faults.nClasses > 2 * most)) {
     throw new AppError(
       'bad-input',
-      `A plan keeps which of ${patterns.nPatterns} patterns detect which fault. Two samples of ${wanted} faults would take more than 1 GB; ${Math.floor(mostClasses / 2)} each is the most.`,
+      `A plan keeps which of ${patterns.nPatterns} patterns detect which fault. Two samples of ${wanted} faults would take more than 1 GB; ${most} each is the most. "coverage" has no such limit.`,
     )
   }
-  const each = Math.min(wanted, Math.floor(mostClasses / 2))
-  if (each < 1) {
-    throw new AppError(
-      'bad-input',
-      `A plan keeps which of ${patterns.nPatterns} patterns detect which fault; not even two faults fit in 1 GB. Plan fewer patterns; "coverage" has no such limit.`,
-    )
-  }
-  const { choose, quote } = drawTwoSamples(faults, each, createRandom(seed))
+  const { choose, quote } = drawTwoSamples(
+    faults,
+    Math.min(wanted, Math.max(most, 1)),
+    createRandom(seed),
+    detected,
+  )
   const isIn = new Uint8Array(faults.nClasses)
-  for (const group of [...choose.classes, ...quote.classes]) isIn[group] = 1
+  for (const { classes } of [choose, quote]) for (const group of classes) isIn[group] = 1
   const classes = Uint32Array.from(isIn.keys()).filter((group) => isIn[group] === 1)
-  return { choose, quote, population, seed, classes, isForced }
+  return { choose, quote, population: detected.length, seed, classes, isForced }
+}
+
+function mostClasses(nPatterns: number): number {
+  return Math.floor((8 * MOST_MATRIX_BYTES) / nPatterns)
 }

@@ -2,7 +2,6 @@ import { Readable } from 'node:stream'
 import { describe, expect, test } from 'vitest'
 import { detectedWeight } from '../../../app/engine/choose/detected-weight.ts'
 import { freeRules } from '../../../app/engine/choose/choice-rules.ts'
-import { drawTwoSamples } from '../../../app/engine/choose/fault-sample.ts'
 import type { Netlist } from '../../../app/engine/circuit/netlist.ts'
 import { readBench } from '../../../app/engine/formats/bench/read-bench.ts'
 import { countStates } from '../../../app/engine/faults/fault-state.ts'
@@ -10,13 +9,12 @@ import { buildFaultList } from '../../../app/engine/faults/build-fault-list.ts'
 import { DEFAULT_PRODUCT } from '../../../app/engine/quality/product.ts'
 import type { DetectionMatrix } from '../../../app/engine/simulate/detection-profile.ts'
 import { simulateTwin } from '../../../app/engine/simulate/twin.ts'
-import { createRandom } from '../../../app/engine/source/random.ts'
 import type { Source } from '../../../app/engine/source/source.ts'
 import { DEFAULT_TESTER } from '../../../app/engine/tester/tester.ts'
 import type { CoverageRun } from '../../../app/services/on-files/coverage-of-files.ts'
 import type { FileWork } from '../../../app/services/on-files/file-work.ts'
 import { planOfFiles } from '../../../app/services/on-files/plan-of-files.ts'
-import { samplesOf, type Samples } from '../../../app/services/on-files/sampling.ts'
+import { needsSamples, samplesOf, type Samples } from '../../../app/services/on-files/sampling.ts'
 import { hasData, readData } from '../../helpers/data.ts'
 import { randomBench } from '../../helpers/random-circuit.ts'
 import { randomPatterns } from '../../helpers/random-run.ts'
@@ -123,9 +121,7 @@ const subjects: readonly (readonly [string, () => Source, number])[] = [
 describe.each(subjects)('plans of %s from samples', (_, source, nPatterns) => {
   const run = runOf(source(), nPatterns)
   const drawn = (seed: number): Samples => {
-    const samples = samplesOf(run, { size: 250, accuracy: null, seed })
-    if (samples === null) throw new Error('a sample was asked for')
-    return samples
+    return samplesOf(run, run.result.profile, { size: 250, accuracy: null, seed })
   }
 
   const plans = Array.from({ length: 40 }, (_each, seed) => planFrom(run, drawn(seed + 1)).plan.result)
@@ -155,18 +151,23 @@ describe.each(subjects)('plans of %s from samples', (_, source, nPatterns) => {
     expect(better).toBeGreaterThan(13)
   })
 
-  test('two samples of half the list each add up to the list', () => {
-    const { choose, quote } = drawTwoSamples(run.faults, 1e9, createRandom(3))
-    const samples = { ...drawn(1), choose, quote }
-    const whole = planFrom(run, null).plan.result.total
-    expect(planFrom(run, samples).plan.result.total).toBe(whole)
+  test('no estimate is above what the whole set detects, and all patterns together detect exactly that', () => {
+    const whole = planFrom(run, null).plan.result
+    const known = whole.asDelivered.curve.at(-1) ?? 0
+    for (const { total, sample, asDelivered } of plans) {
+      expect(total).toBe(whole.total)
+      expect(Math.max(...sample!.high)).toBeLessThanOrEqual(known + 1e-6)
+      expect(asDelivered.curve.at(-1)).toBeCloseTo(known, 6)
+    }
   })
 })
 
 test('an accuracy takes as many faults as the formula of Wilson 1927 says, and no sample is drawn where none is needed', () => {
   const run = runOf({ name: 'own', text: randomBench(3, SIZE) }, 32)
-  expect(samplesOf(run, { size: null, accuracy: null, seed: 1 })).toBeNull()
-  const { quote } = samplesOf(run, { size: null, accuracy: 0.1, seed: 1 })!
+  expect(needsSamples(run, { size: null, accuracy: null, seed: 1 })).toBe(false)
+  expect(needsSamples(run, { size: null, accuracy: 0.1, seed: 1 })).toBe(true)
+  const detected = run.states.detected / run.faults.nFaults
+  const { quote } = samplesOf(run, run.result.profile, { size: null, accuracy: 0.1 * detected, seed: 1 })
   // z²·p(1−p)/a² = 9 × 0.09 / 0.01 = 81 without the terms of z², which make it a few more.
   expect(quote.size).toBeGreaterThanOrEqual(75)
   expect(quote.size).toBeLessThan(110)
