@@ -38,10 +38,15 @@ export function moneySentence(view: MoneyView, cut: number, formats: NumberForma
 }
 
 /** Returns what a year's sums lack, in words; empty where they lack nothing. */
-export function missingWords({ testCostPerYear, escapeCostPerYear }: MoneyView): string {
+export function missingWords({ testCostPerYear, escapeCostPerYear, sensitivity }: MoneyView): string {
+  const noVolume = testCostPerYear === null
+  // Without a volume no escapes are reckoned either; whether their cost is known shows in what it would move.
+  const noEscapeCost = noVolume
+    ? sensitivity.every(({ input }) => input !== 'escapeCost')
+    : escapeCostPerYear === null
   const missing = [
-    ...(testCostPerYear === null ? ['how many devices are shipped a year'] : []),
-    ...(escapeCostPerYear === null ? ['what an escape costs'] : []),
+    ...(noVolume ? ['how many devices are shipped a year'] : []),
+    ...(noEscapeCost ? ['what an escape costs'] : []),
   ].join(' and ')
   return missing === '' ? '' : `${missing.charAt(0).toUpperCase()}${missing.slice(1)}`
 }

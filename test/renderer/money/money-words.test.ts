@@ -21,7 +21,8 @@ test('without a volume or the cost of an escape nothing is claimed of a year’s
   const view = moneyView({ escapeCostPerYear: null, totalPerYear: null, leastTotalCut: null })
   expect(said(view, 1, formats)).toBe('1 pattern cost €0.500 per 1,000 devices of tester time, €10.0 a year.')
   expect(missingWords(view)).toBe('What an escape costs')
-  expect(missingWords({ ...view, testCostPerYear: null })).toBe(
+  expect(missingWords({ ...view, testCostPerYear: null })).toBe('How many devices are shipped a year')
+  expect(missingWords({ ...view, testCostPerYear: null, sensitivity: [] })).toBe(
     'How many devices are shipped a year and what an escape costs',
   )
 })
