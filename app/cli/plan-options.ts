@@ -42,7 +42,7 @@ export const PLAN_OPTIONS = {
   },
   accuracy: {
     value: 'A',
-    help: 'the same with as many faults as a band of ± A around a coverage of 0.9 takes, such as 0.005',
+    help: 'the same with as many faults as a band of ± A takes at a cut that keeps 90 % of what the set detects, such as 0.005',
   },
   seed: { value: 'N', help: 'begins the random numbers that faults are drawn by (default 1)' },
   'max-patterns': { value: 'N', help: 'at most N patterns; limits are inclusive and may be combined' },

@@ -34,7 +34,7 @@ export function planText(run: CoverageRun, { plan, improvement }: PlanOfFiles): 
     const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
     rows.push([
       'Sample',
-      `${count(sample.size).value} of ${count(sample.population).value} detectable faults: with all of them it lies between ${coverage(coverageLow).value} and ${textOf(coverage(coverageHigh))} (3 sigma), ${dppm(dppmLow).value} and ${textOf(dppm(dppmHigh))}`,
+      `${count(sample.size).value} of ${count(sample.population).value} detectable faults: with all of them it lies between ${coverage(coverageLow).value} and ${textOf(coverage(coverageHigh))} (3 sigma)${dppmLow === null ? '' : `, ${dppm(dppmLow).value} and ${textOf(dppm(dppmHigh))}`}`,
     ])
   }
   if (bound !== undefined) {

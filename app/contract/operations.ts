@@ -29,6 +29,12 @@ import { taskShape } from './shapes/task.ts'
 
 const nothing = z.object({})
 const byId = z.object({ id: idShape })
+const cutOfRun = z.object({
+  runId: idShape,
+  order: orderNameShape,
+  cut: z.number().int().nonnegative(),
+  assumptions: assumptionsShape,
+})
 /** A deletion can be taken back with its token while the project stays open. */
 const undo = z.object({ undoToken: z.string() })
 
@@ -179,34 +185,19 @@ export const operations = {
   ),
   /** Improves the choice at a cut within its patterns or its tester cycles; a task that can be cancelled. */
   'budgets.improve': command(
-    z.object({
-      runId: idShape,
-      order: orderNameShape,
+    cutOfRun.extend({
       cut: z.number().int().positive(),
-      assumptions: assumptionsShape,
       within: z.enum(['patterns', 'cycles']).default('patterns'),
       seconds: z.number().min(1).max(3600).default(20),
     }),
     improvedChoiceShape,
   ),
-  'budgets.constraintCosts': query(
-    z.object({
-      runId: idShape,
-      order: orderNameShape,
-      cut: z.number().int().nonnegative(),
-      assumptions: assumptionsShape,
-    }),
-    constraintCostsShape,
-  ),
+  'budgets.constraintCosts': query(cutOfRun, constraintCostsShape),
   'budgets.save': command(
-    z.object({
+    cutOfRun.extend({
       productId: idShape,
-      runId: idShape,
       name: nameShape,
       note: noteShape.default(''),
-      order: orderNameShape,
-      cut: z.number().int().nonnegative(),
-      assumptions: assumptionsShape,
     }),
     budgetShape,
   ),
@@ -222,23 +213,11 @@ export const operations = {
   'budgets.delete': command(byId, undo),
 
   /** What a cut costs a year, how firm that is, and what other equipment would change. */
-  'budgets.money': query(
-    z.object({
-      runId: idShape,
-      order: orderNameShape,
-      cut: z.number().int().nonnegative(),
-      assumptions: assumptionsShape,
-    }),
-    moneyViewShape,
-  ),
+  'budgets.money': query(cutOfRun, moneyViewShape),
 
   /** Faults that a cut loses against the whole set, by block and one by one. */
   'faults.lost': query(
-    z.object({
-      runId: idShape,
-      order: orderNameShape,
-      cut: z.number().int().nonnegative(),
-      assumptions: assumptionsShape,
+    cutOfRun.extend({
       /** Only faults of this block (a name prefix that ends in `/`); null for all. */
       block: z.string().nullable().default(null),
       first: z.number().int().nonnegative().default(0),
@@ -265,11 +244,7 @@ export const operations = {
 
   /** A report or a pattern file of a cut, as bytes with a proposed file name. */
   'exports.make': command(
-    z.object({
-      runId: idShape,
-      order: orderNameShape,
-      cut: z.number().int().nonnegative(),
-      assumptions: assumptionsShape,
+    cutOfRun.extend({
       format: z.enum(['html', 'pdf', 'xlsx', 'csv', 'vectors', 'patterns-csv', 'stil']),
     }),
     z.object({

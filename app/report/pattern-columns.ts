@@ -67,8 +67,8 @@ export function patternColumns({ plan, curve, priced, pricing }: ReportInput): r
 }
 
 /** Between what the faults detected of the whole list lie, where the curve is of a sample. */
-function bandColumns({ sample }: ReportInput['plan']): readonly PatternColumn[] {
-  if (sample === undefined) return []
+function bandColumns({ sample, isWeighted }: ReportInput['plan']): readonly PatternColumn[] {
+  if (sample === undefined || isWeighted) return []
   const { low, high } = sample
   return [
     { name: 'detected_low', head: 'Detected, low', format: '#,##0', at: (k) => low[k - 1] ?? 0 },

@@ -1,12 +1,9 @@
 import { bestPrefixOrSingle } from '../engine/choose/best-prefix-or-single.ts'
-import type { ChoiceBasis } from '../engine/choose/choice-basis.ts'
-import { compileRules } from '../engine/choose/choice-rules.ts'
+import { rulesKeeping } from '../engine/choose/choice-basis.ts'
 import { type ChoiceTask, unitCosts } from '../engine/choose/choice-task.ts'
-import { NO_CONSTRAINTS } from '../engine/choose/constraints.ts'
 import { cutPlaces } from '../engine/choose/cut-places.ts'
 import { detectedWeight } from '../engine/choose/detected-weight.ts'
 import { improveAtBudget } from '../engine/choose/improve-at-budget.ts'
-import type { Order } from '../engine/choose/order.ts'
 import { steepestFirst } from '../engine/choose/steepest-first.ts'
 import { AppError } from '../contract/errors.ts'
 import type { ImprovedChoice } from '../contract/shapes/budget.ts'
@@ -61,9 +58,11 @@ export function improveJob(
   if (found === null) {
     throw new AppError('out-of-reach', `Nothing could be tried within ${input.seconds} s. Give it longer.`)
   }
-  const { sequence, chosen } = orderBehind(basis, found.patterns)
+  // The choice steepest first, and then whatever gains most on top of it.
+  const behind = steepestFirst({ ...basis.task, rules: rulesKeeping(basis, found.patterns) })
+  if (behind === null) throw new Error('nothing asked the order to end')
   return new DeskAnswer({
-    order: Array.from(sequence.subarray(0, chosen), (pattern) => pattern + 1),
+    order: Array.from(behind.sequence.subarray(0, behind.chosen), (pattern) => pattern + 1),
     cut: found.patterns.length,
     detected: found.weight,
     before,
@@ -72,13 +71,4 @@ export function improveJob(
     proven: found.proven,
     seconds: secondsSoFar(),
   })
-}
-
-/** Returns the order that runs a choice steepest first, and then whatever gains most on top of it. */
-function orderBehind({ task, constraints }: ChoiceBasis, patterns: Uint32Array): Order {
-  const given = constraints?.constraints ?? NO_CONSTRAINTS
-  const { rules } = compileRules({ ...given, keep: [...given.keep, ...patterns] }, task.matrix.nPatterns)
-  const order = rules === null ? null : steepestFirst({ ...task, rules })
-  if (order === null) throw new Error('the patterns are no choice that the constraints allow')
-  return order
 }

@@ -108,7 +108,14 @@ function planOf(input: PlanInput): Plan {
       ...(input.sample === undefined
         ? {}
         : {
-            sample: sampleBand(input.sample, isWeighted ? plainCurve : curve, cut.patterns, counts, pricing),
+            sample: sampleBand(
+              input.sample,
+              isWeighted ? plainCurve : curve,
+              plainCurve,
+              cut.patterns,
+              counts,
+              pricing,
+            ),
           }),
       isReached: cut.broken === null && cut.unmet.length === 0,
       cut,

@@ -6,8 +6,9 @@ import type { DetectionMatrix } from '../simulate/detection-profile.ts'
 import type { Diagnostic, Reading } from '../source/diagnostic.ts'
 import type { Source } from '../source/source.ts'
 import type { ScanFacts } from '../tester/time-model.ts'
-import { compileRules, freeRules } from './choice-rules.ts'
+import { type ChoiceRules, compileRules, freeRules } from './choice-rules.ts'
 import type { ChoiceTask } from './choice-task.ts'
+import { NO_CONSTRAINTS } from './constraints.ts'
 import { weighFaults } from './fault-weights.ts'
 import type { Order } from './order.ts'
 import { steepestFirst } from './steepest-first.ts'
@@ -77,6 +78,15 @@ export function scanFactsOf({ circuit, chains }: Netlist): ScanFacts {
   }
 }
 
+/** Returns the rules of a choice under which these patterns, a choice that its rules allow, are kept as well. */
+export function rulesKeeping({ task, constraints }: ChoiceBasis, patterns: ArrayLike<number>): ChoiceRules {
+  const given = constraints?.constraints ?? NO_CONSTRAINTS
+  const keep = [...given.keep, ...Array.from(patterns)]
+  const { rules } = compileRules({ ...given, keep }, task.matrix.nPatterns)
+  if (rules === null) throw new Error('the patterns are no choice that the constraints allow')
+  return rules
+}
+
 /**
  * Returns the order that runs the given patterns steepest first and everything else after them, in file order. The patterns
  * make a choice that the rules allow, as a smallest complete set does.
@@ -86,7 +96,7 @@ export function orderOfChoice({ task, constraints }: ChoiceBasis, patterns: Arra
   const isChosen = new Uint8Array(nPatterns)
   for (let at = 0; at < patterns.length; at++) isChosen[patterns[at]] = 1
   const others = Array.from(isChosen.keys()).filter((pattern) => isChosen[pattern] === 0)
-  const asked = constraints?.constraints ?? { keep: [], leaveOut: [], together: [], before: [], first: [] }
+  const asked = constraints?.constraints ?? NO_CONSTRAINTS
   const { rules } = compileRules(
     {
       ...asked,
@@ -100,10 +110,10 @@ export function orderOfChoice({ task, constraints }: ChoiceBasis, patterns: Arra
   const within = rules === null ? null : steepestFirst({ ...task, rules })
   if (within === null) throw new Error('the patterns are no choice that the constraints allow')
   const chosen = within.sequence.subarray(0, patterns.length)
-  return behindChosen(task, 'smallest', chosen)
+  return behindChosen(task, chosen)
 }
 
-function behindChosen({ rules }: ChoiceTask, name: Order['name'], chosen: ArrayLike<number>): Order {
+function behindChosen({ rules }: ChoiceTask, chosen: ArrayLike<number>): Order {
   const { nPatterns, unitOf } = rules
   const sequence = new Uint32Array(nPatterns)
   const isPlaced = new Uint8Array(nPatterns)
@@ -118,5 +128,5 @@ function behindChosen({ rules }: ChoiceTask, name: Order['name'], chosen: ArrayL
   }
   const runs = length
   for (let pattern = 0; pattern < nPatterns; pattern++) if (isPlaced[pattern] === 0) place(pattern)
-  return { name, sequence, chosen: chosen.length, runs }
+  return { name: 'smallest', sequence, chosen: chosen.length, runs }
 }

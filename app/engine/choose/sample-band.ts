@@ -17,25 +17,33 @@ export type SampleBand = {
     /** Of all faults, 0..1. */
     readonly coverageLow: number
     readonly coverageHigh: number
-    readonly dppmLow: number
-    readonly dppmHigh: number
+    /** Null where escapes are reckoned by area: the sample says nothing of single blocks. */
+    readonly dppmLow: number | null
+    readonly dppmHigh: number | null
   }
 }
 
-/** Returns the band of a curve that counts plain faults, estimated from a sample. SOURCE: wilsonEstimate. */
+/**
+ * Returns the band of a curve that counts faults, estimated from a sample, and of what escapes at the cut, which is reckoned
+ * from single detections: `once` is their curve. SOURCE: wilsonEstimate.
+ */
 export function sampleBand(
   { size, population, seed }: SampledFaults,
   { detected }: CoverageCurve,
+  once: CoverageCurve,
   cut: number,
   counts: FaultCounts,
   { product, trueYield }: Pricing,
 ): SampleBand {
-  const limits = Array.from(detected, (faults) => {
+  const limitsOf = (faults: number): { low: number; high: number } => {
     const { low, high } = wilsonEstimate(Math.round((faults * size) / population), size, population)
     return { low: low * population, high: high * population }
-  })
+  }
+  const limits = Array.from(detected, limitsOf)
   const { low, high } = limits[cut]
-  const dppm = (faults: number): number => dppmAt(testCoverage(faults, counts), { ...product, trueYield })
+  const escapes = limitsOf(once.detected[cut])
+  const dppm = (faults: number): number | null =>
+    product.areaShares === null ? dppmAt(testCoverage(faults, counts), { ...product, trueYield }) : null
   return {
     size,
     population,
@@ -45,8 +53,8 @@ export function sampleBand(
     atCut: {
       coverageLow: low / counts.all,
       coverageHigh: high / counts.all,
-      dppmLow: dppm(high),
-      dppmHigh: dppm(low),
+      dppmLow: dppm(escapes.high),
+      dppmHigh: dppm(escapes.low),
     },
   }
 }

@@ -40,7 +40,8 @@ type Freed = { readonly sources: readonly number[]; readonly observed: readonly 
 /**
  * Estimates what each kind of source of X costs: the same random patterns are simulated on the netlist as it is, then on
  * one in which the kind's nets of X are free inputs and the nets that end at it are observed. Pins held in test keep their
- * value. Hands out one simulation after the other and takes its profile; returns null where the netlist has no such source.
+ * value. Hands out one simulation after the other and takes its profile; returns null where the netlist has no such source
+ * or no fault.
  * SOURCE: own method. X made known takes no detection away, so no cost is below 0; it says nothing of patterns that are
  * made for the circuit.
  */
@@ -49,7 +50,7 @@ export function* unusableCosts(
   faults: FaultList,
 ): Generator<SimulationTask, UnusableCosts | null, DetectionProfile> {
   const { circuit, report } = netlist
-  if (report.unusable.length === 0) return null
+  if (report.unusable.length === 0 || faults.nFaults === 0) return null
   const random = createRandom(SEED)
   const basis: CostBasis = {
     netlist,

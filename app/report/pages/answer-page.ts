@@ -205,7 +205,7 @@ function sampleWords({ sample }: PlanResult, formats: NumberFormats): string {
   const { coverageLow, coverageHigh, dppmLow, dppmHigh } = sample.atCut
   return [
     `Coverage is estimated from ${formats.count(sample.size).value} of the ${formats.count(sample.population).value} faults that the whole set detects, drawn at random (seed ${sample.seed}); the order was chosen on as many others. `,
-    `With all of them it lies between ${textOf(formats.coverage(coverageLow))} and ${textOf(formats.coverage(coverageHigh))} (3 sigma, Wilson 1927), which alone is ${formats.dppm(dppmLow).value} to ${textOf(formats.dppm(dppmHigh))}. `,
+    `With all of them it lies between ${textOf(formats.coverage(coverageLow))} and ${textOf(formats.coverage(coverageHigh))} (3 sigma, Wilson 1927)${dppmLow === null ? '' : `, which alone is ${formats.dppm(dppmLow).value} to ${textOf(formats.dppm(dppmHigh))}`}. `,
   ].join('')
 }
 

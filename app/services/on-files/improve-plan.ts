@@ -1,10 +1,8 @@
 import type { Plan, PlanInput } from '../../engine/choose/build-plan.ts'
 import { bestPrefixOrSingle } from '../../engine/choose/best-prefix-or-single.ts'
 import { meets } from '../../engine/choose/budget.ts'
-import type { ChoiceBasis } from '../../engine/choose/choice-basis.ts'
-import { compileRules } from '../../engine/choose/choice-rules.ts'
+import { type ChoiceBasis, rulesKeeping } from '../../engine/choose/choice-basis.ts'
 import { withSlack, type ChoiceTask } from '../../engine/choose/choice-task.ts'
-import { NO_CONSTRAINTS } from '../../engine/choose/constraints.ts'
 import { deliveredOrder } from '../../engine/choose/delivered-order.ts'
 import { spendingUnder, type Spending } from '../../engine/choose/headroom.ts'
 import { improveAtBudget } from '../../engine/choose/improve-at-budget.ts'
@@ -158,18 +156,15 @@ function isBetter({ result }: Plan, than: Plan): boolean {
 /** Returns the plan whose order runs these patterns before all others, in the manner of the order that was asked for. */
 function planKeeping(
   input: PlanInput,
-  { task, constraints }: ChoiceBasis,
+  basis: ChoiceBasis,
   patterns: ArrayLike<number>,
   work: FileWork,
 ): { plan: Plan; order: Order } {
-  const given = constraints?.constraints ?? NO_CONSTRAINTS
-  const keep = [...given.keep, ...Array.from(patterns)]
-  const { rules } = compileRules({ ...given, keep }, task.matrix.nPatterns)
-  if (rules === null) throw new Error('the patterns are no choice that the constraints allow')
+  const rules = rulesKeeping(basis, patterns)
   const order =
     input.order.name === 'as-delivered'
       ? deliveredOrder(rules)
-      : wholeOf(steepestFirst({ ...task, rules }, progressOf(work, 'Ordering')))
+      : wholeOf(steepestFirst({ ...basis.task, rules }, progressOf(work, 'Ordering')))
   const named = { ...order, name: input.order.name }
   return { plan: requirePlan({ ...input, order: named }), order: named }
 }

@@ -90,13 +90,21 @@ function rowsOf(matrix: DetectionMatrix, classes: Uint32Array): DetectionMatrix 
   }
 }
 
-function planFrom(run: CoverageRun, samples: Samples | null): ReturnType<typeof planOfFiles> {
+function planFrom(run: CoverageRun, samples: Samples | null, detections = 1): ReturnType<typeof planOfFiles> {
   const { matrix } = run.result
   if (matrix === null) throw new Error('no record')
   const seen = samples === null ? matrix : rowsOf(matrix, samples.classes)
   const sampled = { ...run, result: { ...run.result, matrix: seen } }
   const solve = (): Promise<never> => Promise.reject(new Error('nothing is solved here'))
-  return planOfFiles(sampled, samples, assumptions, choice, solve as never, 'own.vec', work)
+  return planOfFiles(
+    sampled,
+    samples,
+    assumptions,
+    { ...choice, detections },
+    solve as never,
+    'own.vec',
+    work,
+  )
 }
 
 /** The share of all faults, of the whole list, that these patterns detect. */
@@ -139,6 +147,15 @@ describe.each(subjects)('plans of %s from samples', (_, source, nPatterns) => {
     expect(held).toBeGreaterThanOrEqual(38)
     // Quoted from the faults that it was not chosen on, the estimate has no lean: its mean error is a fraction of the band.
     expect(Math.abs(errors)).toBeLessThan(0.015)
+  })
+
+  test('the escape rate of a choice for two detections lies in its band, which is of single detections', () => {
+    const { budget, sample } = planFrom(run, drawn(1), 2).plan.result
+    const { dppmLow, dppmHigh, coverageLow, coverageHigh } = sample!.atCut
+    expect(dppmLow).toBeLessThanOrEqual(budget.dppm)
+    expect(dppmHigh).toBeGreaterThanOrEqual(budget.dppm)
+    expect(coverageLow).toBeLessThanOrEqual(budget.coverage)
+    expect(coverageHigh).toBeGreaterThanOrEqual(budget.coverage)
   })
 
   test('quoted from the faults that it was chosen on, the same choice would look better', () => {
