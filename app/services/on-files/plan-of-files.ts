@@ -88,7 +88,7 @@ export function planOfFiles(
     program,
     limits: choice.limits,
     goals: choice.goals,
-    ceiling: ceiling.bounds,
+    ceiling: knownBounds(ceiling.bounds, assumptions.weights === null ? samples : null),
     ceilingWithin: (costs, budget) => ceilingWithin({ ...task, costs }, budget, work),
     // Of a sample it is no smallest set of the whole list.
     smallest: samples === null ? smallest : null,
@@ -145,6 +145,11 @@ function basisOf(
   })
   const sources = [constraints, weights].filter((source) => source !== null)
   return withProgram(valueOf(work, reading, sources), program, patterns, patternFile)
+}
+
+/** Weights scaled up from a sample are no whole numbers, and bounds round up: no choice detects more than the whole set. */
+function knownBounds(bounds: Float64Array, samples: Samples | null): Float64Array {
+  return samples === null ? bounds : bounds.map((bound) => Math.min(bound, samples.population))
 }
 
 function sampledFaults({ quote, population, seed }: Samples, { nClasses }: FaultList): SampledFaults {

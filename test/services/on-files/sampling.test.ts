@@ -171,7 +171,8 @@ describe.each(subjects)('plans of %s from samples', (_, source, nPatterns) => {
   test('no estimate is above what the whole set detects, and all patterns together detect exactly that', () => {
     const whole = planFrom(run, null).plan.result
     const known = whole.asDelivered.curve.at(-1) ?? 0
-    for (const { total, sample, asDelivered } of plans) {
+    for (const { total, sample, asDelivered, ceiling } of plans) {
+      expect(Math.max(...ceiling)).toBeLessThanOrEqual(known)
       expect(total).toBe(whole.total)
       expect(Math.max(...sample!.high)).toBeLessThanOrEqual(known + 1e-6)
       expect(asDelivered.curve.at(-1)).toBeCloseTo(known, 6)
